@@ -1,0 +1,1 @@
+//! The grammar of the Molden format and of XYZ files: bytes in, values with spans out.

@@ -1,0 +1,1 @@
+//! Basis functions, their overlap, the conventions of files, and operations on orbitals.
