@@ -2,7 +2,9 @@
 //!
 //! Knows no molecule, basis or file.
 
+mod elements;
 pub mod error;
+mod exact;
 pub mod functions;
 pub mod harmonics;
 pub mod identify;
