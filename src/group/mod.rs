@@ -2,8 +2,24 @@
 //!
 //! Knows no molecule, basis or file.
 
-pub mod operation;
+mod elements;
+pub mod error;
+mod exact;
+pub mod functions;
 pub mod harmonics;
+pub mod identify;
+pub mod irrep_name;
+pub mod multiplication;
+pub mod operation;
+pub mod point_group;
+pub mod products;
+pub mod schoenflies;
+pub mod subgroups;
 pub mod symmetry;
 
+pub use error::GroupError;
+pub use identify::identify;
+pub use irrep_name::IrrepName;
 pub use operation::Operation;
+pub use point_group::{Class, Element, Irrep, PointGroup, Setting, Subgroup};
+pub use schoenflies::GroupName;

@@ -98,7 +98,7 @@ impl Operation {
 }
 
 /// Axis and angle in [0, π] of a proper rotation.
-fn axis_angle(rotation: &Matrix3<f64>) -> (Unit<Vector3<f64>>, f64) {
+pub(super) fn axis_angle(rotation: &Matrix3<f64>) -> (Unit<Vector3<f64>>, f64) {
     let twist = Vector3::new(
         rotation[(2, 1)] - rotation[(1, 2)],
         rotation[(0, 2)] - rotation[(2, 0)],

@@ -1,0 +1,162 @@
+//! A point group in its standard frame: elements, classes, irreps, and what is asked of them.
+//!
+//! Standard frame: z is the principal axis; C2' of Dn, Dnh, Dnd along x; σv of Cnv is the xz plane; Cs has z across the mirror;
+//! O and Oh have C4 along x, y, z; T, Td, Th have C2 along x, y, z (S4 in Td); I and Ih have C5 along z, C2 along y and a second C5
+//! in the xz plane at (2, 0, 1)/√5 (so σ(xz) in Ih); linear groups lie along z.
+//!
+//! Linear groups are worked out on a finite stand-in: C26v for C∞v, D26h for D∞h keep all |m| ≤ 12 apart, which is what products of
+//! two functions with l ≤ 6 need. Irreps of higher |m| are not listed, and a product that reaches them is an error.
+
+use super::Operation;
+use super::error::GroupError;
+use super::functions::Functions;
+use super::irrep_name::IrrepName;
+use super::multiplication::Multiplication;
+use super::schoenflies::GroupName;
+use nalgebra::{DMatrix, Matrix3};
+
+/// One operation of a group.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Element {
+    /// Its matrix in the standard frame.
+    pub operation: Operation,
+    /// ASCII symbol: `E`, `C3`, `C3^2`, `S6^5`, `i`, `sigma_h`, `C2'(1)`.
+    pub symbol: String,
+    /// Index into [`PointGroup::classes`].
+    pub class_idx: usize,
+}
+
+/// A class of conjugate elements.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Class {
+    /// ASCII symbol with the number of elements: `2C3`, `3sigma_v`.
+    pub symbol: String,
+    /// Indices into [`PointGroup::elements`], ascending.
+    pub members: Vec<usize>,
+    /// What the class counts in a mean over the group: size/|G|. For atoms a weight of quadrature over angles.
+    pub weight: f64,
+}
+
+/// An irreducible representation, or a pair of complex conjugates as one real representation.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Irrep {
+    /// Its name.
+    pub name: IrrepName,
+    /// Dimension of the real representation: 2 for a pair.
+    pub dimension: usize,
+    /// 1, or 2 for a pair: the mean of χ² over the group.
+    pub constituents: usize,
+    /// One real character per class.
+    pub characters: Vec<f64>,
+    /// One real orthogonal matrix (dimension × dimension) per element; column j is the image of partner j.
+    pub matrices: Vec<DMatrix<f64>>,
+    /// The partner functions in the order of the rows, `x`, `y`, `z2`, `x2-y2`, `Rx` …; plain numbers where no simple function serves.
+    pub partners: Vec<String>,
+    /// Which simple functions belong to it.
+    pub functions: Functions,
+}
+
+/// A point group with everything worked out.
+#[derive(Debug, Clone)]
+pub struct PointGroup {
+    pub(super) name: GroupName,
+    pub(super) elements: Vec<Element>,
+    pub(super) multiplication: Multiplication,
+    pub(super) classes: Vec<Class>,
+    pub(super) irreps: Vec<Irrep>,
+}
+
+/// Another choice of axes that fits the group as well, and what it does to the names.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Setting {
+    /// Rows are the axes of the other setting: it takes standard coordinates to those of the setting.
+    pub rotation: Matrix3<f64>,
+    /// In words.
+    pub description: String,
+    /// (irrep here, what it is called in the other setting), for those that change.
+    pub swaps: Vec<(usize, usize)>,
+}
+
+/// A subgroup, up to conjugacy, in its own standard frame.
+#[derive(Debug, Clone)]
+pub struct Subgroup {
+    /// The subgroup.
+    pub group: PointGroup,
+    /// For each element of `group` the index of the same operation in the parent.
+    pub embedding: Vec<usize>,
+    /// Takes coordinates of the parent's frame to those of the subgroup's: rows are the subgroup's axes.
+    pub axes: Matrix3<f64>,
+    /// In words: which axes are kept.
+    pub description: String,
+}
+
+impl PointGroup {
+    /// The group of this name in its standard frame.
+    ///
+    /// # Errors
+    /// [`GroupError::AxisOrder`] for an n that is not supported.
+    pub fn standard(name: GroupName) -> Result<Self, GroupError> {
+        let _ = name.validated()?;
+        todo!("group::standard")
+    }
+
+    /// Its name.
+    #[must_use]
+    pub fn name(&self) -> GroupName {
+        self.name
+    }
+
+    /// Number of elements held: the order, or for continuous groups the size of the stand-in.
+    #[must_use]
+    pub fn order(&self) -> usize {
+        self.elements.len()
+    }
+
+    /// Whether the group has infinitely many elements, of which a sample is held.
+    #[must_use]
+    pub fn is_continuous(&self) -> bool {
+        self.name.is_continuous()
+    }
+
+    /// The elements, identity first.
+    #[must_use]
+    pub fn elements(&self) -> &[Element] {
+        &self.elements
+    }
+
+    /// Index of a·b: first b, then a.
+    #[must_use]
+    pub fn multiply(&self, a: usize, b: usize) -> usize {
+        self.multiplication.product(a, b)
+    }
+
+    /// Index of the inverse.
+    #[must_use]
+    pub fn inverse(&self, a: usize) -> usize {
+        self.multiplication.inverse(a)
+    }
+
+    /// The classes, that of the identity first.
+    #[must_use]
+    pub fn classes(&self) -> &[Class] {
+        &self.classes
+    }
+
+    /// The irreps in the order of printed tables.
+    #[must_use]
+    pub fn irreps(&self) -> &[Irrep] {
+        &self.irreps
+    }
+
+    /// The index of an irrep by name.
+    ///
+    /// # Errors
+    /// [`GroupError::NoSuchIrrep`] with the names there are.
+    pub fn irrep_idx(&self, name: &IrrepName) -> Result<usize, GroupError> {
+        self.irreps.iter().position(|irrep| irrep.name == *name).ok_or_else(|| GroupError::NoSuchIrrep {
+            group: self.name.to_string(),
+            irrep: name.to_string(),
+            expected: self.irreps.iter().map(|irrep| irrep.name.to_string()).collect::<Vec<_>>().join(", "),
+        })
+    }
+}
