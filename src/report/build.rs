@@ -50,19 +50,22 @@ pub fn source(file: &str, molecule: &Molecule) -> Source {
     }
 }
 
+/// Another choice of axes with the names that swap.
+#[must_use]
+pub fn setting_entry(group: &PointGroup, description: &str, swaps: &[(usize, usize)]) -> SettingEntry {
+    let name = |irrep: usize| group.irreps()[irrep].name.to_string();
+    SettingEntry {
+        description: description.to_owned(),
+        swaps: swaps.iter().map(|&(here, there)| (name(here), json!(name(there)))).collect(),
+    }
+}
+
 /// The geometry block.
 #[must_use]
 pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
     let group = &symmetry.group;
     let angstrom = |bohr: f64| bohr * ANGSTROM_PER_BOHR;
     let axes = &symmetry.frame.axes;
-    let setting = |setting: &crate::group::OtherSetting| {
-        let mut swaps = Map::new();
-        for &(here, there) in &setting.swaps {
-            swaps.insert(group.irreps()[here].name.to_string(), json!(group.irreps()[there].name.to_string()));
-        }
-        SettingEntry { description: setting.description.clone(), swaps }
-    };
     Geometry {
         point_group: group.name().to_string(),
         order: (!group.name().is_continuous()).then(|| group.elements().len()),
@@ -74,7 +77,11 @@ pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64)
         centre_bohr: symmetry.frame.centre.coords.into(),
         axes: std::array::from_fn(|row| std::array::from_fn(|column| axes[(row, column)])),
         axes_convention: symmetry.frame.convention.clone(),
-        other_settings: symmetry.other_settings.iter().map(setting).collect(),
+        other_settings: symmetry
+            .other_settings
+            .iter()
+            .map(|setting| setting_entry(group, &setting.description, &setting.swaps))
+            .collect(),
         ladder: detection
             .ladder
             .iter()

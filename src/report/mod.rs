@@ -5,5 +5,6 @@
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod table;
 pub mod text;
 pub mod unicode;

@@ -38,7 +38,7 @@ fn head(out: &mut String, name: &str, text: &str) {
 }
 
 /// Breaks text at blanks so that no line is longer than `width` characters.
-fn wrap(text: &str, width: usize) -> Vec<String> {
+pub(super) fn wrap(text: &str, width: usize) -> Vec<String> {
     let mut lines = vec![String::new()];
     for word in text.split_whitespace() {
         let line = lines.last_mut().expect("a line is always there");
@@ -227,14 +227,14 @@ fn checks(document: &Document, sets: &[SetEntry]) -> String {
     out
 }
 
-fn table() -> Table {
+pub(super) fn table() -> Table {
     let mut table = Table::new();
     table.load_preset(presets::NOTHING);
     table
 }
 
 /// Lines of a table without blanks at their ends.
-fn push_table(out: &mut String, table: &Table) {
+pub(super) fn push_table(out: &mut String, table: &Table) {
     for line in table.lines() {
         let _ = writeln!(out, "{}", line.trim_end());
     }
