@@ -152,3 +152,33 @@ fn dump() {
         }
     }
 }
+#[test]
+fn dump_exact() {
+    for name in std::env::var("DUMP").unwrap_or_default().split(',') {
+        let Ok(name) = name.parse() else { continue };
+        let group = group(name);
+        println!(
+            "{name}: {:?}",
+            group.printed_classes().iter().map(|c| group.classes()[*c].pretty()).collect::<Vec<_>>()
+        );
+        for irrep in group.irreps() {
+            println!(
+                "{:6} {:?}",
+                irrep.name.to_string(),
+                group
+                    .printed_classes()
+                    .iter()
+                    .map(|c| orbsieve::group::exact_character(
+                        &group,
+                        &group.classes()[*c],
+                        irrep,
+                        irrep.characters[*c]
+                    ))
+                    .collect::<Vec<_>>()
+            );
+        }
+        for s in group.subgroups().unwrap() {
+            println!("  {} {}", s.group.name(), s.description);
+        }
+    }
+}
