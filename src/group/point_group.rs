@@ -72,30 +72,6 @@ pub struct PointGroup {
     pub(super) irreps: Vec<Irrep>,
 }
 
-/// Another choice of axes that fits the group as well, and what it does to the names.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Setting {
-    /// Rows are the axes of the other setting: it takes standard coordinates to those of the setting.
-    pub rotation: Matrix3<f64>,
-    /// In words.
-    pub description: String,
-    /// (irrep here, what it is called in the other setting), for those that change.
-    pub swaps: Vec<(usize, usize)>,
-}
-
-/// A subgroup, up to conjugacy, in its own standard frame.
-#[derive(Debug, Clone)]
-pub struct Subgroup {
-    /// The subgroup.
-    pub group: PointGroup,
-    /// For each element of `group` the index of the same operation in the parent.
-    pub embedding: Vec<usize>,
-    /// Takes coordinates of the parent's frame to those of the subgroup's: rows are the subgroup's axes.
-    pub axes: Matrix3<f64>,
-    /// In words: which axes are kept.
-    pub description: String,
-}
-
 /// An irrep with its name and characters, before its matrices.
 struct NamedIrrep {
     name: IrrepName,
@@ -147,6 +123,37 @@ fn named_irreps(
     Ok(irreps)
 }
 
+/// Joins the two families of planes through the axis of a linear molecule, and of half turns across it.
+///
+/// The finite stand-in parts them, the irreps of the linear group do not.
+fn joined(
+    classes: Vec<Vec<usize>>,
+    mut irreps: Vec<NamedIrrep>,
+    operations: &[Matrix3<f64>],
+) -> (Vec<Vec<usize>>, Vec<NamedIrrep>) {
+    // What reflects the xy plane in a line, and what that does to z.
+    let family = |class: &[usize]| {
+        let matrix = operations[class[0]];
+        (matrix[(0, 0)] * matrix[(1, 1)] < matrix[(0, 1)] * matrix[(1, 0)]).then_some(matrix[(2, 2)] > 0.0)
+    };
+    let mut kept: Vec<(usize, Vec<usize>)> = Vec::new();
+    for (at, class) in classes.into_iter().enumerate() {
+        let wanted = family(&class);
+        match kept.iter_mut().find(|(_, other)| wanted.is_some() && family(other) == wanted) {
+            Some((_, other)) => other.extend(class),
+            None => kept.push((at, class)),
+        }
+    }
+    for irrep in &mut irreps {
+        irrep.characters = kept.iter().map(|(at, _)| irrep.characters[*at]).collect();
+    }
+    let mut classes: Vec<Vec<usize>> = kept.into_iter().map(|(_, class)| class).collect();
+    for class in &mut classes {
+        class.sort_unstable();
+    }
+    (classes, irreps)
+}
+
 /// Elements and classes with their symbols.
 pub(super) fn elements_and_classes(
     name: GroupName,
@@ -189,6 +196,8 @@ impl PointGroup {
         let multiplication = Multiplication::of(&operations, |a, b| a * b, same)?;
         let members = multiplication.classes();
         let named = named_irreps(name, &operations, &multiplication, &members)?;
+        let (members, named) =
+            if name.is_continuous() { joined(members, named, &operations) } else { (members, named) };
         let by_element: Vec<Vec<f64>> =
             named.iter().map(|irrep| irrep.by_element(&members, operations.len())).collect();
         let sought: Vec<Sought<'_>> =
@@ -235,10 +244,39 @@ impl PointGroup {
         self.multiplication.inverse(a)
     }
 
+    /// The smallest power above 0 that is the identity.
+    #[must_use]
+    pub fn element_order(&self, a: usize) -> usize {
+        self.multiplication.powers(a).len()
+    }
+
     /// The classes, that of the identity first.
     #[must_use]
     pub fn classes(&self) -> &[Class] {
         &self.classes
+    }
+
+    /// The classes that a printed table shows: all of a finite group, of a continuous one those that stand for the rest.
+    ///
+    /// For linear groups E, C(φ), σv (and i, S(φ), C2'), for atoms E, C(φ), i, iC(φ), in which characters are functions of φ:
+    /// see [`super::exact_character`].
+    #[must_use]
+    pub fn printed_classes(&self) -> Vec<usize> {
+        let shown = |class: &Class| match self.name {
+            GroupName::Cinfv | GroupName::Dinfh => {
+                let symbol = class.symbol.as_str();
+                matches!(symbol, "E" | "2C(phi)" | "i" | "2S(phi)") || symbol.starts_with("inf")
+            }
+            GroupName::K => matches!(class.symbol.as_str(), "E" | "i" | "C(phi)" | "iC(phi)"),
+            _ => true,
+        };
+        let mut printed: Vec<usize> = (0..self.classes.len()).filter(|&at| shown(&self.classes[at])).collect();
+        if self.is_continuous() {
+            // Turns before inversion and its products, planes with the turns, as in printed tables.
+            let order = ["E", "2C(phi)", "C(phi)", "infsigma_v", "i", "2S(phi)", "iC(phi)", "infC2'"];
+            printed.sort_by_key(|&at| order.iter().position(|symbol| *symbol == self.classes[at].symbol));
+        }
+        printed
     }
 
     /// The irreps in the order of printed tables.
