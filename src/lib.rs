@@ -7,6 +7,6 @@
 
 pub mod diagnostic;
 pub mod grammar;
-pub mod group;
 pub mod model;
+pub mod group;
 pub mod wavefunction;

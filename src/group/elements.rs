@@ -3,6 +3,7 @@
 //! Not here: their products (`group::multiplication`), their symbols (`group::symbols`).
 
 use super::exact::{cos_turn, sin_turn};
+use super::multiplication;
 use super::operation::axis_angle;
 use super::schoenflies::GroupName;
 use nalgebra::{Matrix3, Vector3};
@@ -139,20 +140,10 @@ fn icosahedral_rotations() -> Vec<Matrix3<f64>> {
     })
 }
 
-/// All products of generators.
+/// All products of generators, at most 60.
 fn closure(generators: &[Matrix3<f64>]) -> Vec<Matrix3<f64>> {
-    let mut elements = vec![Matrix3::identity()];
-    let mut next = 0;
-    while let Some(&element) = elements.get(next) {
-        for generator in generators {
-            let product = generator * element;
-            if !elements.iter().any(|known| same(known, &product)) {
-                elements.push(product);
-            }
-        }
-        next += 1;
-    }
-    elements
+    multiplication::closure(Matrix3::identity(), generators, |a, b| a * b, same, 60)
+        .expect("rotations of polyhedra are at most 60")
 }
 
 /// Sorts rotations by the rank of (order of the axis, power), then power, then axis: from z down, from x round.

@@ -85,6 +85,16 @@ pub enum GroupError {
         /// The limit.
         limit: f64,
     },
+    /// A representation whose irreps of the table do not add up.
+    #[error("irreps of {group} make up {found} of {expected} dimensions; the rest is beyond the irreps kept")]
+    Incomplete {
+        /// Name of the group.
+        group: String,
+        /// Sum of dimensions found.
+        found: f64,
+        /// Dimension of the representation.
+        expected: f64,
+    },
     /// A product that leaves the irreps kept for a continuous group.
     #[error("{a} times {b} reaches {reach}; irreps of this continuous group are kept up to {limit}")]
     BeyondTable {

@@ -85,8 +85,9 @@ pub enum IrrepName {
 /// Letters by angular momentum, the usual order after F with J, and letters already used, left out.
 const ATOMIC_LETTERS: [char; 13] = ['S', 'P', 'D', 'F', 'G', 'H', 'I', 'K', 'L', 'M', 'N', 'O', 'Q'];
 
-/// By |m|: ASCII word, capital, small letter; from 5 on the Greek letters follow the Latin ones of angular momentum.
-const LINEAR_LETTERS: [(&str, char, char); 12] = [
+/// By |m|: ASCII word, capital, small letter; from 5 on the Greek letters follow the Latin ones of angular momentum,
+/// with Θ for Q.
+const LINEAR_LETTERS: [(&str, char, char); 13] = [
     ("Sigma", 'Σ', 'σ'),
     ("Pi", 'Π', 'π'),
     ("Delta", 'Δ', 'δ'),
@@ -99,6 +100,7 @@ const LINEAR_LETTERS: [(&str, char, char); 12] = [
     ("Mu", 'Μ', 'μ'),
     ("Nu", 'Ν', 'ν'),
     ("Omicron", 'Ο', 'ο'),
+    ("Theta", 'Θ', 'θ'),
 ];
 
 impl Parity {
@@ -276,15 +278,9 @@ fn parity(text: &str) -> Option<Option<Parity>> {
 fn linear(plain: &str) -> Option<IrrepName> {
     const SHORT: [(&str, u8); 3] = [("sg", 0), ("dlt", 2), ("del", 2)];
     let words = LINEAR_LETTERS.iter().zip(0_u8..).map(|((word, _, _), m)| (word.to_lowercase(), m));
-    let numbered = plain.strip_prefix('e').and_then(|rest| {
-        let digits = rest.len() - rest.trim_start_matches(|c: char| c.is_ascii_digit()).len();
-        let (number, rest) = rest.split_at(digits);
-        let m: u8 = number.parse().ok()?;
-        // Only beyond the letters, so that E1g stays a Mulliken name.
-        (usize::from(m) >= LINEAR_LETTERS.len() && rest.starts_with('_')).then_some((m, rest.to_owned()))
-    });
-    let (m, rest) = numbered
-        .or_else(|| words.into_iter().find_map(|(word, m)| plain.strip_prefix(&word).map(|rest| (m, rest.to_owned()))))
+    let (m, rest) = words
+        .into_iter()
+        .find_map(|(word, m)| plain.strip_prefix(&word).map(|rest| (m, rest.to_owned())))
         .or_else(|| {
             // "sg" alone would be the atomic S_g.
             SHORT.iter().find_map(|(short, m)| {
@@ -347,11 +343,11 @@ mod tests {
     fn names_survive_a_round_trip() {
         for text in [
             "A1g", "B2u", "E''", "A2'", "T1u", "Gg", "Hu", "E10u", "A", "Sigma_g+", "Sigma_u-", "Sigma+", "Pi_u",
-            "Delta_g", "Eta_u", "E12_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u",
+            "Delta_g", "Eta_u", "Theta_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u",
         ] {
             let name: IrrepName = text.parse().unwrap();
             assert_eq!(name.to_string(), text);
-            if !matches!(text, "F_u" | "H_u" | "E12_g") {
+            if !matches!(text, "F_u" | "H_u") {
                 assert_eq!(name.pretty().parse::<IrrepName>().unwrap(), name, "{}", name.pretty());
             }
         }

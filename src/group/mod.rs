@@ -2,6 +2,8 @@
 //!
 //! Knows no molecule, basis or file.
 
+mod atomic;
+pub mod characters;
 mod elements;
 pub mod error;
 mod exact;
@@ -9,17 +11,24 @@ pub mod functions;
 pub mod harmonics;
 pub mod identify;
 pub mod irrep_name;
+mod matrices;
+mod mulliken;
 pub mod multiplication;
 pub mod operation;
 pub mod point_group;
 pub mod products;
 pub mod schoenflies;
+pub mod settings;
 pub mod subgroups;
+pub mod symbols;
 pub mod symmetry;
 
 pub use error::GroupError;
-pub use identify::identify;
+pub use exact::exact_character;
+pub use identify::{identify, standard_frames};
 pub use irrep_name::IrrepName;
 pub use operation::Operation;
-pub use point_group::{Class, Element, Irrep, PointGroup, Setting, Subgroup};
+pub use point_group::{Class, Element, Irrep, PointGroup};
 pub use schoenflies::GroupName;
+pub use settings::Setting;
+pub use subgroups::Subgroup;

@@ -8,11 +8,17 @@
 //! two functions with l ≤ 6 need. Irreps of higher |m| are not listed, and a product that reaches them is an error.
 
 use super::Operation;
+use super::atomic;
+use super::characters::{class_of, complex_irreps};
+use super::elements::{same, standard_operations};
 use super::error::GroupError;
 use super::functions::Functions;
 use super::irrep_name::IrrepName;
+use super::matrices::{Found, Sought, realise};
+use super::mulliken::Landmarks;
 use super::multiplication::Multiplication;
 use super::schoenflies::GroupName;
+use super::symbols::{pretty, symbols};
 use nalgebra::{DMatrix, Matrix3};
 
 /// One operation of a group.
@@ -66,28 +72,83 @@ pub struct PointGroup {
     pub(super) irreps: Vec<Irrep>,
 }
 
-/// Another choice of axes that fits the group as well, and what it does to the names.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Setting {
-    /// Rows are the axes of the other setting: it takes standard coordinates to those of the setting.
-    pub rotation: Matrix3<f64>,
-    /// In words.
-    pub description: String,
-    /// (irrep here, what it is called in the other setting), for those that change.
-    pub swaps: Vec<(usize, usize)>,
+/// An irrep with its name and characters, before its matrices.
+struct NamedIrrep {
+    name: IrrepName,
+    dimension: usize,
+    constituents: usize,
+    characters: Vec<f64>,
 }
 
-/// A subgroup, up to conjugacy, in its own standard frame.
-#[derive(Debug, Clone)]
-pub struct Subgroup {
-    /// The subgroup.
-    pub group: PointGroup,
-    /// For each element of `group` the index of the same operation in the parent.
-    pub embedding: Vec<usize>,
-    /// Takes coordinates of the parent's frame to those of the subgroup's: rows are the subgroup's axes.
-    pub axes: Matrix3<f64>,
-    /// In words: which axes are kept.
-    pub description: String,
+impl NamedIrrep {
+    fn by_element(&self, classes: &[Vec<usize>], order: usize) -> Vec<f64> {
+        class_of(order, classes).into_iter().map(|class| self.characters[class]).collect()
+    }
+
+    fn sought<'a>(&self, characters: &'a [f64]) -> Sought<'a> {
+        Sought { dimension: self.dimension, constituents: self.constituents, characters }
+    }
+
+    fn with(self, found: Found) -> Irrep {
+        let Self { name, dimension, constituents, characters } = self;
+        let Found { matrices, partners, functions } = found;
+        Irrep { name, dimension, constituents, characters, matrices, partners, functions }
+    }
+}
+
+/// Real irreps in the order of printed tables: complex conjugates joined, names given.
+fn named_irreps(
+    name: GroupName,
+    operations: &[Matrix3<f64>],
+    multiplication: &Multiplication,
+    classes: &[Vec<usize>],
+) -> Result<Vec<NamedIrrep>, GroupError> {
+    let landmarks = Landmarks::of(name, operations);
+    let class_of = class_of(operations.len(), classes);
+    let mut irreps = Vec::new();
+    for (at, irrep) in complex_irreps(multiplication, classes)?.into_iter().enumerate() {
+        // Of a pair the first stands for both.
+        if irrep.conjugate < at {
+            continue;
+        }
+        let constituents = if irrep.conjugate == at { 1 } else { 2 };
+        let dimension = irrep.dimension * constituents;
+        let characters: Vec<f64> =
+            irrep.characters.iter().map(|character| character.re * constituents as f64).collect();
+        if let Some(name) = landmarks.name(dimension, |element| characters[class_of[element]]) {
+            irreps.push(NamedIrrep { name, dimension, constituents, characters });
+        }
+    }
+    irreps.sort_by_key(|irrep| irrep.name);
+    Ok(irreps)
+}
+
+/// Elements and classes with their symbols.
+pub(super) fn elements_and_classes(
+    name: GroupName,
+    operations: &[Matrix3<f64>],
+    members: Vec<Vec<usize>>,
+) -> (Vec<Element>, Vec<Class>) {
+    let order = operations.len();
+    let class_of = class_of(order, &members);
+    let (symbols, class_symbols) = symbols(name, operations, &members);
+    let elements = operations.iter().zip(symbols).zip(class_of).map(|((matrix, symbol), class_idx)| {
+        let operation = Operation::new(*matrix, 1e-9).expect("operations of named groups are orthogonal to 1e-13");
+        Element { operation, symbol, class_idx }
+    });
+    let classes = members.into_iter().zip(class_symbols).map(|(members, symbol)| {
+        let weight = members.len() as f64 / order as f64;
+        Class { symbol, members, weight }
+    });
+    (elements.collect(), classes.collect())
+}
+
+impl Class {
+    /// The symbol as printed: `2C₃`, `3σv`.
+    #[must_use]
+    pub fn pretty(&self) -> String {
+        pretty(&self.symbol)
+    }
 }
 
 impl PointGroup {
@@ -96,8 +157,22 @@ impl PointGroup {
     /// # Errors
     /// [`GroupError::AxisOrder`] for an n that is not supported.
     pub fn standard(name: GroupName) -> Result<Self, GroupError> {
-        let _ = name.validated()?;
-        todo!("group::standard")
+        let name = name.validated()?;
+        if name == GroupName::K {
+            return atomic::full_rotation_group();
+        }
+        let operations = standard_operations(name);
+        let multiplication = Multiplication::of(&operations, |a, b| a * b, same)?;
+        let members = multiplication.classes();
+        let named = named_irreps(name, &operations, &multiplication, &members)?;
+        let by_element: Vec<Vec<f64>> =
+            named.iter().map(|irrep| irrep.by_element(&members, operations.len())).collect();
+        let sought: Vec<Sought<'_>> =
+            named.iter().zip(&by_element).map(|(irrep, characters)| irrep.sought(characters)).collect();
+        let realised = realise(name, &operations, &multiplication, &sought)?;
+        let irreps = named.into_iter().zip(realised).map(|(irrep, found)| irrep.with(found)).collect();
+        let (elements, classes) = elements_and_classes(name, &operations, members);
+        Ok(Self { name, elements, multiplication, classes, irreps })
     }
 
     /// Its name.
@@ -134,6 +209,12 @@ impl PointGroup {
     #[must_use]
     pub fn inverse(&self, a: usize) -> usize {
         self.multiplication.inverse(a)
+    }
+
+    /// The smallest power above 0 that is the identity.
+    #[must_use]
+    pub fn element_order(&self, a: usize) -> usize {
+        self.multiplication.powers(a).len()
     }
 
     /// The classes, that of the identity first.
