@@ -6,12 +6,12 @@
 
 use super::arrangement::Arrangement;
 use super::fit::best_turn;
-use nalgebra::{Matrix3, Vector3};
+use nalgebra::Matrix3;
 use std::collections::BTreeSet;
 
 /// A permutation of sites with the orthogonal matrix that comes nearest to it.
 #[derive(Debug, Clone, PartialEq)]
-pub(super) struct SiteOperation {
+pub struct SiteOperation {
     /// Site i goes to `permutation[i]`.
     pub permutation: Vec<u32>,
     /// Whether the determinant is +1.
@@ -24,7 +24,7 @@ pub(super) struct SiteOperation {
 
 impl SiteOperation {
     /// The best fit to a permutation.
-    pub fn fitted(arrangement: &Arrangement, permutation: Vec<u32>, proper: bool) -> Option<Self> {
+    pub(super) fn fitted(arrangement: &Arrangement, permutation: Vec<u32>, proper: bool) -> Option<Self> {
         let positions = &arrangement.positions;
         let images = permutation.iter().map(|&image| &positions[image as usize]);
         let matrix = best_turn(positions.iter().zip(images.clone()), proper)?;
@@ -34,12 +34,12 @@ impl SiteOperation {
     }
 
     /// Nothing moves.
-    pub fn identity(n_sites: usize) -> Self {
+    pub(super) fn identity(n_sites: usize) -> Self {
         Self { permutation: (0_u32..).take(n_sites).collect(), proper: true, matrix: Matrix3::identity(), displacement: 0.0 }
     }
 
     /// The permutation of first `other`, then `self`.
-    pub fn after(&self, other: &Self) -> Vec<u32> {
+    pub(super) fn after(&self, other: &Self) -> Vec<u32> {
         other.permutation.iter().map(|&image| self.permutation[image as usize]).collect()
     }
 }
@@ -273,9 +273,4 @@ impl Shells {
         let costs = self.sites.iter().map(|&at| (cost(at), at));
         costs.min_by(|a, b| a.0.total_cmp(&b.0)).filter(|(cost, _)| cost.is_finite()).map(|(_, at)| at)
     }
-}
-
-/// Largest distance of a site from the line through the centroid along `line`.
-pub(super) fn distance_from_line(positions: &[Vector3<f64>], line: &Vector3<f64>) -> f64 {
-    positions.iter().map(|x| x.cross(line).norm()).fold(0.0, f64::max)
 }
