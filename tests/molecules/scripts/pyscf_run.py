@@ -10,7 +10,7 @@ import numpy as np
 from pyscf import gto, scf, dft, lib
 from pyscf.tools import molden
 
-from shapes import moved
+from shapes import moved, random_turn
 
 HERE = os.path.dirname(os.path.abspath(__file__))
 OUT = os.path.dirname(HERE)
@@ -31,7 +31,60 @@ def molecule(atoms, basis, charge=0, spin=0, cart=False, seed=None, ecp=None):
     return mol
 
 
-def solve(mol, method="auto", xc=None, shift=0.0, guess="minao", dm0=None, newton=False, grid=6):
+def harmonic_turns(mol, matrix, lmax):
+    """How the functions of each l turn under `matrix`, from values of libcint at points."""
+    points = np.random.default_rng(7).normal(size=(200, 3))
+    out = []
+    for l in range(lmax + 1):
+        one = gto.M(atom="He 0 0 0", basis={"He": [[l, [0.5, 1.0]]]}, unit="Bohr", cart=mol.cart, verbose=0)
+        kind = "GTOval_cart" if mol.cart else "GTOval_sph"
+        here, there = one.eval_gto(kind, points), one.eval_gto(kind, points @ matrix)
+        out.append(np.linalg.lstsq(here, there, rcond=None)[0])
+    return out
+
+
+def operation_matrix(mol, matrix, centre):
+    """The operation on the basis: column k is the image of function k."""
+    xyz = mol.atom_coords() - centre
+    turns = harmonic_turns(mol, matrix, max(mol.bas_angular(i) for i in range(mol.nbas)))
+    loc = mol.ao_loc_nr()
+    shells = [[i for i in range(mol.nbas) if mol.bas_atom(i) == a] for a in range(mol.natm)]
+    out = np.zeros((mol.nao, mol.nao))
+    for a in range(mol.natm):
+        b = int(np.argmin(np.linalg.norm(xyz - matrix @ xyz[a], axis=1)))
+        assert np.linalg.norm(xyz[b] - matrix @ xyz[a]) < 1e-8
+        for i, j in zip(shells[a], shells[b]):
+            d = turns[mol.bas_angular(i)]
+            n = d.shape[0]
+            for k in range(mol.bas_nctr(i)):
+                out[loc[j] + k * n:loc[j] + (k + 1) * n, loc[i] + k * n:loc[i] + (k + 1) * n] = d
+    return out
+
+
+def averaged(mf, operations, seed):
+    """Averages the Fock matrix over a group, so that neither grid nor an instability breaks it.
+
+    `operations` belong to the molecule as built by shapes.py, `seed` is its turn."""
+    r, centre = random_turn(seed) if seed is not None else (np.eye(3), np.zeros(3))
+    mol = mf.mol
+    ops = [operation_matrix(mol, r @ m @ r.T, centre / lib.param.BOHR) for m in operations]
+    s = mol.intor_symmetric("int1e_ovlp")
+    assert all(np.abs(o.T @ s @ o - s).max() < 1e-9 for o in ops)
+    plain = mf.get_veff
+
+    def veff(mol=None, dm=None, *args, **kw):
+        v = plain(mol, dm, *args, **kw)
+        mean = lambda m: sum(o.T @ m @ o for o in ops) / len(ops)
+        arr = np.asarray(v)
+        arr = mean(arr) if arr.ndim == 2 else np.array([mean(m) for m in arr])
+        return lib.tag_array(arr, **getattr(v, "__dict__", {}))
+
+    mf.get_veff = veff
+    return mf
+
+
+def solve(mol, method="auto", xc=None, shift=0.0, guess="minao", dm0=None, newton=False, grid=6,
+          group=None, seed=None):
     """Restricted for closed shells, unrestricted otherwise; gradient below 1e-8."""
     if method == "auto":
         method = "R" if mol.spin == 0 else "U"
@@ -41,6 +94,8 @@ def solve(mol, method="auto", xc=None, shift=0.0, guess="minao", dm0=None, newto
     if xc:
         mf.xc = xc
         mf.grids.level = grid
+    if group is not None:
+        averaged(mf, group, seed)
     mf.init_guess = guess
     mf.direct_scf_tol = 1e-15
     mf.conv_tol, mf.conv_tol_grad, mf.max_cycle = 1e-12, 1e-8, 400

@@ -76,6 +76,18 @@ GROUP_T = generated([C3_111, turn((0, 0, 1), 180)])
 GROUP_O = generated([C3_111, turn((0, 0, 1), 90)])
 PHI = (1 + sqrt(5)) / 2
 GROUP_I = generated([C3_111, turn((0, 1, PHI), 72)])
+
+
+def dihedral(n, mirror=None):
+    """Dn about z with a C2 along x; with "d" or "h" the group Dnd (mirrors between the C2) or Dnh."""
+    gens = [turn((0, 0, 1), 360 / n), turn((1, 0, 0), 180)]
+    if mirror == "h":
+        gens.append(np.diag([1, 1, -1.0]))
+    if mirror == "d":
+        gens.append(np.diag([1, 1, -1.0]) @ turn((0, 0, 1), 180 / n))
+    return generated(gens)
+
+
 GROUP_S4 = generated([np.diag([1, 1, -1.0]) @ turn((0, 0, 1), 90)])
 
 
