@@ -135,7 +135,17 @@ def kept(energies, occupied, virtuals, close=1e-4):
     return n
 
 
-def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=None, energy=None):
+def shorten(path):
+    """Ten decimals for the coefficients, where a file would be too large."""
+    head, mark, body = open(path).read().partition("[MO]\n")
+    lines = []
+    for line in body.splitlines():
+        part = line.split()
+        lines.append(f" {part[0]} {float(part[1]):.10f}" if part[0].isdigit() else line)
+    open(path, "w").write(head + mark + "\n".join(lines) + "\n")
+
+
+def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=None, energy=None, compact=False):
     """Writes the file; checks orthonormality and that sets of the sizes `degenerate` occur
     and are equal within `tol` hartree."""
     mol = mf.mol
@@ -158,6 +168,8 @@ def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=No
             sizes, spread = levels(ee)
             assert spread < tol, f"{name}: sets spread by {spread:.1e}"
             seen.append(sizes)
+    if compact:
+        shorten(path)
     for d in degenerate:
         assert any(d in sizes for sizes in seen), f"{name}: no set of {d} in {seen}"
     size = os.path.getsize(path)

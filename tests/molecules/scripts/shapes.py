@@ -173,3 +173,238 @@ def sandwich(metal, twist, gap=1.65, cc=1.43, ch=1.08):
         out += ring("C", 5, r, sign * gap, sign * twist / 2)
         out += ring("H", 5, r + ch, sign * gap, sign * twist / 2)
     return out
+
+
+# ---- low symmetry ----------------------------------------------------------------
+
+def on_bond(p, towards, r):
+    """A point at distance r from p, towards another point."""
+    p, q = np.asarray(p, float), np.asarray(towards, float)
+    return p + r * (q - p) / np.linalg.norm(q - p)
+
+
+def third_arm(p, a, b, r):
+    """The remaining position of a flat three-coordinate atom p with neighbours a and b."""
+    p = np.asarray(p, float)
+    u = on_bond(p, a, 1) - p + on_bond(p, b, 1) - p
+    return p - r * u / np.linalg.norm(u)
+
+
+def two_arms(p, a, b, r):
+    """The two remaining positions of a tetrahedral atom p with neighbours a and b."""
+    p = np.asarray(p, float)
+    ua, ub = on_bond(p, a, 1) - p, on_bond(p, b, 1) - p
+    back, side = -(ua + ub), np.cross(ua, ub)
+    back, side = back / np.linalg.norm(back), side / np.linalg.norm(side)
+    half = radians(54.0)
+    return [p + r * (cos(half) * back + s * sin(half) * side) for s in (1, -1)]
+
+
+def bent(angle_r, angle):
+    """Spherical direction helper: distance and polar angle in the xz plane."""
+    return (angle_r * sin(radians(angle)), 0.0, angle_r * cos(radians(angle)))
+
+
+def chiral_methane():
+    """CHFClBr: four different arms, C1."""
+    arms = (("H", 1.09), ("F", 1.36), ("Cl", 1.76), ("Br", 1.94))
+    dirs = ((1, 1, 1), (1, -1, -1), (-1, 1, -1), (-1, -1, 1))
+    return [("C", (0, 0, 0))] + [(s, tuple(r / sqrt(3) * c for c in d)) for (s, r), d in zip(arms, dirs)]
+
+
+def hypochlorous():
+    return [("O", (0, 0, 0)), ("Cl", (0, 0, 1.69)), ("H", bent(0.964, 102.9))]
+
+
+def peroxide(dihedral_angle=112.0):
+    """H2O2 with its C2 along x."""
+    half = radians(dihedral_angle / 2)
+    out = []
+    for s in (1, -1):
+        out.append(("O", (0, 0, 0.73 * s)))
+    for s in (1, -1):
+        r, up = 0.965 * sin(radians(100)), -0.965 * cos(radians(100))
+        out.append(("H", (r * cos(half), s * r * sin(half), s * (0.73 + up))))
+    return out
+
+
+def anti_dihalide():
+    """CHFCl-CHFCl with all alike atoms opposite through the middle: Ci."""
+    c = np.array([0.765, 0, 0])
+    arms = []
+    for s, r, phi in (("H", 1.09, 0), ("F", 1.37, 120), ("Cl", 1.77, 240)):
+        d = turn((1, 0, 0), phi) @ np.array([cos(radians(70.5)), 0, sin(radians(70.5))])
+        arms.append((s, c + r * d))
+    out = [("C", tuple(c)), ("C", tuple(-c))]
+    for s, p in arms:
+        out += [(s, tuple(p)), (s, tuple(-p))]
+    return out
+
+
+def trans_difluoroethene():
+    c = np.array([0, 0, 0.66])
+    f = c + 1.345 * np.array([0, sin(radians(60.5)), cos(radians(60.5))])
+    h = c + 1.08 * np.array([0, -sin(radians(54.5)), cos(radians(54.5))])
+    return [(s, tuple(k * p)) for s, p in (("C", c), ("F", f), ("H", h)) for k in (1, -1)]
+
+
+def butadiene():
+    """Flat s-trans butadiene, C2h."""
+    a = np.array([0.0, 0.0, 0.735])
+    b = a + 1.34 * np.array([0, sin(radians(56)), cos(radians(56))])
+    h1 = third_arm(a, -a, b, 1.09)
+    u = on_bond(b, a, 1) - b
+    hs = [b + 1.085 * (turn((1, 0, 0), s * 121) @ u) for s in (1, -1)]
+    return [(s, tuple(k * np.asarray(p)))
+            for s, p in (("C", a), ("C", b), ("H", h1), ("H", hs[0]), ("H", hs[1])) for k in (1, -1)]
+
+
+def fluoromethyl_skew(twist=20.0):
+    """CH3-CF3 turned between staggered and eclipsed: C3."""
+    return ([("C", (0, 0, 0.75)), ("C", (0, 0, -0.75))] + ring("H", 3, 1.02, 1.13, twist)
+            + ring("F", 3, 1.25, -1.22, 0))
+
+
+def boric_acid():
+    """Flat B(OH)3, all arms bent the same way round: C3h."""
+    out = [("B", (0, 0, 0))] + ring("O", 3, 1.37)
+    h = np.array([1.37, 0, 0]) + 0.96 * np.array([cos(radians(66)), sin(radians(66)), 0])
+    return out + [("H", tuple(turn((0, 0, 1), 120 * k) @ h)) for k in range(3)]
+
+
+# ---- axial -----------------------------------------------------------------------
+
+def square_pyramid(x, y, basal, apical, angle=86.0):
+    t = radians(angle)
+    return [(x, (0, 0, 0)), (y, (0, 0, apical))] + ring(y, 4, basal * sin(t), basal * cos(t))
+
+
+def trigonal_bipyramid(x, y, equatorial, axial):
+    return [(x, (0, 0, 0)), (y, (0, 0, axial)), (y, (0, 0, -axial))] + ring(y, 3, equatorial)
+
+
+def half_sandwich(metal, n=5, gap=1.75):
+    """One flat CnHn ring under a metal: Cnv."""
+    r = 1.41 / (2 * sin(pi / n))
+    return [(metal, (0, 0, gap))] + ring("C", n, r) + ring("H", n, r + 1.08)
+
+
+def tub():
+    """Cyclooctatetraene, tub-shaped: D2d with mirrors x = 0 and y = 0."""
+    a, c = 0.67, 0.38
+    b = a + sqrt((1.47 ** 2 - 4 * c * c) / 2)
+    ops = generated([np.diag([1, 1, -1.0]) @ turn((0, 0, 1), 90), np.diag([-1.0, 1, 1])])
+    h = third_arm((a, b, c), (-a, b, c), (b, a, -c), 1.09)
+    return orbit("C", (a, b, c), ops) + orbit("H", h, ops)
+
+
+def silicic_acid(azimuth=35.0):
+    """Si(OH)4 with the arms turned so that only the fourfold rotoreflection remains: S4."""
+    axis = np.ones(3) / sqrt(3)
+    side = np.array([1, 1, -2]) / sqrt(6)
+    u = turn(axis, azimuth) @ side
+    o = 1.63 * axis
+    h = o + 0.96 * (cos(radians(62)) * axis + sin(radians(62)) * u)
+    return [("Si", (0, 0, 0))] + orbit("O", o, GROUP_S4) + orbit("H", h, GROUP_S4)
+
+
+def decaborate():
+    """B10H10: bicapped square antiprism, D4d."""
+    rho, h, cap = 1.294, 0.758, 1.845
+    out = [("B", (0, 0, cap)), ("B", (0, 0, -cap)), ("H", (0, 0, cap + 1.2)), ("H", (0, 0, -cap - 1.2))]
+    f = 1 + 1.2 / sqrt(rho * rho + h * h)
+    for s in (1, -1):
+        out += ring("B", 4, rho, s * h, 22.5 * s) + ring("H", 4, rho * f, s * h * f, 22.5 * s)
+    return out
+
+
+def dimer_of_rings(symbol, n, radius, gap, twist):
+    """Two regular n-rings face to face; twist 0 Dnh, 180/n Dnd, else Dn."""
+    return ring(symbol, n, radius, gap / 2, twist / 2) + ring(symbol, n, radius, -gap / 2, -twist / 2)
+
+
+def pinwheel(n, mirror):
+    """2n points in the plane (mirror True: Cnh) or with the outer ring lifted (Cn)."""
+    return ring("He", n, 2.2) + ring("He", n, 3.6, 0.0 if mirror else 0.8, 17.0)
+
+
+def rotoreflection(n):
+    """Points with only an improper axis of order n, each orbit at its own angle."""
+    ops = generated([np.diag([1, 1, -1.0]) @ turn((0, 0, 1), 360 / n)])
+    return orbit("He", (2.4, 0, 0.8), ops) + orbit("He", tuple(turn((0, 0, 1), 13) @ (4.0, 0, 1.7)), ops)
+
+
+# ---- cubic and icosahedral -------------------------------------------------------
+
+GROUP_TD = generated([C3_111, np.diag([1, 1, -1.0]) @ turn((0, 0, 1), 90)])
+GROUP_TH = generated([C3_111, turn((0, 0, 1), 180), -np.eye(3)])
+GROUP_OH = generated([C3_111, turn((0, 0, 1), 90), -np.eye(3)])
+GROUP_D3D_111 = generated([C3_111, turn((1, -1, 0), 180), -np.eye(3)])
+GROUP_D3_111 = generated([C3_111, turn((1, -1, 0), 180)])
+
+
+def neopentane(twist=20.0):
+    """C(CH3)4 with every methyl turned alike: T (Td at 0 or 60)."""
+    axis = np.ones(3) / sqrt(3)
+    side = np.array([1, 1, -2]) / sqrt(6)
+    c = 1.54 * axis
+    h = c + 0.364 * axis + 1.029 * (turn(axis, twist) @ side)
+    return [("C", (0, 0, 0))] + orbit("C", c, GROUP_T) + orbit("H", h, GROUP_T)
+
+
+def hexaaqua(metal, r, twist=0.0):
+    """Six flat waters in mutually perpendicular planes: Th; each turned alike about its bond: T."""
+    ops = GROUP_T if twist else GROUP_TH
+    h = turn((0, 0, 1), twist) @ np.array([0.78, 0, r + 0.58])
+    return [(metal, (0, 0, 0))] + orbit("O", (0, 0, r), ops) + orbit("H", h, ops)
+
+
+def hexaammine(metal, r, twist=0.0):
+    """Octahedral core; D3d at twist 0, D3 otherwise, the threefold axis along 111."""
+    ops = GROUP_D3_111 if twist else GROUP_D3D_111
+    out = [(metal, (0, 0, 0))] + orbit("N", (0, 0, r), ops)
+    first = np.array([0.95 / sqrt(2), 0.95 / sqrt(2), r + 0.37])
+    hs = [turn((0, 0, 1), twist + 120 * k) @ first for k in range(3)]
+    seen = []
+    for h in hs:
+        for s, p in orbit("H", h, ops):
+            if all(np.linalg.norm(np.subtract(p, q)) > 1e-6 for q in seen):
+                seen.append(p)
+    return out + [("H", p) for p in seen]
+
+
+def tris_chelate(metal="Co"):
+    """[M(en)3]: three ethylenediamine rings, D3 about z with a C2 along x."""
+    ops = dihedral(3)
+    phi = radians(27)
+    s2 = (1 - (1.33 / 1.97) ** 2) / (1 - sin(phi) ** 2)
+    s = sqrt(s2)
+    n = 1.97 * np.array([s * cos(phi), s * sin(phi), sqrt(1 - s2)])
+    alpha = np.arctan2(n[2], n[1]) - radians(40)
+    c = np.array([n[0] + 1.19, 0.755 * cos(alpha), 0.755 * sin(alpha)])
+    other = c * [1, -1, -1]
+    out = [(metal, (0, 0, 0))] + orbit("N", n, ops) + orbit("C", c, ops)
+    for h in two_arms(n, (0, 0, 0), c, 1.02) + two_arms(c, n, other, 1.09):
+        out += orbit("H", h, ops)
+    return out
+
+
+def icosahedral(symbol, radius, outer=None):
+    """Twelve vertices; `outer` adds a second shell on the same rays."""
+    v = np.array([0, 1, PHI]) / sqrt(1 + PHI * PHI)
+    out = orbit(symbol, radius * v, GROUP_I)
+    return out + (orbit(outer[0], outer[1] * v, GROUP_I) if outer else [])
+
+
+def fullerene(edge_short=1.40, edge_long=1.45):
+    """C60: the truncated icosahedron with two bond lengths, Ih, twofold axes along x, y and z."""
+    # on each edge of the icosahedron (length a) two atoms, at the distances edge_long from the vertices
+    a = 2 * edge_long + edge_short
+    k = a / 2
+    vertices = [k * np.asarray(p) for _, p in orbit("X", (0, 1, PHI), GROUP_I)]
+    out = []
+    for p in vertices:
+        for q in vertices:
+            if 0 < np.linalg.norm(p - q) < 1.1 * a:
+                out.append(("C", tuple(p + edge_long / a * (q - p))))
+    return out
