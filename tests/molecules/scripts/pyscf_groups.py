@@ -62,7 +62,7 @@ FILES = {
                                dict(shift=0.5, group=g.GROUP_D3_111, seed=231), dict(virtuals=10, degenerate=[2])),
     "cobalt_en_d3_sto3g": (g.tris_chelate(), "sto-3g", dict(seed=232, charge=3),
                            dict(shift=0.5, group=g.dihedral(3), seed=232),
-                           dict(virtuals=12, degenerate=[2], compact=True)),
+                           dict(virtuals=12, degenerate=[2])),
     "manganese_aqua_sextet_th_sto3g": (g.hexaaqua("Mn", 2.18), "sto-3g", dict(seed=233, charge=2, spin=5),
                                        dict(shift=0.5, group=g.GROUP_TH, seed=233),
                                        dict(virtuals=6, degenerate=[2, 3])),

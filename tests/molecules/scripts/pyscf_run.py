@@ -136,7 +136,7 @@ def kept(energies, occupied, virtuals, close=1e-4):
 
 
 def shorten(path):
-    """Ten decimals for the coefficients, where a file would be too large."""
+    """Ten decimals for the coefficients of a large file, to spare room."""
     head, mark, body = open(path).read().partition("[MO]\n")
     lines = []
     for line in body.splitlines():
@@ -145,7 +145,7 @@ def shorten(path):
     open(path, "w").write(head + mark + "\n".join(lines) + "\n")
 
 
-def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=None, energy=None, compact=False):
+def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=None, energy=None):
     """Writes the file; checks orthonormality and that sets of the sizes `degenerate` occur
     and are equal within `tol` hartree."""
     mol = mf.mol
@@ -168,7 +168,7 @@ def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=No
             sizes, spread = levels(ee)
             assert spread < tol, f"{name}: sets spread by {spread:.1e}"
             seen.append(sizes)
-    if compact:
+    if os.path.getsize(path) > 48 * 1024:
         shorten(path)
     for d in degenerate:
         assert any(d in sizes for sizes in seen), f"{name}: no set of {d} in {seen}"
