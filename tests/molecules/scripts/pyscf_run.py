@@ -168,7 +168,7 @@ def write(name, mf, virtuals=None, degenerate=(), tol=1e-8, folder=OUT, coeff=No
             sizes, spread = levels(ee)
             assert spread < tol, f"{name}: sets spread by {spread:.1e}"
             seen.append(sizes)
-    if os.path.getsize(path) > 48 * 1024:
+    if os.path.getsize(path) > 20 * 1024:
         shorten(path)
     for d in degenerate:
         assert any(d in sizes for sizes in seen), f"{name}: no set of {d} in {seen}"
