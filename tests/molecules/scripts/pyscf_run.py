@@ -107,7 +107,8 @@ def solve(mol, method="auto", xc=None, shift=0.0, guess="minao", dm0=None, newto
         dm0 = rough.make_rdm1()
     if newton:
         mf = mf.newton()
-        mf.conv_tol, mf.conv_tol_grad = 1e-12, 1e-8
+        # a flat minimum: rings turn almost freely in the broken density
+        mf.conv_tol, mf.conv_tol_grad = 1e-10, 1e-5
     mf.kernel(dm0)
     if not mf.converged:
         raise SystemExit(f"not converged: {mol.atom}")
