@@ -51,7 +51,7 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
     let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
-    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule));
+    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     let name = path.display().to_string();
     let wanted = Wanted { window: arguments.window };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
@@ -74,7 +74,7 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
     let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let (detection, symmetry) = sites::place(&molecule, tolerance_bohr)
-        .map_err(|source| CliError::Label { path: path.clone(), source: LabelError::Geometry(source) })?;
+        .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let document = build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
     let printed = print(&document, &arguments.common, || text::geometry_text(&document))?;
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;

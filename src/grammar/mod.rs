@@ -117,7 +117,8 @@ fn tag(name: &str) -> Option<Vec<(usize, bool)>> {
     Some(match name {
         "5D" | "5D7F" => vec![(2, true), (3, true)],
         "5D10F" => vec![(2, true), (3, false)],
-        "7F" | "6D7F" => vec![(2, false), (3, true)],
+        "7F" => vec![(3, true)],
+        "6D7F" => vec![(2, false), (3, true)],
         "6D" => vec![(2, false)],
         "6D10F" => vec![(2, false), (3, false)],
         "10F" => vec![(3, false)],

@@ -125,6 +125,9 @@ pub enum LabelError {
     /// The nuclei admit no symmetry search.
     #[error(transparent)]
     Geometry(#[from] crate::group::DetectError),
+    /// The group found is not supported.
+    #[error(transparent)]
+    Group(#[from] crate::group::GroupError),
     /// No convention makes the orbitals orthonormal.
     #[error(transparent)]
     Convention(#[from] crate::wavefunction::ConventionError),

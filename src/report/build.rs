@@ -4,7 +4,7 @@ use super::document::{
     BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA, SetEntry,
     SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
-use crate::group::{Detection, PointGroup, Symmetry};
+use crate::group::{Detection, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
 use crate::labelling::frontier::{self, Configuration};
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
@@ -52,11 +52,10 @@ pub fn source(file: &str, molecule: &Molecule) -> Source {
 
 /// Another choice of axes with the names that swap.
 #[must_use]
-pub fn setting_entry(group: &PointGroup, description: &str, swaps: &[(usize, usize)]) -> SettingEntry {
-    let name = |irrep: usize| group.irreps()[irrep].name.to_string();
+pub fn setting_entry(description: &str, swaps: &[(IrrepName, IrrepName)]) -> SettingEntry {
     SettingEntry {
         description: description.to_owned(),
-        swaps: swaps.iter().map(|&(here, there)| (name(here), json!(name(there)))).collect(),
+        swaps: swaps.iter().map(|(here, there)| (here.to_string(), json!(there.to_string()))).collect(),
     }
 }
 
@@ -80,7 +79,7 @@ pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64)
         other_settings: symmetry
             .other_settings
             .iter()
-            .map(|setting| setting_entry(group, &setting.description, &setting.swaps))
+            .map(|setting| setting_entry(&setting.description, &setting.swaps))
             .collect(),
         ladder: detection
             .ladder

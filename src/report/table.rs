@@ -144,8 +144,14 @@ pub fn build(name: &str) -> Result<TableDocument, GroupError> {
         symmetric_squares: per_irrep(&|a| told(group.symmetric_square(a))),
         antisymmetric_squares: per_irrep(&|a| told(group.antisymmetric_square(a))),
         descent,
-        other_settings: group.settings().iter().map(|setting| super::build::setting_entry(&group, &setting.description, &setting.swaps)).collect(),
+        other_settings: group.settings().iter().map(|setting| setting_entry(&group, setting)).collect(),
     })
+}
+
+fn setting_entry(group: &PointGroup, setting: &crate::group::Setting) -> super::document::SettingEntry {
+    let name = |irrep: usize| group.irreps()[irrep].name;
+    let swaps: Vec<_> = setting.swaps.iter().map(|&(here, there)| (name(here), name(there))).collect();
+    super::build::setting_entry(&setting.description, &swaps)
 }
 
 fn irrep_entry(group: &PointGroup, irrep: usize) -> IrrepEntry {

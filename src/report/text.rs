@@ -229,7 +229,7 @@ fn checks(document: &Document, sets: &[SetEntry]) -> String {
 
 pub(super) fn table() -> Table {
     let mut table = Table::new();
-    table.load_preset(presets::NOTHING);
+    table.load_style(presets::NOTHING);
     table
 }
 
