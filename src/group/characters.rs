@@ -106,8 +106,7 @@ fn rows(
     eigenvectors: &DMatrix<Complex<f64>>,
 ) -> Result<Vec<ComplexIrrep>, GroupError> {
     let order = group.order() as f64;
-    let powers: Vec<Vec<usize>> =
-        classes.iter().map(|class| group.powers(class[0]).into_iter().map(|power| class_of[power]).collect()).collect();
+    let powers: Vec<Powers> = classes.iter().map(|class| Powers::of(class[0], group, class_of)).collect();
     let mut irreps = Vec::with_capacity(classes.len());
     for vector in eigenvectors.column_iter() {
         let phase = vector[0].conj() / vector[0].norm();
@@ -116,7 +115,7 @@ fn rows(
             .zip(classes)
             .map(|(entry, class)| entry * phase * (order / class.len() as f64).sqrt() / vector.norm())
             .collect();
-        let characters = powers.iter().map(|powers| exact(powers, &rough)).collect::<Result<Vec<_>, _>>()?;
+        let characters = powers.iter().map(|powers| powers.exact(&rough)).collect::<Result<Vec<_>, _>>()?;
         irreps.push(characters);
     }
     check_orthogonality(&irreps, classes, order)?;
@@ -137,18 +136,35 @@ fn rows(
         .collect()
 }
 
-/// The character of an element from those of its powers: the whole multiplicities of its eigenvalues, each a root of unity.
-fn exact(powers: &[usize], rough: &[Complex<f64>]) -> Result<Complex<f64>, GroupError> {
-    let period = powers.len() as i64;
-    let mut sum = Complex::new(0.0, 0.0);
-    for k in 0..period {
-        let multiplicity = powers.iter().zip(0_i64..).map(|(&class, j)| {
-            (rough[class] * Complex::new(cos_turn(j * k, period), -sin_turn(j * k, period))).re / period as f64
-        });
-        let count = whole(multiplicity.sum(), "whole multiplicities of eigenvalues")? as f64;
-        sum += Complex::new(cos_turn(k, period), sin_turn(k, period)) * count;
+/// The powers of an element as classes, and the roots of unity that its eigenvalues are among.
+struct Powers {
+    classes: Vec<usize>,
+    roots: Vec<Complex<f64>>,
+}
+
+impl Powers {
+    fn of(element: usize, group: &Multiplication, class_of: &[usize]) -> Self {
+        let classes: Vec<usize> = group.powers(element).into_iter().map(|power| class_of[power]).collect();
+        let period = i64::try_from(classes.len()).unwrap_or(i64::MAX);
+        let roots = (0..period).map(|k| Complex::new(cos_turn(k, period), sin_turn(k, period))).collect();
+        Self { classes, roots }
     }
-    Ok(sum)
+
+    /// The character of the element from those of its powers: the whole multiplicities of its eigenvalues.
+    fn exact(&self, rough: &[Complex<f64>]) -> Result<Complex<f64>, GroupError> {
+        let period = self.classes.len();
+        let mut sum = Complex::new(0.0, 0.0);
+        for (k, root) in self.roots.iter().enumerate() {
+            let terms = self
+                .classes
+                .iter()
+                .enumerate()
+                .map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
+            let count = whole(terms.sum::<f64>() / period as f64, "whole multiplicities of eigenvalues")?;
+            sum += root * count as f64;
+        }
+        Ok(sum)
+    }
 }
 
 /// A number that must be whole and not negative.
