@@ -194,3 +194,48 @@ fn nearest_row(rows: &[Vec<Complex<f64>>], wanted: &[Complex<f64>]) -> usize {
     let distance = |row: &[Complex<f64>]| -> f64 { row.iter().zip(wanted).map(|(x, y)| (x.conj() - y).norm()).sum() };
     (0..rows.len()).min_by(|&i, &j| distance(&rows[i]).total_cmp(&distance(&rows[j]))).unwrap_or(0)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::group::multiplication::closure;
+    use nalgebra::Quaternion;
+
+    fn dimensions_and_indicators(generators: &[Quaternion<f64>], limit: usize) -> Vec<(usize, i8)> {
+        let same = |a: &Quaternion<f64>, b: &Quaternion<f64>| (a.coords - b.coords).amax() < 1e-9;
+        let elements = closure(Quaternion::identity(), generators, |a, b| a * b, same, limit).unwrap();
+        assert_eq!(elements.len(), limit);
+        let group = Multiplication::of(&elements, |a, b| a * b, same).unwrap();
+        let irreps = complex_irreps(&group, &group.classes()).unwrap();
+        let mut found: Vec<(usize, i8)> = irreps.iter().map(|irrep| (irrep.dimension, irrep.indicator)).collect();
+        found.sort_unstable();
+        found
+    }
+
+    /// The same routine serves double groups: unit quaternions instead of matrices. The double octahedral group has the irreps
+    /// A1 A2 E T1 T2 of O and Γ6 Γ7 Γ8 of dimensions 2, 2, 4, which have real characters but no real matrices ("Splitting of terms in
+    /// crystals" (Termaufspaltung in Kristallen), Ann. Phys. 3, 133 (1929)).
+    #[test]
+    fn double_groups_of_the_octahedron_and_of_d2() {
+        let octahedral =
+            [Quaternion::new(0.5, 0.5, 0.5, 0.5), Quaternion::new(0.5_f64.sqrt(), 0.5_f64.sqrt(), 0.0, 0.0)];
+        assert_eq!(
+            dimensions_and_indicators(&octahedral, 48),
+            [(1, 1), (1, 1), (2, -1), (2, -1), (2, 1), (3, 1), (3, 1), (4, -1)]
+        );
+        let half_turns = [Quaternion::new(0.0, 1.0, 0.0, 0.0), Quaternion::new(0.0, 0.0, 1.0, 0.0)];
+        assert_eq!(dimensions_and_indicators(&half_turns, 8), [(1, 1), (1, 1), (1, 1), (1, 1), (2, -1)]);
+    }
+
+    #[test]
+    fn complex_conjugates_of_a_cyclic_group_are_paired() {
+        let elements: Vec<u32> = (0..7).collect();
+        let group = Multiplication::of(&elements, |a, b| (a + b) % 7, |a, b| a == b).unwrap();
+        let irreps = complex_irreps(&group, &group.classes()).unwrap();
+        assert_eq!(irreps.iter().filter(|irrep| irrep.indicator == 1).count(), 1);
+        for (at, irrep) in irreps.iter().enumerate() {
+            assert_eq!(irreps[irrep.conjugate].conjugate, at);
+            assert_eq!(irrep.conjugate == at, irrep.indicator == 1);
+        }
+    }
+}
