@@ -78,7 +78,7 @@ fn irrep(
     let degree = usize::from(l);
     let dimension = 2 * degree + 1;
     // Harmonics of degree l have parity (−1)^l; the other parity is the same under rotations.
-    let natural = (l % 2 == 0) == (parity == Parity::Even);
+    let natural = l.is_multiple_of(2) == (parity == Parity::Even);
     let functions = Space::Harmonics(degree).functions(GroupName::K);
     let basis = DMatrix::from_columns(&functions.iter().map(|function| function.vector.clone()).collect::<Vec<_>>());
     let generators: Vec<(usize, DMatrix<f64>)> = group

@@ -105,3 +105,40 @@ pub(super) fn cos_turn(k: i64, n: i64) -> f64 {
 pub(super) fn sin_turn(k: i64, n: i64) -> f64 {
     cos_turn(4 * k - n, 4 * n)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    #[expect(clippy::float_cmp, reason = "these values are exact")]
+    fn simple_cosines_are_exact() {
+        assert_eq!([0, 1, 2, 3, 4, 5, 6].map(|k| cos_turn(k, 6)), [1.0, 0.5, -0.5, -1.0, -0.5, 0.5, 1.0]);
+        assert_eq!([0, 1, 2, 3, -1].map(|k| sin_turn(k, 4)), [0.0, 1.0, 0.0, -1.0, -1.0]);
+        for k in -40..40 {
+            let angle = std::f64::consts::TAU * k as f64 / 17.0;
+            assert!((cos_turn(k, 17) - angle.cos()).abs() < 1e-14 && (sin_turn(k, 17) - angle.sin()).abs() < 1e-14);
+        }
+    }
+
+    #[test]
+    fn characters_as_text() {
+        for (name, irrep, expected) in [
+            ("C5v", "E1", "2 2cos72° -2cos36° 0"),
+            ("C7v", "E2", "2 -2cos(3π/7) -2cos(π/7) 2cos(2π/7) 0"),
+            ("D6d", "E1", "2 √3 1 0 -1 -√3 -2 0 0"),
+            ("I", "T1", "3 2cos36° -2cos72° 0 -1"),
+            ("Dinfh", "Pi_g", "2 2cosφ 0 2 -2cosφ 0"),
+            ("Dinfh", "Sigma_u-", "1 1 -1 -1 -1 1"),
+            ("Kh", "P_u", "3 1+2cosφ -3 -(1+2cosφ)"),
+        ] {
+            let group = PointGroup::standard(name.parse().unwrap()).unwrap();
+            let irrep = &group.irreps()[group.irrep_idx(&irrep.parse().unwrap()).unwrap()];
+            let text = group
+                .printed_classes()
+                .into_iter()
+                .map(|at| exact_character(&group, &group.classes()[at], irrep, irrep.characters[at]));
+            assert_eq!(text.collect::<Vec<_>>().join(" "), expected, "{name}");
+        }
+    }
+}

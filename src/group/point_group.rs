@@ -185,6 +185,17 @@ impl Class {
 impl PointGroup {
     /// The group of this name in its standard frame.
     ///
+    /// ```
+    /// # use orbsieve::group::PointGroup;
+    /// # fn main() -> Result<(), orbsieve::group::GroupError> {
+    /// let group = PointGroup::standard("D5d".parse()?)?;
+    /// let e1g = group.irrep_idx(&"E1g".parse()?)?;
+    /// let names = |sum: Vec<(usize, usize)>| sum.iter().map(|&(at, _)| group.irreps()[at].name.to_string()).collect::<Vec<_>>();
+    /// assert_eq!(names(group.product(e1g, e1g)?), ["A1g", "A2g", "E2g"]);
+    /// assert_eq!(group.irreps()[e1g].partners, ["xz", "yz"]);
+    /// # Ok(())
+    /// # }
+    /// ```
     /// # Errors
     /// [`GroupError::AxisOrder`] for an n that is not supported.
     pub fn standard(name: GroupName) -> Result<Self, GroupError> {

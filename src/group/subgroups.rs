@@ -207,13 +207,11 @@ fn direction(axis: &Vector3<f64>) -> String {
     let whole =
         sizes.into_iter().map(|size| axis / size).find(|scaled| scaled.iter().all(|c| (c - c.round()).abs() < 1e-6));
     // Adding zero turns −0 into 0.
-    match whole.map(|scaled| scaled.map(|c| c.round() + 0.0)) {
-        Some(scaled) => format!("({}, {}, {})", scaled.x, scaled.y, scaled.z),
-        None => {
-            let rounded = axis.map(|c| (c * 1e3).round() / 1e3 + 0.0);
-            format!("({:.3}, {:.3}, {:.3})", rounded.x, rounded.y, rounded.z)
-        }
+    if let Some(scaled) = whole.map(|scaled| scaled.map(|c| c.round() + 0.0)) {
+        return format!("({}, {}, {})", scaled.x, scaled.y, scaled.z);
     }
+    let rounded = axis.map(|c| (c * 1e3).round() / 1e3 + 0.0);
+    format!("({:.3}, {:.3}, {:.3})", rounded.x, rounded.y, rounded.z)
 }
 
 /// A set of elements, one bit each.

@@ -111,18 +111,12 @@ fn half_turn(name: GroupName, axis: &Vector3<f64>, family: &Family) -> String {
     let along_z = axis.z > 1.0 - SAME;
     let text = match name {
         GroupName::Dn(2) | GroupName::Dnh(2) => return format!("C2({})", coordinate(axis)),
-        GroupName::O | GroupName::Oh => {
-            // Those along the four-fold axes are C4².
-            if axis.iter().filter(|component| component.abs() > SAME).count() == 1 { "C2" } else { "C2'" }
-        }
+        // Half turns about the four-fold axes are C4².
+        GroupName::O | GroupName::Oh if along_coordinate(axis) => "C2",
+        GroupName::O | GroupName::Oh => "C2'",
         _ if along_z => "C2",
-        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => {
-            if family.first {
-                "C2'"
-            } else {
-                "C2''"
-            }
-        }
+        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 && !family.first => "C2''",
+        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => "C2'",
         GroupName::Dinfh => "C2'",
         GroupName::Dnd(n) if n % 2 == 0 => "C2'",
         _ => "C2",
@@ -144,15 +138,9 @@ fn plane(name: GroupName, normal: &Vector3<f64>, family: &Family) -> String {
         GroupName::Cnv(2) if family.first => "sigma_v(xz)",
         GroupName::Cnv(2) => "sigma_v'(yz)",
         GroupName::Ih | GroupName::I | GroupName::K => "sigma",
-        GroupName::Td => "sigma_d",
         GroupName::Th => "sigma_h",
-        GroupName::Oh => {
-            if normal.iter().filter(|component| component.abs() > SAME).count() == 1 {
-                "sigma_h"
-            } else {
-                "sigma_d"
-            }
-        }
+        GroupName::Oh if along_coordinate(normal) => "sigma_h",
+        GroupName::Td | GroupName::Oh => "sigma_d",
         _ if horizontal => "sigma_h",
         GroupName::Dnd(_) => "sigma_d",
         GroupName::Cinfv | GroupName::Dinfh => "sigma_v",
@@ -161,6 +149,10 @@ fn plane(name: GroupName, normal: &Vector3<f64>, family: &Family) -> String {
         _ => "sigma_d",
     };
     text.to_owned()
+}
+
+fn along_coordinate(axis: &Vector3<f64>) -> bool {
+    axis.iter().filter(|component| component.abs() > SAME).count() == 1
 }
 
 fn coordinate(axis: &Vector3<f64>) -> char {
