@@ -11,5 +11,6 @@ pub mod model;
 pub mod group;
 pub mod wavefunction;
 pub mod labelling;
+pub mod selection;
 pub mod report;
 pub mod cli;

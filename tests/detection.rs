@@ -196,10 +196,7 @@ fn special_places() {
     ));
     assert!(matches!(detect(&[at(0, f64::NAN)], &settings), Err(DetectError::Coordinate { site: 0, .. })));
     assert!(matches!(detect(&[at(0, 1e300)], &settings), Err(DetectError::Coordinate { .. })));
-    assert!(matches!(
-        detect(&[at(0, 1.0)], &DetectSettings { limit_bohr: f64::NAN }),
-        Err(DetectError::Limit { .. })
-    ));
+    assert!(matches!(detect(&[at(0, 1.0)], &DetectSettings { limit_bohr: f64::NAN }), Err(DetectError::Limit { .. })));
     let mut ghosts = molecule("benzene");
     ghosts.extend(molecule("benzene").iter().map(|site| Site { kind: site.kind + 7, ..*site }));
     assert_eq!(found(&ghosts).ladder[0].name, GroupName::Dnh(6), "a ghost on every atom");
@@ -208,11 +205,7 @@ fn special_places() {
 /// Standard coordinates of the sites of one kind.
 fn seen(sites: &[Site], kind: u32) -> Vec<Vector3<f64>> {
     let symmetry = placed(sites, 0.01 * ANGSTROM);
-    sites
-        .iter()
-        .filter(|site| site.kind == kind)
-        .map(|site| symmetry.standard_coordinates(&site.position))
-        .collect()
+    sites.iter().filter(|site| site.kind == kind).map(|site| symmetry.standard_coordinates(&site.position)).collect()
 }
 
 #[test]
@@ -247,7 +240,10 @@ fn axes_follow_the_convention() {
 #[test]
 fn convention_tells_the_other_choice() {
     let symmetry = placed(&molecule("benzene"), 1e-3);
-    assert_eq!(symmetry.frame.convention, "z: C6 axis; x: C2' through 4 atoms, the other half turns C2'' through 2 bonds");
+    assert_eq!(
+        symmetry.frame.convention,
+        "z: C6 axis; x: C2' through 4 atoms, the other half turns C2'' through 2 bonds"
+    );
     assert_eq!(symmetry.passages[0].atoms.len(), 4);
     let swaps: Vec<String> =
         symmetry.other_settings[0].swaps.iter().map(|(here, there)| format!("{here} {there}")).collect();

@@ -2,9 +2,9 @@
 //!
 //! Not here: which element a name means (`model::elements`).
 
+use super::Findings;
 use super::numbers::{lines, real, whole, words};
 use super::sections::Section;
-use super::Findings;
 use crate::diagnostic::Span;
 
 /// Unit of the coordinates.

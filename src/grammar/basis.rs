@@ -68,18 +68,18 @@ pub fn shells(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec<R
             }
             findings.error(
                 trimmed(&words),
-                format!(
-                    "expected {} primitives, found the next shell after {}",
-                    shell.expected,
-                    shell.exponents.len()
-                ),
+                format!("expected {} primitives, found the next shell after {}", shell.expected, shell.exponents.len()),
                 "the number after the shell's label must match its lines",
             );
         }
         close(open.take(), atom.as_ref(), &mut shells);
         if let Some((l, sp)) = label(&bytes[first.clone()]) {
             if atom.is_none() {
-                findings.error(first, "expected an atom number before its first shell", "[GTO] goes atom by atom: number, then shells");
+                findings.error(
+                    first,
+                    "expected an atom number before its first shell",
+                    "[GTO] goes atom by atom: number, then shells",
+                );
                 atom = Some((0, line.clone()));
             }
             open = header(bytes, &words, l, sp, findings);
@@ -104,7 +104,11 @@ pub fn shells(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec<R
 
 fn header(bytes: &[u8], words: &[Span], l: usize, sp: bool, findings: &mut Findings) -> Option<Open> {
     let Some(count) = words.get(1) else {
-        findings.error(trimmed(words), "expected the number of primitives after the shell's label", "such as: s 3 1.00");
+        findings.error(
+            trimmed(words),
+            "expected the number of primitives after the shell's label",
+            "such as: s 3 1.00",
+        );
         return None;
     };
     let Some(expected) = whole(&bytes[count.clone()]) else {
@@ -153,7 +157,11 @@ fn primitive(bytes: &[u8], words: &[Span], shell: &mut Open, findings: &mut Find
         }
     }
     if shell.sound && numbers[0] <= 0.0 {
-        findings.error(words[0].clone(), "expected an exponent above zero", "a Gaussian with such an exponent has no norm");
+        findings.error(
+            words[0].clone(),
+            "expected an exponent above zero",
+            "a Gaussian with such an exponent has no norm",
+        );
         shell.sound = false;
     }
     shell.exponents.push(numbers[0]);

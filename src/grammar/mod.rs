@@ -108,8 +108,23 @@ pub struct RawMolden {
 
 /// Sections that carry nothing for this program.
 const SILENT: [&str; 17] = [
-    "N_ATOMS", "CHARGE", "NVAL", "CELL", "MOLPRO VARIABLES", "PROGRAM", "GEOCONV", "GEOMETRIES", "SCFCONV", "FORCES",
-    "N_GEO", "N_FREQ", "NATOM", "RMASS", "PSEUDO", "FR-MASS", "OPERATORS",
+    "N_ATOMS",
+    "CHARGE",
+    "NVAL",
+    "CELL",
+    "MOLPRO VARIABLES",
+    "PROGRAM",
+    "GEOCONV",
+    "GEOMETRIES",
+    "SCFCONV",
+    "FORCES",
+    "N_GEO",
+    "N_FREQ",
+    "NATOM",
+    "RMASS",
+    "PSEUDO",
+    "FR-MASS",
+    "OPERATORS",
 ];
 
 /// What a tag says, None when the name is no tag.

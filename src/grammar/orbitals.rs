@@ -68,7 +68,11 @@ pub fn orbitals(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec
         };
         let numbers_between = !is_empty(bytes, end_of_last..start);
         if found.is_empty() && numbers_between {
-            findings.error(trim(bytes, first_line(bytes, end_of_last..start)), "expected Sym=, Ene=, Spin= or Occup= before the first coefficients", "each orbital opens with its keys");
+            findings.error(
+                trim(bytes, first_line(bytes, end_of_last..start)),
+                "expected Sym=, Ene=, Spin= or Occup= before the first coefficients",
+                "each orbital opens with its keys",
+            );
         }
         let new = found.last().is_none_or(|last| numbers_between || last.seen[place]);
         if new {
@@ -105,7 +109,11 @@ pub fn orbitals(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec
         end_of_last = end;
     }
     if found.is_empty() && !is_empty(bytes, body.clone()) {
-        findings.error(trim(bytes, first_line(bytes, body)), "expected Sym=, Ene=, Spin= or Occup=", "each orbital opens with its keys");
+        findings.error(
+            trim(bytes, first_line(bytes, body)),
+            "expected Sym=, Ene=, Spin= or Occup=",
+            "each orbital opens with its keys",
+        );
     }
     found
 }
@@ -143,7 +151,11 @@ pub fn fill_row(bytes: &[u8], numbers: Span, row: &mut [f64], findings: &mut Fin
         };
         let (word, bit) = ((index - 1) / 64, 1_u64 << ((index - 1) % 64));
         if seen[word] & bit != 0 {
-            findings.error(trim(bytes, line), format!("function {index} stands twice in one orbital"), "a key line may be missing between two orbitals");
+            findings.error(
+                trim(bytes, line),
+                format!("function {index} stands twice in one orbital"),
+                "a key line may be missing between two orbitals",
+            );
             continue;
         }
         seen[word] |= bit;

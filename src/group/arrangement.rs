@@ -136,7 +136,8 @@ impl Cells {
             edge /= 1.5;
             counts = numbers_of_cubes(&size, edge);
         }
-        let mut cells = Self { corner, edge, counts, starts: vec![0; counts.iter().product::<usize>() + 1], sites: Vec::new() };
+        let mut cells =
+            Self { corner, edge, counts, starts: vec![0; counts.iter().product::<usize>() + 1], sites: Vec::new() };
         let homes: Vec<usize> = positions.iter().map(|x| cells.index(cells.cube(x))).collect();
         for &home in &homes {
             cells.starts[home + 1] += 1;

@@ -108,9 +108,10 @@ impl Scene<'_> {
 
     /// Frames about z with x towards one of the leading sites.
     fn about(&self, z: &Vector3<f64>) -> Vec<Matrix3<f64>> {
-        let frames = self.leading(Some(z)).into_iter().map(|x| {
-            Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()])
-        });
+        let frames = self
+            .leading(Some(z))
+            .into_iter()
+            .map(|x| Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()]));
         let frames: Vec<_> = frames.collect();
         if frames.is_empty() { vec![axes_along(z)] } else { frames }
     }
@@ -222,11 +223,16 @@ impl Scene<'_> {
             GroupName::Cn(n) | GroupName::Cnh(n) => format!("z: C{n} axis; x is free, put towards outer atoms"),
             GroupName::Sn(n) => format!("z: S{n} axis; x is free, put towards outer atoms"),
             GroupName::Dn(2) | GroupName::Dnh(2) => {
-                let x = if planar { "across the molecular plane".to_owned() } else { format!("with {} in yz", plane(0)) };
+                let x =
+                    if planar { "across the molecular plane".to_owned() } else { format!("with {} in yz", plane(0)) };
                 format!("z: C2 axis {z}, the most of the three; x: {x}")
             }
             GroupName::Cnv(2) => {
-                let plane = if planar { "the molecular plane".to_owned() } else { format!("the plane with the most atoms ({})", plane(0)) };
+                let plane = if planar {
+                    "the molecular plane".to_owned()
+                } else {
+                    format!("the plane with the most atoms ({})", plane(0))
+                };
                 format!("z: C2 axis; yz: {plane}")
             }
             GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => {
@@ -234,7 +240,11 @@ impl Scene<'_> {
                 format!("z: C{n} axis; x: C2' {x}, the other half turns C2'' {}", through(&second))
             }
             GroupName::Dn(n) | GroupName::Dnh(n) => format!("z: C{n} axis; x: C2' {x}"),
-            GroupName::Dnd(n) => format!("z: {}{} axis; x: C2' {x}", if n % 2 == 0 { 'S' } else { 'C' }, if n % 2 == 0 { 2 * n } else { n }),
+            GroupName::Dnd(n) => format!(
+                "z: {}{} axis; x: C2' {x}",
+                if n % 2 == 0 { 'S' } else { 'C' },
+                if n % 2 == 0 { 2 * n } else { n }
+            ),
             GroupName::Cnv(n) if n % 2 == 0 => {
                 let other = counted(self.atoms_in_plane(&(turned(n) * axes), 1), "atom");
                 format!("z: C{n} axis; xz: sigma_v with {}, the other planes sigma_d with {other}", plane(1))
@@ -268,7 +278,11 @@ fn through(passage: &Passage) -> String {
 }
 
 /// Keeps the candidates with the greatest value, and those alike.
-fn keep_best<T>(pool: &mut Vec<Matrix3<f64>>, value: impl Fn(&Matrix3<f64>) -> T, compare: impl Fn(&T, &T) -> Ordering) {
+fn keep_best<T>(
+    pool: &mut Vec<Matrix3<f64>>,
+    value: impl Fn(&Matrix3<f64>) -> T,
+    compare: impl Fn(&T, &T) -> Ordering,
+) {
     if pool.len() < 2 {
         return;
     }

@@ -35,7 +35,12 @@ impl SiteOperation {
 
     /// Nothing moves.
     pub(super) fn identity(n_sites: usize) -> Self {
-        Self { permutation: (0_u32..).take(n_sites).collect(), proper: true, matrix: Matrix3::identity(), displacement: 0.0 }
+        Self {
+            permutation: (0_u32..).take(n_sites).collect(),
+            proper: true,
+            matrix: Matrix3::identity(),
+            displacement: 0.0,
+        }
     }
 
     /// The permutation of first `other`, then `self`.
@@ -258,8 +263,7 @@ impl Shells {
         let order = |&site: &usize, radius: f64| (arrangement.kinds[site], arrangement.radii[site]) < (kind, radius);
         let place = self.places[at];
         let low = self.sites[..place].partition_point(|site| order(site, radius - reach));
-        let beyond =
-            |site: &usize| arrangement.kinds[*site] == kind && arrangement.radii[*site] <= radius + reach;
+        let beyond = |site: &usize| arrangement.kinds[*site] == kind && arrangement.radii[*site] <= radius + reach;
         let high = place + self.sites[place..].partition_point(beyond);
         &self.sites[low..high]
     }

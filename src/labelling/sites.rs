@@ -34,7 +34,10 @@ pub fn sites(molecule: &Molecule) -> Vec<Site> {
                 examples.len() - 1
             });
             let element = u32::from(molecule.atoms[examples[variety]].element);
-            Site { kind: element << 16 | u32::try_from(variety).unwrap_or(u32::MAX), position: molecule.atoms[atom].position }
+            Site {
+                kind: element << 16 | u32::try_from(variety).unwrap_or(u32::MAX),
+                position: molecule.atoms[atom].position,
+            }
         })
         .collect()
 }

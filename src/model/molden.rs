@@ -39,7 +39,8 @@ pub fn read_molden(bytes: &[u8]) -> Reading {
 fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecule> {
     let text = |span: &Span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned();
     let scale = if raw.unit == Some(LengthUnit::Angstrom) { 1.0 / ANGSTROM_PER_BOHR } else { 1.0 };
-    let mut atoms: Vec<Atom> = raw.atoms.iter().map(|atom| mean_atom(&text(&atom.name), atom, scale, bytes, findings)).collect();
+    let mut atoms: Vec<Atom> =
+        raw.atoms.iter().map(|atom| mean_atom(&text(&atom.name), atom, scale, bytes, findings)).collect();
     if atoms.is_empty() && !findings.any_error() {
         if raw.mode_atoms.is_empty() {
             let at = raw.atoms_header.clone().unwrap_or(0..0);
@@ -96,7 +97,10 @@ fn named_atom(name: &str, position: [f64; 3]) -> Atom {
 /// The name wins over the number, which may be an effective charge; a ghost is named so or has charge 0.
 fn mean_atom(name: &str, raw: &RawAtom, scale: f64, bytes: &[u8], findings: &mut Findings) -> Atom {
     let lower = name.to_lowercase();
-    let ghost_word = ["ghost", "gh", "bq"].iter().find(|word| lower.starts_with(**word)).filter(|_| elements::atomic_number(name) == 0);
+    let ghost_word = ["ghost", "gh", "bq"]
+        .iter()
+        .find(|word| lower.starts_with(**word))
+        .filter(|_| elements::atomic_number(name) == 0);
     let inner: &str = ghost_word.map_or(name, |word| name[word.len()..].trim_start_matches(['(', '-', '_', ':']));
     let mut element = elements::atomic_number(inner);
     if !(0.0..=CHARGE_LIMIT).contains(&raw.charge) {
@@ -164,7 +168,11 @@ fn mean_shells(raw: &RawMolden, findings: &mut Findings) -> Vec<Shell> {
                 return None;
             };
             if shell.coefficients.iter().all(|value| *value == 0.0) {
-                findings.error(shell.line.clone(), "expected a coefficient other than 0 in a shell", "a shell of zeros has no norm");
+                findings.error(
+                    shell.line.clone(),
+                    "expected a coefficient other than 0 in a shell",
+                    "a shell of zeros has no norm",
+                );
                 return None;
             }
             Some(Shell {
@@ -184,14 +192,22 @@ fn mean_orbitals(bytes: &[u8], raw: &RawMolden, n_functions: usize, findings: &m
         return Vec::new();
     }
     if n_functions == 0 {
-        findings.error(header, "[MO] stands without basis functions: [GTO] is missing or empty", "labels need the functions of the orbitals");
+        findings.error(
+            header,
+            "[MO] stands without basis functions: [GTO] is missing or empty",
+            "labels need the functions of the orbitals",
+        );
         return Vec::new();
     }
     let needed = raw.orbitals.len().saturating_mul(n_functions).saturating_mul(8);
     if needed > bytes.len().saturating_mul(SPARSE_RATIO).saturating_add(SPARSE_FLOOR) {
         findings.error(
             header,
-            format!("{} orbitals over {n_functions} functions need {needed} bytes, too many for a file of {} bytes", raw.orbitals.len(), bytes.len()),
+            format!(
+                "{} orbitals over {n_functions} functions need {needed} bytes, too many for a file of {} bytes",
+                raw.orbitals.len(),
+                bytes.len()
+            ),
             "most coefficients are missing from the file",
         );
         return Vec::new();
@@ -213,7 +229,11 @@ fn mean_orbitals(bytes: &[u8], raw: &RawMolden, n_functions: usize, findings: &m
                     fill_row(bytes, orbital.numbers.clone(), row, &mut findings);
                 }
                 if findings.0.is_empty() && row.iter().all(|value| *value == 0.0) {
-                    findings.error(orbital.header.clone(), "expected coefficients of this orbital, found none but zeros", "the file may be cut short");
+                    findings.error(
+                        orbital.header.clone(),
+                        "expected coefficients of this orbital, found none but zeros",
+                        "the file may be cut short",
+                    );
                 }
                 findings
             })
@@ -226,7 +246,10 @@ fn mean_orbitals(bytes: &[u8], raw: &RawMolden, n_functions: usize, findings: &m
             .map(|orbital| Orbital {
                 energy: orbital.energy,
                 occupation: orbital.occupation,
-                symmetry: orbital.symmetry.as_ref().map(|span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned()),
+                symmetry: orbital
+                    .symmetry
+                    .as_ref()
+                    .map(|span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned()),
                 header: orbital.header.clone(),
                 symmetry_value: orbital.symmetry.clone(),
             })
@@ -246,17 +269,27 @@ fn mean_vibrations(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Op
         .iter()
         .map(|(name, position)| (String::from_utf8_lossy(&bytes[name.clone()]).into_owned(), Point3::from(*position)))
         .collect();
-    if !raw.displacements.is_empty() && !raw.frequencies.is_empty() && raw.displacements.len() != raw.frequencies.len() {
+    if !raw.displacements.is_empty() && !raw.frequencies.is_empty() && raw.displacements.len() != raw.frequencies.len()
+    {
         findings.warning(
             0..0,
-            format!("[FREQ] lists {} wavenumbers, [FR-NORM-COORD] {} modes", raw.frequencies.len(), raw.displacements.len()),
+            format!(
+                "[FREQ] lists {} wavenumbers, [FR-NORM-COORD] {} modes",
+                raw.frequencies.len(),
+                raw.displacements.len()
+            ),
             "modes are paired in order as far as both go",
         );
     }
     if let Some(mode) = raw.displacements.iter().position(|mode| mode.len() != 3 * atoms.len()) {
         findings.error(
             0..0,
-            format!("vibration {} has {} displacements, expected three for each of {} atoms of [FR-COORD]", mode + 1, raw.displacements[mode].len(), atoms.len()),
+            format!(
+                "vibration {} has {} displacements, expected three for each of {} atoms of [FR-COORD]",
+                mode + 1,
+                raw.displacements[mode].len(),
+                atoms.len()
+            ),
             "the file may be cut short",
         );
         return None;
@@ -311,7 +344,9 @@ pub fn looks_like_molden(bytes: &[u8]) -> bool {
 #[must_use]
 pub fn write_labels(bytes: &[u8], molecule: &Molecule, labels: &[Vec<String>]) -> Vec<u8> {
     let mut edits: Vec<(Span, String)> = Vec::new();
-    for (orbital, label) in molecule.orbital_sets.iter().zip(labels).flat_map(|(set, labels)| set.orbitals.iter().zip(labels)) {
+    for (orbital, label) in
+        molecule.orbital_sets.iter().zip(labels).flat_map(|(set, labels)| set.orbitals.iter().zip(labels))
+    {
         match &orbital.symmetry_value {
             Some(value) if value.is_empty() => edits.push((value.clone(), format!(" {label}"))),
             Some(value) => edits.push((value.clone(), label.clone())),

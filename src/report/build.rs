@@ -1,8 +1,8 @@
 //! From labels to the document: names instead of indices, the units of the JSON keys.
 
 use super::document::{
-    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA, SetEntry,
-    SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
+    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA,
+    SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
 use crate::group::{Detection, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
@@ -164,7 +164,8 @@ pub fn sym_labels(labelled: &Labelled) -> Vec<Vec<String>> {
     let of_spin = |spin: &crate::labelling::SpinLabels| {
         let text = |label: &crate::labelling::OrbitalLabel| {
             set_label(group, &spin.sets[label.set]).filter(|_| label.irrep.is_some()).unwrap_or_else(|| {
-                let largest = label.weights.first().map_or("?".to_owned(), |&(irrep, _)| group.irreps()[irrep].name.symbol());
+                let largest =
+                    label.weights.first().map_or("?".to_owned(), |&(irrep, _)| group.irreps()[irrep].name.symbol());
                 format!("?{largest}?")
             })
         };
@@ -259,11 +260,10 @@ impl Builder<'_> {
         for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
             let first = self.first_set(spin_idx);
             for (set_idx, set) in spin.sets.iter().enumerate() {
-                let near = |other: &SetLabel| {
-                    matches!((set.energy, other.energy), (Some(a), Some(b)) if (a - b).abs() <= thresholds.degeneracy_hartree)
-                };
-                let accidental_with =
-                    (0..spin.sets.len()).filter(|&other| other != set_idx && near(&spin.sets[other])).map(|other| first + other + 1);
+                let near = |other: &SetLabel| matches!((set.energy, other.energy), (Some(a), Some(b)) if (a - b).abs() <= thresholds.degeneracy_hartree);
+                let accidental_with = (0..spin.sets.len())
+                    .filter(|&other| other != set_idx && near(&spin.sets[other]))
+                    .map(|other| first + other + 1);
                 entries.push(SetEntry {
                     set: first + set_idx + 1,
                     spin: spin.spin,
@@ -345,7 +345,8 @@ impl Builder<'_> {
                 let mut levels: Vec<DLevelEntry> = Vec::new();
                 for level in block.levels {
                     let set = &spins[level.spin_idx].sets[level.set_idx];
-                    let before = levels.last().filter(|last| last.spin == set.spin).and_then(|last| last.energy_hartree);
+                    let before =
+                        levels.last().filter(|last| last.spin == set.spin).and_then(|last| last.energy_hartree);
                     levels.push(DLevelEntry {
                         set: self.first_set(level.spin_idx) + level.set_idx + 1,
                         label: set_label(self.group, set),

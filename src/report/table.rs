@@ -110,7 +110,8 @@ pub fn build(name: &str) -> Result<TableDocument, GroupError> {
         (0..n).filter_map(|irrep| Some((irrep_name(irrep), of(irrep)?))).collect()
     };
     let products = per_irrep(&|a| {
-        let row: Map<String, Value> = (0..n).filter_map(|b| Some((irrep_name(b), told(group.product(a, b))?))).collect();
+        let row: Map<String, Value> =
+            (0..n).filter_map(|b| Some((irrep_name(b), told(group.product(a, b))?))).collect();
         Some(Value::Object(row))
     });
     let mut descent = Vec::new();
@@ -162,7 +163,12 @@ fn irrep_entry(group: &PointGroup, irrep: usize) -> IrrepEntry {
         dimension: irrep.dimension,
         conjugate_pair: irrep.constituents > 1,
         characters: irrep.characters.clone(),
-        exact: irrep.characters.iter().zip(group.classes()).map(|(&character, class)| exact_character(group, class, irrep, character)).collect(),
+        exact: irrep
+            .characters
+            .iter()
+            .zip(group.classes())
+            .map(|(&character, class)| exact_character(group, class, irrep, character))
+            .collect(),
         partners: irrep.partners.clone(),
         functions: [&functions.linear, &functions.rotations, &functions.quadratic, &functions.cubic]
             .into_iter()
@@ -228,7 +234,8 @@ pub fn text(document: &TableDocument) -> String {
     let degenerate: Vec<&IrrepEntry> = document.irreps.iter().filter(|irrep| irrep.dimension > 1).collect();
     if !degenerate.is_empty() {
         out.push_str("\nSquares      symmetric; antisymmetric in braces\n");
-        let told = |map: &Map<String, Value>, name: &str| map.get(name).and_then(Value::as_str).map_or("…".to_owned(), pretty);
+        let told =
+            |map: &Map<String, Value>, name: &str| map.get(name).and_then(Value::as_str).map_or("…".to_owned(), pretty);
         for irrep in degenerate {
             let _ = writeln!(
                 out,

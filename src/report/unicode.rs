@@ -34,9 +34,14 @@ mod tests {
 
     #[test]
     fn names_are_set_as_people_print_them() {
-        for (ascii, printed) in
-            [("2a2''", "2a2″"), ("3sigma_g", "3σg"), ("Sigma_u-", "Σu-"), ("Dinfh", "D∞h"), ("E'", "E′"), ("t2g", "t2g")]
-        {
+        for (ascii, printed) in [
+            ("2a2''", "2a2″"),
+            ("3sigma_g", "3σg"),
+            ("Sigma_u-", "Σu-"),
+            ("Dinfh", "D∞h"),
+            ("E'", "E′"),
+            ("t2g", "t2g"),
+        ] {
             assert_eq!(pretty(ascii), printed);
         }
     }

@@ -222,14 +222,10 @@ fn even_orders_and_signs(kind: u32, [a, b, c]: [f64; 3], scale: f64) -> Vec<Site
 
 fn buckyball() -> Vec<Site> {
     let golden = f64::midpoint(1.0, 5.0_f64.sqrt());
-    [
-        [0.0, 1.0, 3.0 * golden],
-        [1.0, 2.0 + golden, 2.0 * golden],
-        [golden, 2.0, 2.0 * golden + 1.0],
-    ]
-    .into_iter()
-    .flat_map(|corner| even_orders_and_signs(0, corner, 1.35))
-    .collect()
+    [[0.0, 1.0, 3.0 * golden], [1.0, 2.0 + golden, 2.0 * golden], [golden, 2.0, 2.0 * golden + 1.0]]
+        .into_iter()
+        .flat_map(|corner| even_orders_and_signs(0, corner, 1.35))
+        .collect()
 }
 
 fn naphthalene() -> Vec<Site> {
