@@ -61,7 +61,8 @@ impl Arrangement {
         /// Nearer sites are one place, a ghost on an atom.
         const APART: f64 = 0.5;
         const FACTOR: f64 = 1.45;
-        let nearest: Vec<f64> = self.positions.iter().map(|x| self.distance_to_nearest(x, APART)).collect();
+        let farthest = 2.0 * self.extent();
+        let nearest: Vec<f64> = self.positions.iter().map(|x| self.distance_to_nearest(x, APART, farthest)).collect();
         let mut pairs = Vec::new();
         for (a, x) in self.positions.iter().enumerate() {
             self.cells.visit(x, FACTOR * nearest[a], |b| {
@@ -78,8 +79,7 @@ impl Arrangement {
     }
 
     /// Distance to the nearest site farther away than `apart`; 0 when there is none.
-    fn distance_to_nearest(&self, place: &Vector3<f64>, apart: f64) -> f64 {
-        let farthest = 2.0 * self.extent();
+    fn distance_to_nearest(&self, place: &Vector3<f64>, apart: f64, farthest: f64) -> f64 {
         let mut radius = 2.5;
         loop {
             let mut best = f64::INFINITY;
@@ -136,7 +136,8 @@ impl Cells {
             edge /= 1.5;
             counts = numbers_of_cubes(&size, edge);
         }
-        let mut cells = Self { corner, edge, counts, starts: vec![0; counts.iter().product::<usize>() + 1], sites: Vec::new() };
+        let mut cells =
+            Self { corner, edge, counts, starts: vec![0; counts.iter().product::<usize>() + 1], sites: Vec::new() };
         let homes: Vec<usize> = positions.iter().map(|x| cells.index(cells.cube(x))).collect();
         for &home in &homes {
             cells.starts[home + 1] += 1;

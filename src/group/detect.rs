@@ -149,10 +149,8 @@ pub fn detect(sites: &[Site], settings: &DetectSettings) -> Result<Detection, De
         matching::search(&arrangement, limit).ok_or(DetectError::TooMuchAlike { sites: arrangement.n_sites() })?;
     let mut groups = ladder::groups(&arrangement, &search.operations, search.limit);
     let line = arrangement.best_line();
-    let turned_round = groups
-        .iter()
-        .flat_map(|group| &group.operations)
-        .any(|operation| line.dot(&(operation.matrix * line)) < 0.0);
+    let turned_round =
+        groups.iter().flat_map(|group| &group.operations).any(|operation| line.dot(&(operation.matrix * line)) < 0.0);
     groups.extend(linear::linear_groups(&arrangement, limit, turned_round));
     Ok(detection(groups, search.limit))
 }
@@ -163,7 +161,7 @@ fn checked(sites: &[Site]) -> Result<Arrangement, DetectError> {
         return Err(DetectError::NoSites);
     }
     for (site, place) in sites.iter().enumerate() {
-        if let Some(&value) = place.position.iter().find(|value| !(value.abs() <= FARTHEST)) {
+        if let Some(&value) = place.position.iter().find(|value| !(-FARTHEST..=FARTHEST).contains(*value)) {
             return Err(DetectError::Coordinate { site, value, limit: FARTHEST });
         }
     }
@@ -189,12 +187,7 @@ impl Detection {
     /// `sites` are those given to [`detect`], `bonds` pairs of their indices; without bonds nearest neighbours serve.
     /// # Errors
     /// [`GroupError`] for a group that is not supported.
-    pub fn place(
-        &self,
-        rung: &Rung,
-        sites: &[Site],
-        bonds: Option<&[(usize, usize)]>,
-    ) -> Result<Symmetry, GroupError> {
+    pub fn place(&self, rung: &Rung, sites: &[Site], bonds: Option<&[(usize, usize)]>) -> Result<Symmetry, GroupError> {
         frame::place(self.centre, rung, sites, bonds)
     }
 }

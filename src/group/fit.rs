@@ -41,7 +41,8 @@ pub(super) fn made_exact(mut matrices: Vec<Matrix3<f64>>, group: &Multiplication
         let mut change = 0.0_f64;
         let next: Vec<Matrix3<f64>> = (0..order)
             .map(|g| {
-                let sum: Matrix3<f64> = (0..order).map(|h| matrices[group.product(g, h)] * matrices[h].transpose()).sum();
+                let sum: Matrix3<f64> =
+                    (0..order).map(|h| matrices[group.product(g, h)] * matrices[h].transpose()).sum();
                 let mean = nearest_orthogonal(&sum, None)?;
                 change = change.max((mean - matrices[g]).amax());
                 Some(mean)

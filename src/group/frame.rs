@@ -32,13 +32,12 @@ pub(super) fn place(
     let group = PointGroup::standard(rung.name)?;
     let matrices: Vec<Matrix3<f64>> = rung.operations.iter().map(|operation| operation.matrix).collect();
     let neighbours;
-    let bonds = match bonds {
-        Some(bonds) => bonds,
-        None => {
-            let places = rung.positions.iter().map(|x| Site { kind: 0, position: Point3::from(*x) });
-            neighbours = Arrangement::of(&places.collect::<Vec<_>>()).neighbours();
-            &neighbours
-        }
+    let bonds = if let Some(bonds) = bonds {
+        bonds
+    } else {
+        let places = rung.positions.iter().map(|x| Site { kind: 0, position: Point3::from(*x) });
+        neighbours = Arrangement::of(&places.collect::<Vec<_>>()).neighbours();
+        &neighbours
     };
     let scene = Scene { name: rung.name, matrices: &matrices, sites, positions: &rung.positions, bonds };
     let axes = scene.chosen(scene.candidates()?);
@@ -52,9 +51,12 @@ pub(super) fn place(
         })
         .collect();
     let passages = [0, 1, 2].map(|axis| scene.passage(&axes, axis));
-    let convention = scene.convention(&axes, &passages);
-    let other_settings = group
-        .settings()
+    let settings = group.settings();
+    let mut convention = scene.convention(&axes, &passages);
+    if settings.iter().any(|setting| scene.ties(&axes, &(setting.rotation * axes))) {
+        convention.push_str("; atoms and bonds do not tell it from the other choice, so their kinds and distances do");
+    }
+    let other_settings = settings
         .into_iter()
         .map(|setting| OtherSetting {
             description: setting.description,
@@ -108,9 +110,10 @@ impl Scene<'_> {
 
     /// Frames about z with x towards one of the leading sites.
     fn about(&self, z: &Vector3<f64>) -> Vec<Matrix3<f64>> {
-        let frames = self.leading(Some(z)).into_iter().map(|x| {
-            Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()])
-        });
+        let frames = self
+            .leading(Some(z))
+            .into_iter()
+            .map(|x| Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()]));
         let frames: Vec<_> = frames.collect();
         if frames.is_empty() { vec![axes_along(z)] } else { frames }
     }
@@ -158,6 +161,11 @@ impl Scene<'_> {
         pool.first().copied().unwrap_or_else(Matrix3::identity)
     }
 
+    /// Whether the rules cannot tell two frames apart.
+    fn ties(&self, a: &Matrix3<f64>, b: &Matrix3<f64>) -> bool {
+        self.rules().iter().all(|rule| rule(self, a) == rule(self, b))
+    }
+
     /// What is to be greatest, in this order.
     fn rules(&self) -> Vec<fn(&Self, &Matrix3<f64>) -> usize> {
         match self.name {
@@ -189,7 +197,11 @@ impl Scene<'_> {
         let on = |x: &Vector3<f64>| x.cross(&direction).norm() < ON;
         Passage {
             atoms: (0..self.positions.len()).filter(|&at| on(&self.positions[at])).collect(),
-            bonds: self.middles().filter(|(_, middle)| on(middle)).map(|(bond, _)| bond).collect(),
+            bonds: self
+                .middles()
+                .filter(|((a, _), middle)| on(middle) && !on(&self.positions[*a]))
+                .map(|(bond, _)| bond)
+                .collect(),
         }
     }
 
@@ -222,11 +234,16 @@ impl Scene<'_> {
             GroupName::Cn(n) | GroupName::Cnh(n) => format!("z: C{n} axis; x is free, put towards outer atoms"),
             GroupName::Sn(n) => format!("z: S{n} axis; x is free, put towards outer atoms"),
             GroupName::Dn(2) | GroupName::Dnh(2) => {
-                let x = if planar { "across the molecular plane".to_owned() } else { format!("with {} in yz", plane(0)) };
+                let x =
+                    if planar { "across the molecular plane".to_owned() } else { format!("with {} in yz", plane(0)) };
                 format!("z: C2 axis {z}, the most of the three; x: {x}")
             }
             GroupName::Cnv(2) => {
-                let plane = if planar { "the molecular plane".to_owned() } else { format!("the plane with the most atoms ({})", plane(0)) };
+                let plane = if planar {
+                    "the molecular plane".to_owned()
+                } else {
+                    format!("the plane with the most atoms ({})", plane(0))
+                };
                 format!("z: C2 axis; yz: {plane}")
             }
             GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => {
@@ -234,7 +251,11 @@ impl Scene<'_> {
                 format!("z: C{n} axis; x: C2' {x}, the other half turns C2'' {}", through(&second))
             }
             GroupName::Dn(n) | GroupName::Dnh(n) => format!("z: C{n} axis; x: C2' {x}"),
-            GroupName::Dnd(n) => format!("z: {}{} axis; x: C2' {x}", if n % 2 == 0 { 'S' } else { 'C' }, if n % 2 == 0 { 2 * n } else { n }),
+            GroupName::Dnd(n) => format!(
+                "z: {}{} axis; x: C2' {x}",
+                if n % 2 == 0 { 'S' } else { 'C' },
+                if n % 2 == 0 { 2 * n } else { n }
+            ),
             GroupName::Cnv(n) if n % 2 == 0 => {
                 let other = counted(self.atoms_in_plane(&(turned(n) * axes), 1), "atom");
                 format!("z: C{n} axis; xz: sigma_v with {}, the other planes sigma_d with {other}", plane(1))
@@ -268,7 +289,11 @@ fn through(passage: &Passage) -> String {
 }
 
 /// Keeps the candidates with the greatest value, and those alike.
-fn keep_best<T>(pool: &mut Vec<Matrix3<f64>>, value: impl Fn(&Matrix3<f64>) -> T, compare: impl Fn(&T, &T) -> Ordering) {
+fn keep_best<T>(
+    pool: &mut Vec<Matrix3<f64>>,
+    value: impl Fn(&Matrix3<f64>) -> T,
+    compare: impl Fn(&T, &T) -> Ordering,
+) {
     if pool.len() < 2 {
         return;
     }

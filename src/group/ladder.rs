@@ -58,7 +58,12 @@ pub(super) fn groups(arrangement: &Arrangement, operations: &[SiteOperation], li
         }
     }
     let mut rungs = builder.rungs;
-    rungs.extend(fitted_group(arrangement, identity));
+    rungs.push(FittedGroup {
+        name: GroupName::C1,
+        operations: identity,
+        positions: arrangement.positions.clone(),
+        deviation: Deviation::default(),
+    });
     rungs
 }
 

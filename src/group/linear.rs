@@ -38,10 +38,8 @@ pub(super) fn distance_from_line(positions: &[Vector3<f64>], line: &Vector3<f64>
 /// All sites at one place: the group of an atom.
 pub(super) fn atom(arrangement: &Arrangement) -> FittedGroup {
     let unchanged: Vec<u32> = (0_u32..).take(arrangement.n_sites()).collect();
-    let operations = standard_operations(GroupName::K)
-        .into_iter()
-        .map(|matrix| operation(matrix, unchanged.clone()))
-        .collect();
+    let operations =
+        standard_operations(GroupName::K).into_iter().map(|matrix| operation(matrix, unchanged.clone())).collect();
     let positions = vec![Vector3::zeros(); arrangement.n_sites()];
     let deviation = arrangement.deviation_from(&positions);
     FittedGroup { name: GroupName::K, operations, positions, deviation }

@@ -35,7 +35,12 @@ impl SiteOperation {
 
     /// Nothing moves.
     pub(super) fn identity(n_sites: usize) -> Self {
-        Self { permutation: (0_u32..).take(n_sites).collect(), proper: true, matrix: Matrix3::identity(), displacement: 0.0 }
+        Self {
+            permutation: (0_u32..).take(n_sites).collect(),
+            proper: true,
+            matrix: Matrix3::identity(),
+            displacement: 0.0,
+        }
     }
 
     /// The permutation of first `other`, then `self`.
@@ -57,8 +62,10 @@ pub(super) struct Search {
 const MAX_PAIRS: usize = 20_000_000;
 /// Operations tried on a handful of sites, at most.
 const MAX_TRIALS: usize = 400_000;
-/// Operations tried on all sites times number of sites, at most, before the search is narrowed.
-const MAX_WORK: usize = 20_000_000;
+/// Operations tried on all sites times number of sites, at most, before the search is narrowed …
+const MAX_WORK: usize = 8_000_000;
+/// … but at least so many operations, more than any group has.
+const ENOUGH: usize = 300;
 /// Below this limit (bohr) narrowing further is of no use.
 const NARROWEST: f64 = 1e-6;
 
@@ -122,7 +129,7 @@ impl<'a> Trial<'a> {
                     continue;
                 }
                 work += n_sites;
-                if work > MAX_WORK {
+                if work > MAX_WORK.max(ENOUGH * n_sites) {
                     return None;
                 }
                 let Some(found) = self.refined(rough, proper) else { continue };
@@ -258,8 +265,7 @@ impl Shells {
         let order = |&site: &usize, radius: f64| (arrangement.kinds[site], arrangement.radii[site]) < (kind, radius);
         let place = self.places[at];
         let low = self.sites[..place].partition_point(|site| order(site, radius - reach));
-        let beyond =
-            |site: &usize| arrangement.kinds[*site] == kind && arrangement.radii[*site] <= radius + reach;
+        let beyond = |site: &usize| arrangement.kinds[*site] == kind && arrangement.radii[*site] <= radius + reach;
         let high = place + self.sites[place..].partition_point(beyond);
         &self.sites[low..high]
     }

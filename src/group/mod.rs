@@ -5,8 +5,8 @@
 mod arrangement;
 mod atomic;
 pub mod characters;
-mod elements;
 pub mod detect;
+mod elements;
 pub mod error;
 mod exact;
 mod fit;
