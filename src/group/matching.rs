@@ -43,6 +43,11 @@ impl SiteOperation {
         }
     }
 
+    /// What tells it from other operations on the same sites.
+    pub(super) fn key(&self) -> (bool, Vec<u32>) {
+        (self.proper, self.permutation.clone())
+    }
+
     /// The permutation of first `other`, then `self`.
     pub(super) fn after(&self, other: &Self) -> Vec<u32> {
         other.permutation.iter().map(|&image| self.permutation[image as usize]).collect()
