@@ -5,7 +5,7 @@
 #[path = "support/geometries.rs"]
 mod geometries;
 
-use geometries::{ANGSTROM, Random, disturbed, generic, molecule, molecules, scrambled, sites_of_group};
+use geometries::{ANGSTROM, Random, disturbed, generic, molecule, molecules, sandwich, scrambled, sites_of_group};
 use nalgebra::{Matrix3, Point3, Vector3};
 use orbsieve::group::{DetectError, DetectSettings, Detection, GroupName, Site, Symmetry, detect};
 use proptest::prelude::{ProptestConfig, prop_assert, prop_assert_eq, proptest};
@@ -167,6 +167,18 @@ fn stretched_octahedron_is_d4h_then_oh() {
 }
 
 #[test]
+fn slightly_twisted_sandwich_is_d5_then_eclipsed() {
+    let degrees: f64 = 1.0;
+    let sites = scrambled(&sandwich(degrees), &mut Random::new(9));
+    let detection = found(&sites);
+    let names: Vec<String> = detection.ladder.iter().take(2).map(|rung| rung.name.to_string()).collect();
+    assert_eq!(names, ["D5", "D5h"]);
+    // Both rings meet half way: the outermost sites, 4.33 from the axis, lie off the mean by the sine of half the twist.
+    let expected = 4.33 * (degrees.to_radians() / 2.0).sin();
+    assert!((detection.ladder[1].deviation.max - expected).abs() < 1e-9);
+}
+
+#[test]
 fn a_nearly_linear_molecule_shows_what_is_on_the_way() {
     let bent = |height: f64| {
         [(1, -2.0, 0.0), (0, 0.0, height), (1, 2.0, 0.0)]
@@ -287,6 +299,87 @@ fn many_sites_take_little_time() {
     }
     // Orders of magnitude only: debug builds on a loaded machine.
     assert!(start.elapsed().as_secs() < 60);
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(400))]
+
+    /// Sites on a coarse grid (many coincidences, lines, planes, equal distances), some shifted a little: every rung holds what it says.
+    #[test]
+    fn any_sites_give_true_groups(
+        places in proptest::collection::vec((0_u32..2, -2_i8..3, -2_i8..3, -2_i8..3), 1..14),
+        scale in 0.4_f64..4.0,
+        shift in 0_usize..4,
+    ) {
+        let mut sites: Vec<Site> = places
+            .iter()
+            .map(|&(kind, x, y, z)| Site { kind, position: Point3::from(Vector3::new(x, y, z).map(f64::from) * scale) })
+            .collect();
+        sites[0].position.x += [0.0, 1e-7, 1e-4, 0.1][shift];
+        match detect(&sites, &DetectSettings::default()) {
+            Ok(detection) => for rung in &detection.ladder {
+                let symmetry = detection.place(rung, &sites, None).unwrap();
+                assert_consistent(&sites, &symmetry, &rung.name.to_string());
+            },
+            Err(error) => prop_assert!(matches!(error, DetectError::SamePlace { .. }), "{}", error),
+        }
+    }
+}
+
+/// The number of permutations that keep kinds and all distances: found by trying all, for a few sites.
+fn n_isometries(sites: &[Site]) -> usize {
+    fn extended(sites: &[Site], images: &mut Vec<usize>) -> usize {
+        let next = images.len();
+        if next == sites.len() {
+            return 1;
+        }
+        let mut count = 0;
+        for image in 0..sites.len() {
+            let apart = |a: usize, b: usize| (sites[a].position - sites[b].position).norm();
+            let fits = !images.contains(&image)
+                && sites[image].kind == sites[next].kind
+                && images.iter().enumerate().all(|(at, &other)| (apart(at, next) - apart(other, image)).abs() < 1e-6);
+            if fits {
+                images.push(image);
+                count += extended(sites, images);
+                images.pop();
+            }
+        }
+        count
+    }
+    extended(sites, &mut Vec::new())
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(400))]
+
+    /// The exact group of a few sites has as many operations as there are permutations that keep all distances, and twice as many in
+    /// a plane, where the reflection in it moves nothing.
+    #[test]
+    fn no_operation_is_missed(
+        places in proptest::collection::vec((0_u32..2, -1_i8..2, -1_i8..2, -1_i8..2), 3..9),
+        seed in 0_u64..1000,
+    ) {
+        let sites: Vec<Site> = places
+            .iter()
+            .map(|&(kind, x, y, z)| Site { kind, position: Point3::from(Vector3::new(x, y, z).map(f64::from) * 2.5) })
+            .collect();
+        let sites = scrambled(&sites, &mut Random::new(seed));
+        if let Ok(detection) = detect(&sites, &DetectSettings::default()) {
+            let centre = detection.centre;
+            let moments: Matrix3<f64> = sites
+                .iter()
+                .map(|site| (site.position - centre) * (site.position - centre).transpose())
+                .sum();
+            let rank = moments.rank(1e-6);
+            let expected = match rank {
+                3 => Some(n_isometries(&sites)),
+                2 => Some(2 * n_isometries(&sites)),
+                _ => None,
+            };
+            prop_assert_eq!(detection.ladder[0].order(), expected, "{}", detection.ladder[0].name);
+        }
+    }
 }
 
 proptest! {

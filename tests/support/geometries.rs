@@ -62,7 +62,7 @@ pub fn disturbed(sites: &[Site], epsilon: f64, random: &mut Random) -> Vec<Site>
 pub fn generic(n: u16, seed: u64) -> Vec<Site> {
     let mut random = Random::new(seed);
     // A ball of radius `half` holds 4.19 half³ lattice points.
-    let half = (1..).find(|half: &i32| 4 * half.pow(3) > i32::from(n)).unwrap_or(1);
+    let half = (1..40).find(|half: &i32| 4 * half.pow(3) > i32::from(n)).unwrap();
     let mut places: Vec<Vector3<f64>> = Vec::new();
     for i in -half..=half {
         for j in -half..=half {
@@ -142,7 +142,8 @@ fn ethane(twist: f64, other_end: u32) -> Vec<Site> {
     sites
 }
 
-fn sandwich(twist: f64) -> Vec<Site> {
+/// Two five-rings with hydrogens above and below an atom, one of them twisted by so many degrees.
+pub fn sandwich(twist: f64) -> Vec<Site> {
     let mut sites = vec![at(0, 0.0, 0.0, 0.0)];
     for (height, degrees) in [(3.1, 0.0), (-3.1, twist)] {
         sites.extend(ring(1, 5, 2.3, height, degrees));
