@@ -10,3 +10,6 @@ pub mod grammar;
 pub mod model;
 pub mod group;
 pub mod wavefunction;
+//pub mod labelling;
+//pub mod report;
+//pub mod cli;

@@ -35,8 +35,7 @@ impl PointGroup {
             let multiplicity = products.sum::<f64>() / irrep.constituents as f64;
             let nearest = multiplicity.round().max(0.0);
             let deviation = (multiplicity - nearest).abs();
-            // NaN is refused too.
-            if !(deviation <= WHOLE) {
+            if deviation.is_nan() || deviation > WHOLE {
                 let irrep = irrep.name.to_string();
                 return Err(GroupError::NotWhole { irrep, multiplicity, deviation, limit: WHOLE });
             }

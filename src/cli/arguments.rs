@@ -1,0 +1,125 @@
+//! What a person types, as types.
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use std::path::PathBuf;
+
+/// Point group, irreps and symmetry verdicts for computed orbitals.
+#[derive(Debug, Parser)]
+#[command(name = "orbsieve", version, about, max_term_width = 100)]
+pub struct Arguments {
+    /// What to do.
+    #[command(subcommand)]
+    pub verb: Verb,
+}
+
+/// The verbs.
+#[derive(Debug, Subcommand)]
+pub enum Verb {
+    /// Point group, irrep, partner, purity and degenerate set of every orbital
+    Label(Label),
+    /// Point group only, with the ladder of near-symmetries; also reads plain XYZ
+    Geometry(Geometry),
+    /// Operations, classes, characters, functions, products and descent of a point group
+    Table(Table),
+}
+
+/// Options of every verb.
+#[derive(Debug, Args)]
+pub struct Common {
+    /// Printed form of the result
+    #[arg(long, value_enum, default_value_t = Format::Text)]
+    pub format: Format,
+    /// Write the result to this file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+    /// Threads to use; 0 for one a core
+    #[arg(long, value_name = "N", default_value_t = 0)]
+    pub threads: usize,
+    /// No warnings and no progress on standard error
+    #[arg(long)]
+    pub quiet: bool,
+}
+
+/// Printed forms.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum Format {
+    /// For people
+    Text,
+    /// For programs; energies in hartree
+    Json,
+    /// One row a set; energies in hartree
+    Csv,
+}
+
+/// `label`.
+#[derive(Debug, Args)]
+pub struct Label {
+    /// Molden-format file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// Energies this near count as one, hartree
+    #[arg(long, value_name = "HARTREE", default_value_t = 1e-3, value_parser = positive)]
+    pub degeneracy: f64,
+    /// Smallest weight of one irrep that gives an orbital its label
+    #[arg(long, value_name = "WEIGHT", default_value_t = 0.90, value_parser = fraction)]
+    pub purity: f64,
+    /// List the sets of the K highest occupied and L lowest empty orbitals, with their indices
+    #[arg(long, value_name = "K,L", value_parser = window)]
+    pub window: Option<(usize, usize)>,
+    /// Show every set, not only those around the frontier
+    #[arg(long)]
+    pub all: bool,
+    /// Compute what orbitals are made of even for large bases
+    #[arg(long)]
+    pub character: bool,
+    /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
+    #[arg(long, value_name = "FILE")]
+    pub write_labels: Option<PathBuf>,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `geometry`.
+#[derive(Debug, Args)]
+pub struct Geometry {
+    /// Molden-format or XYZ file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `table`.
+#[derive(Debug, Args)]
+pub struct Table {
+    /// Point group, such as D5d, Oh, C12v, Dinfh
+    pub group: String,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+fn positive(text: &str) -> Result<f64, String> {
+    match text.parse::<f64>() {
+        Ok(value) if value > 0.0 && value.is_finite() => Ok(value),
+        _ => Err("expected a number above zero".to_owned()),
+    }
+}
+
+fn fraction(text: &str) -> Result<f64, String> {
+    match text.parse::<f64>() {
+        Ok(value) if value > 0.5 && value <= 1.0 => Ok(value),
+        _ => Err("expected a number above 0.5 and up to 1: below, two irreps could both claim the orbital".to_owned()),
+    }
+}
+
+fn window(text: &str) -> Result<(usize, usize), String> {
+    let parsed = text.split_once(',').and_then(|(k, l)| Some((k.trim().parse().ok()?, l.trim().parse().ok()?)));
+    parsed.ok_or_else(|| "expected two whole numbers, such as 6,4".to_owned())
+}

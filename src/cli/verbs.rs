@@ -1,0 +1,119 @@
+//! One function a verb: open, call the layers below, deliver.
+
+use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::{CliError, Status, draw, input, output, use_threads};
+use crate::diagnostic::Diagnostic;
+use crate::labelling::{self, LabelError, Thresholds, sites};
+use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
+use crate::report::build::{self, Wanted};
+use crate::report::document::Document;
+use crate::report::text::{self, TextOptions};
+use crate::report::{csv, table};
+use crate::wavefunction;
+use std::io::Write;
+use std::path::Path;
+
+/// Populations need the square root of the overlap matrix, n³: above this many functions only on demand.
+const CHARACTER_LIMIT: usize = 1200;
+
+/// What is read, or all findings drawn.
+fn read(
+    result: Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>,
+    path: &Path,
+    bytes: &[u8],
+    quiet: bool,
+    errors: &mut dyn Write,
+) -> Result<Molecule, CliError> {
+    let name = path.display().to_string();
+    match result {
+        Ok((molecule, warnings)) => {
+            if !quiet && !warnings.is_empty() {
+                // A closed standard error must not stop the result.
+                let _ = writeln!(errors, "{}", draw(&warnings, &name, bytes));
+            }
+            Ok(molecule)
+        }
+        Err(findings) => Err(CliError::Input { drawn: draw(&findings, &name, bytes) }),
+    }
+}
+
+pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
+    use_threads(&arguments.common)?;
+    let path = &arguments.file;
+    let bytes = input::open(path)?;
+    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let thresholds = Thresholds {
+        tolerance_bohr: arguments.tolerance / ANGSTROM_PER_BOHR,
+        degeneracy_hartree: arguments.degeneracy,
+        purity: arguments.purity,
+        ..Thresholds::STANDARD
+    };
+    let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
+    let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
+    let small = molecule.n_functions() <= CHARACTER_LIMIT;
+    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule));
+    let name = path.display().to_string();
+    let wanted = Wanted { window: arguments.window };
+    let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
+    let printed = print(&document, &arguments.common, || {
+        text::label_text(&document, TextOptions { all: arguments.all })
+    })?;
+    if let Some(target) = &arguments.write_labels {
+        let labels = build::sym_labels(&labelled);
+        output::deliver(Some(target), &model::write_labels(&bytes, &molecule, &labels), out)?;
+    }
+    output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+    Ok(Status::Done)
+}
+
+pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
+    use_threads(&arguments.common)?;
+    let path = &arguments.file;
+    let bytes = input::open(path)?;
+    let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
+    let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
+    let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
+    let (detection, symmetry) = sites::place(&molecule, tolerance_bohr)
+        .map_err(|source| CliError::Label { path: path.clone(), source: LabelError::Geometry(source) })?;
+    let document = build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
+    let printed = print(&document, &arguments.common, || text::geometry_text(&document))?;
+    output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+    Ok(Status::Done)
+}
+
+pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError> {
+    use_threads(&arguments.common)?;
+    let document = table::build(&arguments.group).map_err(|error| CliError::Usage(error.to_string()))?;
+    let printed = match arguments.common.format {
+        Format::Text => table::text(&document).into_bytes(),
+        Format::Json => json(&document)?,
+        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+    };
+    output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+    Ok(Status::Done)
+}
+
+/// The document in the form asked for.
+fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) -> Result<Vec<u8>, CliError> {
+    match common.format {
+        Format::Text => Ok(text().into_bytes()),
+        Format::Json => json(document),
+        Format::Csv if document.sets.is_none() => {
+            Err(CliError::Usage("geometry prints text or json: csv has one row a set of orbitals".to_owned()))
+        }
+        Format::Csv => {
+            let mut bytes = Vec::new();
+            csv::write_sets(document, &mut bytes)
+                .map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
+            Ok(bytes)
+        }
+    }
+}
+
+/// Indented JSON with a newline at its end.
+fn json(document: &impl serde::Serialize) -> Result<Vec<u8>, CliError> {
+    let mut bytes = serde_json::to_vec_pretty(document)
+        .map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
+    bytes.push(b'\n');
+    Ok(bytes)
+}

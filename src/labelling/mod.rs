@@ -1,0 +1,216 @@
+//! From a molecule to the irrep, partner and set of every orbital.
+//!
+//! Reading order: `sites` (what may be carried onto what), `weights`, `atom` (the full rotation group),
+//! `sets`, then what is read off the sets: `frontier`, `composition`, `d_block`.
+
+mod atom;
+pub mod composition;
+pub mod d_block;
+pub mod frontier;
+mod sets;
+pub mod sites;
+mod weights;
+
+use crate::group::{Detection, GroupName, Symmetry};
+use crate::model::{Molecule, Spin};
+use crate::wavefunction::{Settled, Turning};
+use ndarray::{Array2, ArrayView1, Axis};
+
+/// Every limit that decides a label, passed explicitly and told back in the report.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Thresholds {
+    /// Sites may lie this far from the symmetric arrangement, bohr.
+    pub tolerance_bohr: f64,
+    /// An orbital gets an irrep when one irrep holds at least this weight.
+    pub purity: f64,
+    /// An orbital gets a partner when one partner holds at least this share of the irrep's weight.
+    pub partner: f64,
+    /// Orbitals within this energy are at one energy, hartree.
+    pub degeneracy_hartree: f64,
+    /// Partners of one set are looked for within this energy, hartree: wider, since a distorted geometry splits a set.
+    pub window_hartree: f64,
+    /// Largest |CᵀSC − 1| under which orbitals count as orthonormal.
+    pub orthonormality: f64,
+}
+
+impl Thresholds {
+    /// The limits of the program when nothing else is asked for: 0.01 Å, purity 0.90.
+    pub const STANDARD: Self = Self {
+        tolerance_bohr: 0.01 / crate::model::ANGSTROM_PER_BOHR,
+        purity: 0.90,
+        partner: 0.90,
+        degeneracy_hartree: 1e-3,
+        window_hartree: 0.05,
+        orthonormality: 5e-3,
+    };
+}
+
+/// What symmetry says of one orbital. Indices point into `group.irreps()` and its partners.
+#[derive(Debug, Clone, PartialEq)]
+pub struct OrbitalLabel {
+    /// None where no irrep reaches the purity asked for.
+    pub irrep: Option<usize>,
+    /// The partner, where one dominates.
+    pub partner: Option<usize>,
+    /// Largest weight of one irrep.
+    pub purity: f64,
+    /// Weights above 1e-6, largest first.
+    pub weights: Vec<(usize, f64)>,
+    /// Irrep in the abelian subgroup, where one reaches the purity asked for.
+    pub abelian: Option<usize>,
+    /// Index into the sets of this spin.
+    pub set: usize,
+}
+
+/// Orbitals that the operations turn into each other at one energy.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SetLabel {
+    /// Spin of its orbitals.
+    pub spin: Spin,
+    /// The irrep that all members share.
+    pub irrep: Option<usize>,
+    /// Running number within irrep and spin, from 1; 0 without an irrep.
+    pub number: usize,
+    /// Orbital indices from 0, in file order.
+    pub orbitals: Vec<usize>,
+    /// Dimension of the irrep; without one, the number of orbitals.
+    pub degeneracy: usize,
+    /// Mean energy, hartree, where every member has one.
+    pub energy: Option<f64>,
+    /// Largest difference of the members' energies, hartree.
+    pub spread: f64,
+    /// Σ occupations, where every member has one.
+    pub electrons: Option<f64>,
+    /// All partners are there, at one energy, and the operations keep them among themselves.
+    pub complete: bool,
+}
+
+/// Labels of the orbitals of one spin.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SpinLabels {
+    /// Alpha, also for restricted orbitals.
+    pub spin: Spin,
+    /// In file order.
+    pub orbitals: Vec<OrbitalLabel>,
+    /// In order of energy.
+    pub sets: Vec<SetLabel>,
+    /// ⟨i|R|i⟩, n_orbitals × n_operations.
+    pub expectations: Array2<f64>,
+}
+
+/// The nuclei's symmetry and every orbital's place in it.
+#[derive(Debug)]
+pub struct Labelled {
+    /// All groups near the nuclei.
+    pub detection: Detection,
+    /// The group that the labels are in, placed on the nuclei.
+    pub symmetry: Symmetry,
+    /// Basis, overlap, products and the convention found; coefficients are canonical.
+    pub settled: Settled,
+    /// Operations on orbitals, one an element of the group.
+    pub turnings: Vec<Turning>,
+    /// Alpha, then beta where there is one.
+    pub spins: Vec<SpinLabels>,
+}
+
+/// Weights that are worth keeping.
+const WEIGHT_FLOOR: f64 = 1e-6;
+
+/// Why a file gets no labels.
+#[derive(Debug, thiserror::Error)]
+pub enum LabelError {
+    /// The file has no basis or no orbitals.
+    #[error("the file holds no {0}: there is nothing to label")]
+    Nothing(&'static str),
+    /// The nuclei admit no symmetry search.
+    #[error(transparent)]
+    Geometry(#[from] crate::group::DetectError),
+    /// No convention makes the orbitals orthonormal.
+    #[error(transparent)]
+    Convention(#[from] crate::wavefunction::ConventionError),
+    /// An operation carries a shell onto an atom without its like.
+    #[error(transparent)]
+    Turning(#[from] crate::wavefunction::TurningError),
+}
+
+/// Finds the group of the nuclei, settles the file's convention and labels every orbital.
+///
+/// The coefficients of `molecule` are rewritten to the canonical convention in place.
+///
+/// # Errors
+/// [`LabelError`] when nuclei coincide, when no convention makes the orbitals orthonormal, or when an
+/// operation carries an atom onto one with other functions.
+pub fn label(molecule: &mut Molecule, thresholds: &Thresholds) -> Result<Labelled, LabelError> {
+    if molecule.shells.is_empty() {
+        return Err(LabelError::Nothing("basis functions ([GTO])"));
+    }
+    if molecule.orbital_sets.iter().all(|set| set.orbitals.is_empty()) {
+        return Err(LabelError::Nothing("orbitals ([MO])"));
+    }
+    let (detection, symmetry) = sites::place(molecule, thresholds.tolerance_bohr)?;
+    let settled = crate::wavefunction::settle(molecule, thresholds.orthonormality)?;
+    let turnings = atom::turnings(&settled.basis, &symmetry)?;
+    let spins = (0..molecule.orbital_sets.len())
+        .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &turnings, thresholds))
+        .collect();
+    Ok(Labelled { detection, symmetry, settled, turnings, spins })
+}
+
+fn label_spin(
+    molecule: &Molecule,
+    spin_idx: usize,
+    settled: &Settled,
+    symmetry: &Symmetry,
+    turnings: &[Turning],
+    thresholds: &Thresholds,
+) -> SpinLabels {
+    let set = &molecule.orbital_sets[spin_idx];
+    let (coefficients, products) = (set.coefficients.view(), settled.products[spin_idx].view());
+    let group = &symmetry.group;
+    let expectations = weights::expectations(turnings, coefficients, products);
+    let (all_weights, abelian_weights) = if group.name() == GroupName::K {
+        (atom::weights(&settled.basis, group, coefficients, products), None)
+    } else {
+        let abelian = group.abelian_subgroup();
+        let within = expectations.select(Axis(1), &abelian.embedding);
+        (expectations.dot(&weights::projection(group)), Some(within.dot(&weights::projection(&abelian.group))))
+    };
+    let mut orbitals: Vec<OrbitalLabel> = all_weights
+        .outer_iter()
+        .enumerate()
+        .map(|(i, row)| {
+            let weights = ranked(row);
+            let (best, purity) = weights.first().copied().unwrap_or((0, 0.0));
+            let irrep = (purity >= thresholds.purity).then_some(best);
+            let partner = irrep.filter(|&irrep| group.irreps()[irrep].dimension > 1).and_then(|irrep| {
+                let partners = weights::partner_weights(group, irrep, expectations.row(i))?;
+                partners.iter().position(|weight| *weight >= thresholds.partner * purity)
+            });
+            let abelian = abelian_weights.as_ref().and_then(|all| {
+                all.row(i).iter().position(|weight| *weight >= thresholds.purity)
+            });
+            OrbitalLabel { irrep, partner, purity, weights, abelian, set: 0 }
+        })
+        .collect();
+    let connected = sets::Connected {
+        orbitals: &set.orbitals,
+        coefficients,
+        products,
+        turnings,
+        expectations: &expectations,
+    };
+    let sets = sets::join(&connected, group, &orbitals, set.spin, thresholds);
+    for (set_idx, set) in sets.iter().enumerate() {
+        for &orbital in &set.orbitals {
+            orbitals[orbital].set = set_idx;
+        }
+    }
+    SpinLabels { spin: set.spin, orbitals, sets, expectations }
+}
+
+/// Weights above the floor, largest first; equal ones in the order of the irreps.
+fn ranked(row: ArrayView1<'_, f64>) -> Vec<(usize, f64)> {
+    let mut weights: Vec<(usize, f64)> = row.iter().copied().enumerate().filter(|entry| entry.1 > WEIGHT_FLOOR).collect();
+    weights.sort_by(|a, b| b.1.total_cmp(&a.1));
+    weights
+}

@@ -1,0 +1,389 @@
+//! From labels to the document: names instead of indices, the units of the JSON keys.
+
+use super::document::{
+    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA, SetEntry,
+    SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
+};
+use crate::group::{Detection, PointGroup, Symmetry};
+use crate::labelling::composition::{Grouping, Share, ranges};
+use crate::labelling::frontier::{self, Configuration};
+use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
+use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
+use ndarray::{Array2, Axis};
+use serde_json::{Map, json};
+
+/// Shares below this are not listed.
+const SHARE_FLOOR: f64 = 0.01;
+
+/// What `label` was asked to tell beside the labels.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct Wanted {
+    /// Orbitals below and above the frontier to list as an active space.
+    pub window: Option<(usize, usize)>,
+}
+
+/// Running number and symbol of a set.
+#[must_use]
+pub fn set_label(group: &PointGroup, set: &SetLabel) -> Option<String> {
+    set.irrep.map(|irrep| format!("{}{}", set.number, group.irreps()[irrep].name.symbol()))
+}
+
+/// The source block; electrons and charge only where the file gives occupations.
+#[must_use]
+pub fn source(file: &str, molecule: &Molecule) -> Source {
+    let occupations = molecule.orbital_sets.iter().flat_map(|set| &set.orbitals).map(|orbital| orbital.occupation);
+    let electrons: Option<f64> =
+        if molecule.orbital_sets.is_empty() { None } else { occupations.sum::<Option<f64>>().filter(|n| *n > 0.0) };
+    let nuclei: f64 = molecule
+        .atoms
+        .iter()
+        .filter(|atom| !atom.ghost)
+        .map(|atom| f64::from(atom.element) - f64::from(atom.core_electrons))
+        .sum();
+    Source {
+        file: file.to_owned(),
+        title: molecule.title.clone(),
+        atoms: molecule.atoms.len(),
+        formula: elements::formula(&molecule.atoms),
+        electrons,
+        charge: electrons.map(|electrons| nuclei - electrons),
+    }
+}
+
+/// Another choice of axes with the names that swap.
+#[must_use]
+pub fn setting_entry(group: &PointGroup, description: &str, swaps: &[(usize, usize)]) -> SettingEntry {
+    let name = |irrep: usize| group.irreps()[irrep].name.to_string();
+    SettingEntry {
+        description: description.to_owned(),
+        swaps: swaps.iter().map(|&(here, there)| (name(here), json!(name(there)))).collect(),
+    }
+}
+
+/// The geometry block.
+#[must_use]
+pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
+    let group = &symmetry.group;
+    let angstrom = |bohr: f64| bohr * ANGSTROM_PER_BOHR;
+    let axes = &symmetry.frame.axes;
+    Geometry {
+        point_group: group.name().to_string(),
+        order: (!group.name().is_continuous()).then(|| group.elements().len()),
+        nuclear_group: detection.at(tolerance_bohr).name.to_string(),
+        rotational_symmetry_number: symmetry.rotational_symmetry_number,
+        tolerance_angstrom: angstrom(tolerance_bohr),
+        deviation_max_angstrom: angstrom(symmetry.deviation.max),
+        deviation_rms_angstrom: angstrom(symmetry.deviation.rms),
+        centre_bohr: symmetry.frame.centre.coords.into(),
+        axes: std::array::from_fn(|row| std::array::from_fn(|column| axes[(row, column)])),
+        axes_convention: symmetry.frame.convention.clone(),
+        other_settings: symmetry
+            .other_settings
+            .iter()
+            .map(|setting| setting_entry(group, &setting.description, &setting.swaps))
+            .collect(),
+        ladder: detection
+            .ladder
+            .iter()
+            .map(|rung| RungEntry {
+                point_group: rung.name.to_string(),
+                deviation_max_angstrom: angstrom(rung.deviation.max),
+                deviation_rms_angstrom: angstrom(rung.deviation.rms),
+            })
+            .collect(),
+        warnings: Vec::new(),
+    }
+}
+
+/// Everything `label` finds, as a document. `lowdin` holds one matrix of Löwdin weights a spin, or nothing.
+#[must_use]
+pub fn label_document(
+    file: &str,
+    molecule: &Molecule,
+    labelled: &Labelled,
+    lowdin: Option<&[Array2<f64>]>,
+    thresholds: &Thresholds,
+    wanted: Wanted,
+) -> Document {
+    let group = &labelled.symmetry.group;
+    let grouping = Grouping::new(molecule, &labelled.settled.basis, &labelled.symmetry);
+    let builder = Builder { molecule, labelled, group, grouping: &grouping, lowdin };
+    let mut cautions = Vec::new();
+    if lowdin.is_none() {
+        cautions.push("populations were not computed for this size of basis; ask for them with --character".to_owned());
+    }
+    let sets = builder.sets(thresholds);
+    Document {
+        schema: SCHEMA,
+        source: source(file, molecule),
+        geometry: geometry(&labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
+        basis: Some(builder.basis()),
+        orbitals: Some(builder.orbitals()),
+        frontier: Some(builder.frontier()),
+        d_block: builder.d_block(),
+        active_window: wanted.window.map(|(below, above)| builder.window(below, above)).unwrap_or_default(),
+        sets: Some(sets),
+        thresholds: Some(ThresholdEntry {
+            purity: thresholds.purity,
+            partner: thresholds.partner,
+            degeneracy_hartree: thresholds.degeneracy_hartree,
+            window_hartree: thresholds.window_hartree,
+            orthonormality: thresholds.orthonormality,
+        }),
+        cautions,
+    }
+}
+
+/// The document of `geometry`: nuclei only.
+#[must_use]
+pub fn geometry_document(
+    file: &str,
+    molecule: &Molecule,
+    detection: &Detection,
+    symmetry: &Symmetry,
+    tolerance_bohr: f64,
+) -> Document {
+    Document {
+        schema: SCHEMA,
+        source: source(file, molecule),
+        geometry: geometry(detection, symmetry, tolerance_bohr),
+        basis: None,
+        orbitals: None,
+        sets: None,
+        frontier: None,
+        d_block: Vec::new(),
+        active_window: Vec::new(),
+        thresholds: None,
+        cautions: Vec::new(),
+    }
+}
+
+/// The text of each orbital's `Sym=` line, spin by spin: its label, or the largest irrep in question marks.
+#[must_use]
+pub fn sym_labels(labelled: &Labelled) -> Vec<Vec<String>> {
+    let group = &labelled.symmetry.group;
+    let of_spin = |spin: &crate::labelling::SpinLabels| {
+        let text = |label: &crate::labelling::OrbitalLabel| {
+            set_label(group, &spin.sets[label.set]).filter(|_| label.irrep.is_some()).unwrap_or_else(|| {
+                let largest = label.weights.first().map_or("?".to_owned(), |&(irrep, _)| group.irreps()[irrep].name.symbol());
+                format!("?{largest}?")
+            })
+        };
+        spin.orbitals.iter().map(text).collect()
+    };
+    labelled.spins.iter().map(of_spin).collect()
+}
+
+struct Builder<'a> {
+    molecule: &'a Molecule,
+    labelled: &'a Labelled,
+    group: &'a PointGroup,
+    grouping: &'a Grouping,
+    lowdin: Option<&'a [Array2<f64>]>,
+}
+
+impl Builder<'_> {
+    /// Electrons an orbital can hold.
+    fn capacity(&self) -> f64 {
+        if self.labelled.spins.len() > 1 { 1.0 } else { 2.0 }
+    }
+
+    /// Number, from 1 over both spins, of a spin's first set less one.
+    fn first_set(&self, spin_idx: usize) -> usize {
+        self.labelled.spins[..spin_idx].iter().map(|spin| spin.sets.len()).sum()
+    }
+
+    fn basis(&self) -> BasisSummary {
+        let shells = &self.molecule.shells;
+        let mut counts = Map::new();
+        for l in 0..=shells.iter().map(|shell| shell.l).max().unwrap_or(0) {
+            let count = shells.iter().filter(|shell| shell.l == l).count();
+            counts.insert(crate::labelling::composition::letter(l).to_string(), json!(count));
+        }
+        let above_p: Vec<bool> = shells.iter().filter(|shell| shell.l > 1).map(|shell| shell.pure).collect();
+        let all_alike = above_p.windows(2).all(|pair| pair[0] == pair[1]);
+        BasisSummary {
+            functions: self.molecule.n_functions(),
+            shells: counts,
+            pure: all_alike.then(|| above_p.first().copied().unwrap_or(true)),
+            convention: self.labelled.settled.convention.describe(),
+            orthonormality_residual: self.labelled.settled.residual,
+        }
+    }
+
+    fn shares(&self, spin_idx: usize, orbitals: &[usize]) -> Vec<ShareEntry> {
+        let Some(lowdin) = self.lowdin else { return Vec::new() };
+        let Some(mean) = lowdin[spin_idx].select(Axis(0), orbitals).mean_axis(Axis(0)) else { return Vec::new() };
+        let entry = |share: Share| ShareEntry {
+            atoms: self.grouping.orbit_names[share.orbit].clone(),
+            shell: share.shell,
+            share: share.share,
+        };
+        self.grouping.shares(mean.view(), SHARE_FLOOR).into_iter().map(entry).collect()
+    }
+
+    fn orbitals(&self) -> Vec<OrbitalEntry> {
+        let abelian = self.group.abelian_subgroup();
+        let mut entries = Vec::new();
+        for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
+            let file = &self.molecule.orbital_sets[spin_idx].orbitals;
+            for (i, (label, orbital)) in spin.orbitals.iter().zip(file).enumerate() {
+                let set = &spin.sets[label.set];
+                entries.push(OrbitalEntry {
+                    index: i + 1,
+                    spin: spin.spin,
+                    energy_hartree: orbital.energy,
+                    occupation: orbital.occupation,
+                    irrep: label.irrep.map(|irrep| self.group.irreps()[irrep].name.to_string()),
+                    label: label.irrep.and_then(|_| set_label(self.group, set)),
+                    component: label
+                        .irrep
+                        .zip(label.partner)
+                        .map(|(irrep, partner)| self.group.irreps()[irrep].partners[partner].clone()),
+                    purity: label.purity,
+                    abelian_irrep: label.abelian.map(|irrep| abelian.group.irreps()[irrep].name.to_string()),
+                    weights: label
+                        .weights
+                        .iter()
+                        .map(|&(irrep, weight)| Weight { irrep: self.group.irreps()[irrep].name.to_string(), weight })
+                        .collect(),
+                    set: self.first_set(spin_idx) + label.set + 1,
+                    character: self.shares(spin_idx, &[i]),
+                });
+            }
+        }
+        entries
+    }
+
+    fn sets(&self, thresholds: &Thresholds) -> Vec<SetEntry> {
+        let mut entries = Vec::new();
+        for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
+            let first = self.first_set(spin_idx);
+            for (set_idx, set) in spin.sets.iter().enumerate() {
+                let near = |other: &SetLabel| {
+                    matches!((set.energy, other.energy), (Some(a), Some(b)) if (a - b).abs() <= thresholds.degeneracy_hartree)
+                };
+                let accidental_with =
+                    (0..spin.sets.len()).filter(|&other| other != set_idx && near(&spin.sets[other])).map(|other| first + other + 1);
+                entries.push(SetEntry {
+                    set: first + set_idx + 1,
+                    spin: spin.spin,
+                    irrep: set.irrep.map(|irrep| self.group.irreps()[irrep].name.to_string()),
+                    label: set_label(self.group, set),
+                    orbitals: set.orbitals.iter().map(|i| i + 1).collect(),
+                    degeneracy: set.degeneracy,
+                    energy_hartree: set.energy,
+                    energy_spread_hartree: set.spread,
+                    electrons: set.electrons,
+                    complete: set.complete,
+                    purity: set.orbitals.iter().map(|&i| spin.orbitals[i].purity).fold(1.0, f64::min),
+                    accidental_with: accidental_with.collect(),
+                    character: self.shares(spin_idx, &set.orbitals),
+                });
+            }
+        }
+        entries
+    }
+
+    fn frontier(&self) -> FrontierEntry {
+        let spins = &self.labelled.spins;
+        let of_spin = |(spin_idx, spin): (usize, &crate::labelling::SpinLabels)| {
+            let found = frontier::frontier(&spin.sets, self.capacity());
+            let number = |set: usize| self.first_set(spin_idx) + set + 1;
+            let energy = |set: Option<usize>| set.and_then(|set| spin.sets[set].energy);
+            SpinFrontier {
+                spin: spin.spin,
+                homo: found.homo.map(number),
+                somo: found.somo.iter().copied().map(number).collect(),
+                lumo: found.lumo.map(number),
+                gap_hartree: energy(found.lumo).zip(energy(found.homo)).map(|(lumo, homo)| lumo - homo),
+            }
+        };
+        let (counts, unlabelled) = frontier::electrons_per_irrep(spins, self.group.irreps().len());
+        let mut electrons_per_irrep = Map::new();
+        for (irrep, electrons) in self.group.irreps().iter().zip(counts).filter(|(_, electrons)| *electrons > 1e-9) {
+            electrons_per_irrep.insert(irrep.name.to_string(), json!(electrons));
+        }
+        if unlabelled > 1e-9 {
+            electrons_per_irrep.insert("none".to_owned(), json!(unlabelled));
+        }
+        FrontierEntry {
+            spins: spins.iter().enumerate().map(of_spin).collect(),
+            electrons_per_irrep,
+            determinant: self.determinant(),
+        }
+    }
+
+    fn determinant(&self) -> String {
+        let name = |irrep: usize| self.group.irreps()[irrep].name.to_string();
+        match frontier::configuration(self.group, &self.labelled.spins, self.capacity()) {
+            Configuration::Closed(irrep) if self.capacity() > 1.5 => format!("{} (closed shell)", name(irrep)),
+            Configuration::Closed(irrep) => format!("{} (full sets of spin orbitals)", name(irrep)),
+            Configuration::Open(irreps) => {
+                format!("open: {}", irreps.iter().map(|&irrep| name(irrep)).collect::<Vec<_>>().join(" × "))
+            }
+            Configuration::Unknown => {
+                "not established: some occupied orbitals have no irrep, a set is incomplete, or occupations are missing"
+                    .to_owned()
+            }
+        }
+    }
+
+    fn d_block(&self) -> Vec<DBlockEntry> {
+        let Some(lowdin) = self.lowdin else { return Vec::new() };
+        let functions: Vec<(usize, usize)> = self
+            .labelled
+            .settled
+            .basis
+            .shells()
+            .iter()
+            .flat_map(|shell| std::iter::repeat_n((shell.atom_idx, shell.l), shell.n_functions()))
+            .collect();
+        let spins = &self.labelled.spins;
+        d_block::d_blocks(self.molecule, &self.labelled.symmetry, self.grouping, &functions, lowdin, spins)
+            .into_iter()
+            .map(|block| {
+                let mut levels: Vec<DLevelEntry> = Vec::new();
+                for level in block.levels {
+                    let set = &spins[level.spin_idx].sets[level.set_idx];
+                    let before = levels.last().filter(|last| last.spin == set.spin).and_then(|last| last.energy_hartree);
+                    levels.push(DLevelEntry {
+                        set: self.first_set(level.spin_idx) + level.set_idx + 1,
+                        label: set_label(self.group, set),
+                        spin: set.spin,
+                        d_share: level.share,
+                        energy_hartree: set.energy,
+                        gap_to_previous_hartree: set.energy.zip(before).map(|(here, before)| here - before),
+                    });
+                }
+                let symbol = elements::label(&self.molecule.atoms[block.metals[0]]);
+                DBlockEntry { metals: format!("{symbol} {}", ranges(&block.metals)), levels }
+            })
+            .collect()
+    }
+
+    fn window(&self, below: usize, above: usize) -> Vec<WindowEntry> {
+        let mut entries = Vec::new();
+        for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
+            let window = frontier::window(&spin.sets, self.capacity(), below, above);
+            for &set_idx in &window.sets {
+                let set = &spin.sets[set_idx];
+                let before: usize = spin.sets[..set_idx]
+                    .iter()
+                    .filter(|other| other.irrep == set.irrep)
+                    .map(|other| other.orbitals.len())
+                    .sum();
+                entries.push(WindowEntry {
+                    set: self.first_set(spin_idx) + set_idx + 1,
+                    spin: spin.spin,
+                    label: set_label(self.group, set),
+                    orbitals: set.orbitals.iter().map(|i| i + 1).collect(),
+                    orbitals_from_zero: set.orbitals.clone(),
+                    within_irrep: (before + 1..=before + set.orbitals.len()).collect(),
+                    cut: window.cut.contains(&set_idx),
+                });
+            }
+        }
+        entries
+    }
+}

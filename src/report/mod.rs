@@ -1,0 +1,10 @@
+//! What a person or a program reads: the document as data, and its printed forms.
+//!
+//! Only this layer knows JSON keys, electronvolts and ångströms.
+
+pub mod build;
+pub mod csv;
+pub mod document;
+pub mod table;
+pub mod text;
+pub mod unicode;

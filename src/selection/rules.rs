@@ -1,0 +1,134 @@
+//! What symmetry allows between two irreps: electric and magnetic dipole, quadrupole, two photons, vibronic helpers.
+//!
+//! Here: rules by name, no molecule needed. Not here: how strong anything is (`selection::moments`).
+
+use crate::group::{GroupError, PointGroup};
+use nalgebra::{Matrix3, Matrix6};
+
+/// Names of the six quadratic functions in the order used here.
+pub const QUADRATIC: [&str; 6] = ["xx", "yy", "zz", "xy", "xz", "yz"];
+
+/// A weight of an irrep in a function counts from here on: exact weights are 0 or at least 1/|G|.
+const PRESENT: f64 = 1e-6;
+
+/// Which irreps the functions of the operators belong to, worked out once a group.
+#[derive(Debug, Clone)]
+pub struct Operators {
+    /// For x, y, z: the irreps it has a part in.
+    dipole: [Vec<usize>; 3],
+    /// For Rx, Ry, Rz.
+    rotation: [Vec<usize>; 3],
+    /// For xx, yy, zz, xy, xz, yz (two-photon tensor).
+    quadratic: [Vec<usize>; 6],
+    /// The same with the trace taken out (quadrupole).
+    quadrupole: [Vec<usize>; 6],
+    /// Irreps even and odd under inversion; empty without a centre.
+    even: Vec<bool>,
+}
+
+/// What is allowed for one pair of irreps.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Allowed {
+    /// Irreps of the product with multiplicities.
+    pub product: Vec<(usize, usize)>,
+    /// Indices (0, 1, 2 for x, y, z) of the allowed polarisations; empty when forbidden.
+    pub electric_dipole: Vec<usize>,
+    /// Indices of allowed components Rx, Ry, Rz.
+    pub magnetic_dipole: Vec<usize>,
+    /// Indices into [`QUADRATIC`] of allowed traceless components.
+    pub quadrupole: Vec<usize>,
+    /// Indices into [`QUADRATIC`] of allowed two-photon components.
+    pub two_photon: Vec<usize>,
+    /// With an inversion centre: whether parity changes, as Laporte's rule asks of an electric dipole.
+    pub parity_changes: Option<bool>,
+}
+
+/// A vibration that opens a forbidden transition, first order (Herzberg–Teller).
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Helper {
+    /// Irrep of the vibration.
+    pub irrep: usize,
+    /// Polarisations it gives.
+    pub polarisation: Vec<usize>,
+}
+
+/// Weight of each irrep in one function that turns by `element(R)`, its own diagonal entry under R.
+fn parts(group: &PointGroup, element: impl Fn(&Matrix3<f64>) -> f64) -> Vec<usize> {
+    let values: Vec<f64> = group.elements().iter().map(|operation| element(operation.operation.matrix())).collect();
+    let weight = |irrep: usize| -> f64 {
+        group.projector_coefficients(irrep).iter().zip(&values).map(|(coefficient, value)| coefficient * value).sum()
+    };
+    (0..group.irreps().len()).filter(|&irrep| weight(irrep) > PRESENT).collect()
+}
+
+/// ⟨q|R|q⟩ for q = ab of unit-normalised monomials xx, yy, zz, √2 xy, √2 xz, √2 yz.
+fn quadratic_matrix(matrix: &Matrix3<f64>) -> Matrix6<f64> {
+    const PAIRS: [(usize, usize); 6] = [(0, 0), (1, 1), (2, 2), (0, 1), (0, 2), (1, 2)];
+    Matrix6::from_fn(|row, column| {
+        let ((a, b), (c, d)) = (PAIRS[row], PAIRS[column]);
+        let scale = |pair: (usize, usize)| if pair.0 == pair.1 { 1.0 } else { std::f64::consts::SQRT_2 };
+        scale((a, b)) * scale((c, d)) * 0.5 * (matrix[(a, c)] * matrix[(b, d)] + matrix[(a, d)] * matrix[(b, c)])
+    })
+}
+
+/// The same with the trace (xx + yy + zz)/3 taken out of xx, yy, zz.
+fn quadrupole_diagonal(matrix: &Matrix3<f64>, q: usize) -> f64 {
+    let full = quadratic_matrix(matrix);
+    // The trace is invariant: P = 1 − tt/3 on the first three components.
+    if q < 3 { full[(q, q)] - 1.0 / 3.0 } else { full[(q, q)] }
+}
+
+impl Operators {
+    /// Projects the functions of each operator onto the irreps.
+    #[must_use]
+    pub fn new(group: &PointGroup) -> Self {
+        let inversion = group.elements().iter().find(|element| (element.operation.matrix() + Matrix3::identity()).amax() < 1e-9);
+        Self {
+            dipole: std::array::from_fn(|a| parts(group, |matrix| matrix[(a, a)])),
+            rotation: std::array::from_fn(|a| parts(group, |matrix| matrix.determinant() * matrix[(a, a)])),
+            quadratic: std::array::from_fn(|q| parts(group, |matrix| quadratic_matrix(matrix)[(q, q)])),
+            quadrupole: std::array::from_fn(|q| parts(group, |matrix| quadrupole_diagonal(matrix, q))),
+            even: inversion.map_or(Vec::new(), |inversion| {
+                group.irreps().iter().map(|irrep| irrep.characters[inversion.class_idx] > 0.0).collect()
+            }),
+        }
+    }
+
+    /// The rules between irreps `from` and `to`.
+    ///
+    /// # Errors
+    /// [`GroupError::BeyondTable`] where a product in a continuous group leaves the irreps kept.
+    pub fn between(&self, group: &PointGroup, from: usize, to: usize) -> Result<Allowed, GroupError> {
+        let product = group.product(from, to)?;
+        let held = |irreps: &[usize]| irreps.iter().any(|irrep| product.iter().any(|term| term.0 == *irrep));
+        let which = |components: &[Vec<usize>]| -> Vec<usize> {
+            (0..components.len()).filter(|&component| held(&components[component])).collect()
+        };
+        Ok(Allowed {
+            electric_dipole: which(&self.dipole),
+            magnetic_dipole: which(&self.rotation),
+            quadrupole: which(&self.quadrupole),
+            two_photon: which(&self.quadratic),
+            parity_changes: (!self.even.is_empty()).then(|| self.even[from] != self.even[to]),
+            product,
+        })
+    }
+
+    /// Vibrations that make a state of irrep `state` reachable by an electric dipole from the totally symmetric one.
+    ///
+    /// # Errors
+    /// As [`Self::between`].
+    pub fn helpers(&self, group: &PointGroup, state: usize) -> Result<Vec<Helper>, GroupError> {
+        let mut helpers = Vec::new();
+        for irrep in 0..group.irreps().len() {
+            let Ok(product) = group.product(irrep, state) else { continue };
+            let polarisation: Vec<usize> = (0..3)
+                .filter(|&axis| self.dipole[axis].iter().any(|part| product.iter().any(|term| term.0 == *part)))
+                .collect();
+            if !polarisation.is_empty() {
+                helpers.push(Helper { irrep, polarisation });
+            }
+        }
+        Ok(helpers)
+    }
+}

@@ -1,0 +1,38 @@
+//! The files in `demo-outputs/` are what the program prints today: each command of `demo-outputs/commands.txt` is run
+//! and compared byte for byte. With `ORBSIEVE_BLESS=1` the files are written anew; read the difference before committing.
+
+use std::path::Path;
+use std::process::Command;
+
+#[test]
+fn demo_outputs_are_what_the_program_prints() {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"));
+    let folder = root.join("demo-outputs");
+    let commands = std::fs::read_to_string(folder.join("commands.txt")).unwrap();
+    let bless = std::env::var_os("ORBSIEVE_BLESS").is_some();
+    let mut stale = Vec::new();
+    for line in commands.lines().map(str::trim).filter(|line| !line.is_empty() && !line.starts_with('#')) {
+        let (name, arguments) = line.split_once(": ").expect("commands.txt has lines `file: arguments`");
+        let output = Command::new(env!("CARGO_BIN_EXE_orbsieve"))
+            .args(arguments.split_whitespace())
+            .current_dir(root)
+            .output()
+            .unwrap();
+        let mut printed = output.stdout;
+        if !output.stderr.is_empty() {
+            printed.extend_from_slice(b"--- standard error ---\n");
+            printed.extend_from_slice(&output.stderr);
+        }
+        let status = output.status.code().expect("a demo ends by itself");
+        if status != 0 {
+            printed.extend_from_slice(format!("--- exit status {status} ---\n").as_bytes());
+        }
+        let path = folder.join(name);
+        if bless {
+            std::fs::write(&path, &printed).unwrap();
+        } else if std::fs::read(&path).unwrap_or_default() != printed {
+            stale.push(name.to_owned());
+        }
+    }
+    assert!(stale.is_empty(), "stale: {stale:?}; run with ORBSIEVE_BLESS=1 and read the difference");
+}
