@@ -297,6 +297,18 @@ fn many_sites_take_little_time() {
         assert_eq!(found(&sites).ladder[0].name, GroupName::C1);
         eprintln!("{n} sites without symmetry: {:?}", start.elapsed());
     }
+    // Thousands of like sites on a sphere: searched as far as that is feasible, and it is said how far.
+    let n = 8000;
+    let places = (0..n).map(|k| {
+        let (height, angle) = (1.0 - f64::from(2 * k + 1) / f64::from(n), 2.399_963 * f64::from(k));
+        let across = (1.0 - height * height).sqrt();
+        Point3::from(Vector3::new(across * angle.cos(), across * angle.sin(), height) * 65.0)
+    });
+    let sphere: Vec<Site> = places.map(|position| Site { kind: 0, position }).collect();
+    let detection = found(&sphere);
+    // The spiral has one half turn that exchanges its ends.
+    assert_eq!(detection.ladder[0].name, GroupName::Cn(2));
+    assert!(detection.searched_bohr < 0.3 * ANGSTROM);
     // Orders of magnitude only: debug builds on a loaded machine.
     assert!(start.elapsed().as_secs() < 60);
 }

@@ -79,6 +79,7 @@ pub enum DetectError {
 
 /// A group that the sites have to within a deviation.
 #[derive(Debug, Clone, PartialEq)]
+#[non_exhaustive]
 pub struct Rung {
     /// Its name.
     pub name: GroupName,

@@ -7,6 +7,7 @@
 use super::arrangement::Arrangement;
 use super::detect::Rung;
 use super::error::GroupError;
+use super::fit::intertwiner;
 use super::identify::standard_frames;
 use super::ladder::nearest;
 use super::linear::axes_along;
@@ -41,15 +42,13 @@ pub(super) fn place(
     };
     let scene = Scene { name: rung.name, matrices: &matrices, sites, positions: &rung.positions, bonds };
     let axes = scene.chosen(scene.candidates()?);
-    let permutations = group
-        .elements()
-        .iter()
-        .map(|element| {
-            let sought = axes.transpose() * element.operation.matrix() * axes;
-            let found = rung.operations.get(nearest(&matrices, &sought));
-            found.map_or_else(Vec::new, |found| found.permutation.iter().map(|&image| image as usize).collect())
-        })
-        .collect();
+    // Which operation each element is, and the axes made exact for all of them.
+    let standard: Vec<Matrix3<f64>> = group.elements().iter().map(|element| *element.operation.matrix()).collect();
+    let order: Vec<usize> = standard.iter().map(|s| nearest(&matrices, &(axes.transpose() * s * axes))).collect();
+    let ordered: Vec<Matrix3<f64>> = order.iter().map(|&at| matrices[at]).collect();
+    let axes = intertwiner(&axes, &ordered, &standard).unwrap_or(axes);
+    let permutations =
+        order.iter().map(|&at| rung.operations[at].permutation.iter().map(|&image| image as usize).collect()).collect();
     let passages = [0, 1, 2].map(|axis| scene.passage(&axes, axis));
     let settings = group.settings();
     let mut convention = scene.convention(&axes, &passages);

@@ -191,38 +191,48 @@ fn fitted_group(arrangement: &Arrangement, elements: &[SiteOperation]) -> Option
     let standard = standard_operations(name);
     let mut axes = *frames.first()?;
     // Bring the operations into the order of the standard group.
-    let order: Vec<usize> = standard.iter().map(|s| nearest(&matrices, &(axes.transpose() * s * axes))).collect();
+    let order: Vec<usize> = placed(&standard, &axes).iter().map(|sought| nearest(&matrices, sought)).collect();
     let ordered: Vec<Matrix3<f64>> = order.iter().map(|&at| matrices[at]).collect();
     axes = intertwiner(&axes, &ordered, &standard)?;
-    let mut operations: Vec<SiteOperation> = order.iter().map(|&at| elements[at].clone()).collect();
-    let positions = oriented(arrangement, &mut operations, &standard, axes)?;
+    let permutations: Vec<&[u32]> = order.iter().map(|&at| elements[at].permutation.as_slice()).collect();
+    axes = best_axes(arrangement, &permutations, &standard, axes)?;
+    let matrices = placed(&standard, &axes);
+    let positions = symmetrised(arrangement, matrices.iter().zip(permutations.iter().copied()));
+    let operations = matrices
+        .into_iter()
+        .zip(permutations)
+        .map(|(matrix, permutation)| SiteOperation::measured(arrangement, permutation.to_vec(), matrix))
+        .collect();
     let deviation = arrangement.deviation_from(&positions);
     Some(FittedGroup { name, operations, positions, deviation })
 }
 
-/// Turns the axes until the symmetrised structure lies on the given one as well as it can, and sets the matrices.
-fn oriented(
+/// Turns the axes until the symmetrised structure lies on the given one as well as it can.
+fn best_axes(
     arrangement: &Arrangement,
-    operations: &mut [SiteOperation],
+    permutations: &[&[u32]],
     standard: &[Matrix3<f64>],
     mut axes: Matrix3<f64>,
-) -> Option<Vec<Vector3<f64>>> {
+) -> Option<Matrix3<f64>> {
     const ROUNDS: usize = 20;
-    for round in 0.. {
-        for (operation, s) in operations.iter_mut().zip(standard) {
-            operation.matrix = axes.transpose() * s * axes;
-        }
-        let pairs = operations.iter().map(|operation| (&operation.matrix, operation.permutation.as_slice()));
-        let positions = symmetrised(arrangement, pairs);
+    for _ in 0..ROUNDS {
+        let matrices = placed(standard, &axes);
+        let positions = symmetrised(arrangement, matrices.iter().zip(permutations.iter().copied()));
         let turn = best_turn(positions.iter().zip(&arrangement.positions), true)?;
-        if round == ROUNDS || (turn - Matrix3::identity()).amax() < 1e-12 {
-            return Some(positions);
+        if (turn - Matrix3::identity()).amax() < 1e-12 {
+            break;
         }
         axes *= turn.transpose();
     }
-    None
+    Some(axes)
 }
 
+/// Standard operations as matrices in the axes of the sites.
+fn placed(standard: &[Matrix3<f64>], axes: &Matrix3<f64>) -> Vec<Matrix3<f64>> {
+    standard.iter().map(|s| axes.transpose() * s * axes).collect()
+}
+
+/// The index of the matrix that differs least from `sought`.
 pub(super) fn nearest(matrices: &[Matrix3<f64>], sought: &Matrix3<f64>) -> usize {
     let distances = matrices.iter().map(|matrix| (matrix - sought).amax()).enumerate();
     distances.min_by(|a, b| a.1.total_cmp(&b.1)).map_or(0, |(at, _)| at)
@@ -237,4 +247,33 @@ fn sites_stay_apart(arrangement: &Arrangement, positions: &[Vector3<f64>]) -> bo
         let neighbour = arrangement.nearest(arrangement.kinds[at], &arrangement.positions[at], close, Some(at));
         neighbour.is_none_or(|(other, distance)| (x - positions[other]).norm() > LEFT * distance)
     })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::group::elements::same;
+
+    /// The nearest representation to disturbed matrices of a group is a representation, and near.
+    #[test]
+    fn disturbed_matrices_become_an_exact_group() {
+        for name in ["C3", "D2d", "D5h", "Td", "Ih", "S8"] {
+            let exact = standard_operations(name.parse().unwrap());
+            let table = Multiplication::of(&exact, |a, b| a * b, same).unwrap();
+            let disturbed = exact.iter().zip(1_u32..).map(|(matrix, k)| {
+                let k = f64::from(k);
+                nalgebra::Rotation3::from_euler_angles(0.05 * k.sin(), 0.04 * (2.0 * k).cos(), 0.05 * (3.0 * k).sin())
+                    .into_inner()
+                    * matrix
+            });
+            let made = made_exact(disturbed.collect(), &table).unwrap();
+            for a in 0..table.order() {
+                assert!((made[a] - exact[a]).amax() < 0.2, "{name}: stays near");
+                for b in 0..table.order() {
+                    let error = (made[a] * made[b] - made[table.product(a, b)]).amax();
+                    assert!(error < 1e-12, "{name}: product off by {error:e}");
+                }
+            }
+        }
+    }
 }

@@ -27,10 +27,17 @@ impl SiteOperation {
     pub(super) fn fitted(arrangement: &Arrangement, permutation: Vec<u32>, proper: bool) -> Option<Self> {
         let positions = &arrangement.positions;
         let images = permutation.iter().map(|&image| &positions[image as usize]);
-        let matrix = best_turn(positions.iter().zip(images.clone()), proper)?;
+        let matrix = best_turn(positions.iter().zip(images), proper)?;
+        Some(Self::measured(arrangement, permutation, matrix))
+    }
+
+    /// A permutation with the matrix that belongs to it.
+    pub(super) fn measured(arrangement: &Arrangement, permutation: Vec<u32>, matrix: Matrix3<f64>) -> Self {
+        let positions = &arrangement.positions;
+        let images = permutation.iter().map(|&image| &positions[image as usize]);
         let displacement =
             positions.iter().zip(images).map(|(x, image)| (matrix * x - image).norm()).fold(0.0, f64::max);
-        Some(Self { permutation, proper, matrix, displacement })
+        Self { proper: matrix.determinant() > 0.0, permutation, matrix, displacement }
     }
 
     /// Nothing moves.

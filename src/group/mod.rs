@@ -17,7 +17,7 @@ pub mod identify;
 pub mod irrep_name;
 mod ladder;
 mod linear;
-pub mod matching;
+mod matching;
 mod matrices;
 mod mulliken;
 pub mod multiplication;
