@@ -6,7 +6,7 @@
 mod geometries;
 
 use geometries::{ANGSTROM, Random, disturbed, generic, molecule, molecules, sandwich, scrambled, sites_of_group};
-use nalgebra::{Matrix3, Point3, Vector3};
+use nalgebra::{Matrix3, Point3, Rotation3, Vector3};
 use orbsieve::group::{DetectError, DetectSettings, Detection, GroupName, Site, Symmetry, detect};
 use proptest::prelude::{ProptestConfig, prop_assert, prop_assert_eq, proptest};
 
@@ -128,6 +128,41 @@ fn noise_is_reported_as_deviation_and_hides_the_group_below_it() {
             }
             let symmetry = detection.place(rung, &sites, None).unwrap();
             assert_consistent(&sites, &symmetry, text);
+        }
+    }
+}
+
+/// Mean square distance of the sites from their mean over the operations, all turned by a small rotation.
+fn mean_square(sites: &[Site], symmetry: &Symmetry, turn: &Matrix3<f64>) -> f64 {
+    let about = |at: usize| sites[at].position - symmetry.frame.centre;
+    let order = symmetry.group.order();
+    let mut sum = 0.0;
+    for at in 0..sites.len() {
+        let images = (0..order).map(|element| {
+            let matrix = turn * symmetry.matrix(element) * turn.transpose();
+            matrix.transpose() * about(symmetry.permutations[element][at])
+        });
+        sum += (images.sum::<Vector3<f64>>() / order as f64 - about(at)).norm_squared();
+    }
+    sum / sites.len() as f64
+}
+
+#[test]
+fn deviation_is_from_the_nearest_symmetric_arrangement() {
+    let mut random = Random::new(12);
+    for text in ["benzene", "six ligands", "ethane skew", "water"] {
+        let sites = scrambled(&disturbed(&molecule(text), 0.2, &mut random), &mut random);
+        let group = found(&molecule(text)).ladder[0].name;
+        let detection = found(&sites);
+        let rung = detection.ladder.iter().find(|rung| rung.name == group).unwrap();
+        let symmetry = detection.place(rung, &sites, None).unwrap();
+        let here = mean_square(&sites, &symmetry, &Matrix3::identity());
+        assert!((here.sqrt() - symmetry.deviation.rms).abs() < 1e-12, "{text}");
+        for axis in [Vector3::x_axis(), Vector3::y_axis(), Vector3::z_axis()] {
+            let turned = |angle| mean_square(&sites, &symmetry, Rotation3::from_axis_angle(&axis, angle).matrix());
+            let slope = (turned(1e-4) - turned(-1e-4)) / 2e-4;
+            assert!(slope.abs() < 1e-8, "{text}: turning about {axis:?} changes the mean square by {slope:e} a radian");
+            assert!(turned(0.01) > here && turned(-0.01) > here, "{text}: a minimum");
         }
     }
 }

@@ -24,7 +24,7 @@ pub struct DetectSettings {
 }
 
 impl Default for DetectSettings {
-    /// 0.3 Å, about a sixth of the shortest bonds between atoms other than hydrogen.
+    /// 0.3 Å: farther from symmetric than a fifth of a bond, likeness says little.
     fn default() -> Self {
         Self { limit_bohr: 0.3 / 0.529_177_210_903 }
     }
