@@ -104,6 +104,7 @@ fn atom(bytes: &[u8], words: &[Span], findings: &mut Findings) -> Option<RawAtom
 }
 
 /// The words' extent.
+#[must_use]
 pub fn trimmed(words: &[Span]) -> Span {
     words.first().map_or(0, |word| word.start)..words.last().map_or(0, |word| word.end)
 }

@@ -153,12 +153,11 @@ fn primitive(bytes: &[u8], words: &[Span], shell: &mut Open, findings: &mut Find
         shell.sound = false;
     }
     for (number, word) in numbers.iter_mut().zip(words.iter().take(wanted)) {
-        match real(&bytes[word.clone()]) {
-            Some(value) => *number = value,
-            None => {
-                findings.expected(bytes, word.clone(), "a real number");
-                shell.sound = false;
-            }
+        if let Some(value) = real(&bytes[word.clone()]) {
+            *number = value;
+        } else {
+            findings.expected(bytes, word.clone(), "a real number");
+            shell.sound = false;
         }
     }
     if shell.sound && numbers[0] <= 0.0 {

@@ -159,16 +159,11 @@ pub fn fill_row(bytes: &[u8], numbers: Span, row: &mut [f64], findings: &mut Fin
     let mut seen = vec![0_u64; row.len().div_ceil(64)];
     for line in lines(bytes, numbers) {
         let text = &bytes[line.clone()];
-        let (index, value) = match plain_line(text) {
-            Some(Some(entry)) => entry,
-            Some(None) => continue,
-            None => match odd_line(text) {
-                Some(entry) => entry,
-                None => {
-                    bad_line(bytes, line, findings);
-                    continue;
-                }
-            },
+        let Some((index, value)) = plain_line(text).or_else(|| odd_line(text)) else {
+            if !text.iter().all(|&byte| is_blank(byte)) {
+                bad_line(bytes, line, findings);
+            }
+            continue;
         };
         if index > row.len() {
             let first = beyond.get_or_insert_with(|| Beyond { line: trim(bytes, line), largest: index });
@@ -209,14 +204,11 @@ fn bad_line(bytes: &[u8], line: Span, findings: &mut Findings) {
     }
 }
 
-/// `Some(None)` for a blank line, None when the line has another form.
-fn plain_line(text: &[u8]) -> Option<Option<(usize, f64)>> {
+/// None when the line is blank or has another form.
+fn plain_line(text: &[u8]) -> Option<(usize, f64)> {
     let mut at = 0;
     while at < text.len() && is_blank(text[at]) {
         at += 1;
-    }
-    if at == text.len() {
-        return Some(None);
     }
     let digits = at;
     let mut index = 0_usize;
@@ -232,7 +224,7 @@ fn plain_line(text: &[u8]) -> Option<Option<(usize, f64)>> {
     }
     let (value, used) = fast_float2::parse_partial::<f64, _>(&text[at..]).ok()?;
     let plain = value.is_finite() && text[at + used..].iter().all(|&byte| is_blank(byte));
-    plain.then_some(Some((index, value)))
+    plain.then_some((index, value))
 }
 
 /// Fortran exponents, and an index glued to a signed coefficient.
@@ -261,11 +253,11 @@ mod tests {
             ("3 1.0D-02\r", (3, 0.01)),
             ("7\t-.25", (7, -0.25)),
         ] {
-            let read = plain_line(text.as_bytes()).flatten().or_else(|| odd_line(text.as_bytes()));
+            let read = plain_line(text.as_bytes()).or_else(|| odd_line(text.as_bytes()));
             assert_eq!(read, Some(entry), "{text}");
         }
         for text in ["1 ***", "1", "x 1.0", "1 nan", "1 1.0 2.0", "1 1e999"] {
-            assert_eq!(plain_line(text.as_bytes()).flatten().or_else(|| odd_line(text.as_bytes())), None, "{text}");
+            assert_eq!(plain_line(text.as_bytes()).or_else(|| odd_line(text.as_bytes())), None, "{text}");
         }
     }
 }
