@@ -2,6 +2,8 @@
 //!
 //! A new case is a new pair of files, no code: `name.molden` (or `.xyz`) and `name.txt`.
 
+#![expect(clippy::unwrap_used, reason = "a test fails by panicking")]
+
 use orbsieve::{diagnostic, model};
 use std::fs;
 use std::path::{Path, PathBuf};

@@ -6,6 +6,7 @@ use proptest::prelude::*;
 
 /// How one and the same molecule may be written.
 #[derive(Debug, Clone)]
+#[expect(clippy::struct_excessive_bools, reason = "each is one independent habit of writing")]
 struct Style {
     order: Vec<usize>,
     upper: bool,
@@ -79,7 +80,7 @@ fn print(style: &Style, alpha: &Array2<f64>, beta: &Array2<f64>) -> Vec<u8> {
         keys.rotate_left(style.key_shift);
         text.push_str(&keys.concat());
         for (j, value) in row.iter().enumerate().filter(|(_, value)| !style.sparse || **value != 0.0) {
-            text.push_str(&format!(" {} {}\n", j + 1, number(*value, style)));
+            text.extend([format!(" {} {}\n", j + 1, number(*value, style))]);
         }
     }
     sections.push(text);
@@ -230,7 +231,7 @@ fn tags_say_and_imply() {
         ("[21H]\n[9G]\n[28I]", [false, false, true, false, false]),
         ("[11H]\n[13I]", [false, false, false, true, true]),
     ] {
-        let shells: String = "dfghi".chars().map(|l| format!("{l} 1 1.0\n 0.5 1.0\n")).collect();
+        let shells: String = "dfghi".chars().flat_map(|l| [l.to_string(), " 1 1.0\n 0.5 1.0\n".to_owned()]).collect();
         for text in [
             format!("[Molden Format]\n[Atoms] AU\n C 1 6 0 0 0\n[GTO]\n1 0\n{shells}\n{tags}\n"),
             format!("[Molden Format]\n{tags}\n[GTO]\n1 0\n{shells}\n[Atoms] AU\n C 1 6 0 0 0\n"),
