@@ -23,7 +23,9 @@ LIBRARY = {"sto3g": "STO-3G", "631g": "6-31G", "631gs": "6-31G*", "ccpvdz": "cc-
            "def2svp": "def2-SVP", "def2tzvp": "def2-TZVP", "svp": "SVP"}
 NAMES = {"water": ("H2O", "C2v"), "formaldehyde": ("H2CO", "C2v"), "ammonia": ("NH3", "C3v"), "ethene": ("C2H4", "D2h"),
          "benzene": ("C6H6", "D6h"), "amidogen": ("NH2 radical", "C2v"), "sulfur_hexafluoride": ("SF6", "Oh"),
-         "sf6": ("SF6", "Oh"), "methane": ("CH4", "Td"), "carbon_dioxide": ("CO2", "Dinfh")}
+         "sf6": ("SF6", "Oh"), "methane": ("CH4", "Td"),
+         "allene": ("C3H4", "D2d"), "ethane": ("C2H6 staggered", "D3d"), "boron_trifluoride": ("BF3", "D3h"),
+         "cyclopentadienide": ("C5H5-", "D5h"), "carbon_dioxide": ("CO2", "Dinfh")}
 # what an engine's files are here for
 ENGINE_NOTES = {
     "nwchem": "full-group labels; scale column 0; oriented by the engine",
@@ -133,7 +135,7 @@ PYSCF = {
     "dialect_formaldehyde_raw_flipped": ("H2CO", "RHF/6-31G*", "C2v", "raw coefficients"),
     "dialect_formaldehyde_bare": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
     "dialect_formaldehyde_shell": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
-    "scenario/lantern-3": ("[Co(CN)6]3-", "RKS PBE0/def2-SVP on Co, STO-3G", "Oh", "ligand field; Fock matrix averaged"),
+    "scenario/lantern-3": ("[Co(CN)6]3-", "RKS PBE0/def2-SVP on Co, 6-31G", "Oh", "ligand field; Fock matrix averaged"),
     "scenario/bellows-5": ("Fe(C5H5)2 staggered", "RKS PBE0/def2-SVP on Fe, STO-3G", "D5d", "sandwich; Fock matrix averaged"),
     "scenario/ribbon-2": ("tetraazaanthracene", "RKS PBE0/6-31G", "D2h", "chromophore; Fock matrix averaged"),
 }
