@@ -71,6 +71,11 @@ FILES = {
                                dict(seed=234, ecp={"Ni": "lanl2dz"}), dict(shift=0.3), dict(virtuals=9, degenerate=[2, 3])),
     "b12h12_ih_sto3g": (g.icosahedral("B", 1.693, ("H", 2.893)), "sto-3g", dict(seed=235, charge=-2), {},
                         dict(virtuals=8, degenerate=[3, 4, 5])),
+    # nearly octahedral: off by at most 0.004 angstrom, and clearly stretched along one axis
+    "sf6_shaken_sto3g": (g.shaken(g.octahedral("S", "F", 1.56), 0.004 / 3 ** 0.5, 3), "sto-3g", dict(seed=236), {}, {}),
+    "sf6_stretched_d4h_sto3g": ([(s, (x, y, 1.05 * z)) for s, (x, y, z) in g.octahedral("S", "F", 1.56)], "sto-3g",
+                                dict(seed=237), {}, dict(degenerate=[2])),
+    "neon_with_ghost": (g.atom("Ne") + [("ghost-Ne", (0, 0, 1.5))], "6-31g*", dict(seed=238), {}, dict(degenerate=[2])),
     # clusters of helium: groups that small molecules seldom have
     "helium_pinwheel_c4": (g.pinwheel(4, False), SP, dict(seed=241), {}, dict(degenerate=[2])),
     "helium_pinwheel_c6": (g.pinwheel(6, False), SP, dict(seed=242), {}, dict(virtuals=12, degenerate=[2])),
