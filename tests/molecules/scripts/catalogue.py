@@ -136,7 +136,6 @@ PYSCF = {
     "dialect_water_g_shell": ("H2O", "RHF/by hand", "C2v", "components with (2l-1)!!"),
     "dialect_water_g_cart_list": ("H2O", "RHF/by hand", "C2v", "pure orbitals over cartesian components"),
     "dialect_formaldehyde_raw_flipped": ("H2CO", "RHF/6-31G*", "C2v", "raw coefficients"),
-    "dialect_formaldehyde_bare": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
     "dialect_formaldehyde_shell": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
     "scenario/lantern-3": ("[Co(CN)6]3-", "RKS PBE0/def2-SVP on Co, 6-31G", "Oh", "ligand field; Fock matrix averaged"),
     "scenario/bellows-5": ("Fe(C5H5)2 staggered", "RKS PBE0/def2-SVP on Fe, STO-3G", "D5d", "sandwich; Fock matrix averaged"),
@@ -217,7 +216,7 @@ def main():
             row, engine = engine_row(name)
         symbols, xyz = nuclei(path)
         group = row[2]
-        ops = operations(symbols, xyz, 1e-3) if len(symbols) > 1 else None
+        ops = operations(symbols, xyz, 1e-4) if len(symbols) > 1 else None
         if ops is None:
             ok = group in ("Kh", "Cinfv", "Dinfh")
         else:

@@ -37,11 +37,11 @@ JOBS = {name: job(name, *rest) for name, *rest in [
     ("nwchem_water_631gs_cart_raw", "water", "6-31g*", "cartesian", "nwchem"),
     ("nwchem_water_ccpvdz_pure_raw", "water", "cc-pvdz", "spherical", "nwchem"),
     ("nwchem_water_g_pure", "water", tall(4), "spherical", "janpa"),
-    ("nwchem_water_g_cart_raw", "water", tall(4), "cartesian", "nwchem"),
+    ("nwchem_water_g_cart_raw", "water", tall(4), "cartesian", "nwchem", True, 28),
     ("nwchem_formaldehyde_c1_pure", "formaldehyde", "6-31g*", "spherical", "janpa", False),
     ("nwchem_formaldehyde_c1_cart_raw", "formaldehyde", "6-31g*", "cartesian", "nwchem", False),
     ("nwchem_ammonia_ccpvdz_pure", "ammonia", "cc-pvdz", "spherical", "janpa"),
-    ("nwchem_ethene_631gs_pure", "ethene", "6-31g*", "spherical", "janpa"),
+    ("nwchem_ethene_631gs_pure", "ethene", "6-31g*", "spherical", "janpa", True, 20),
     ("nwchem_benzene_sto3g_pure", "benzene", "sto-3g", "spherical", "janpa"),
     ("nwchem_amidogen_uhf_pure", "amidogen", "6-31g*", "spherical", "janpa"),
     ("nwchem_methane_631gs_pure", "methane_upright", "6-31g*", "spherical", "janpa"),
@@ -49,7 +49,7 @@ JOBS = {name: job(name, *rest) for name, *rest in [
     ("nwchem_ethane_sto3g_pure", "ethane", "sto-3g", "spherical", "janpa"),
     ("nwchem_boron_trifluoride_sto3g_pure", "boron_trifluoride", "sto-3g", "spherical", "janpa"),
     ("nwchem_cyclopentadienide_sto3g_pure", "cyclopentadienide", "sto-3g", "spherical", "janpa"),
-    ("nwchem_carbon_dioxide_631gs_pure", "carbon_dioxide", "6-31g*", "spherical", "janpa"),
+    ("nwchem_carbon_dioxide_631gs_pure", "carbon_dioxide", "6-31g*", "spherical", "janpa", True, 12),
     ("nwchem_sf6_sto3g_pure", "sulfur_hexafluoride_upright", "sto-3g", "spherical", "janpa"),
 ]}
 

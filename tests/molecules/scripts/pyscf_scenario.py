@@ -20,7 +20,7 @@ FILES = {
                   dict(charge=-3, seed=401), g.GROUP_OH, dict(virtuals=6, degenerate=[2, 3])),
     # a sandwich complex, staggered
     "bellows-5": (g.sandwich("Fe", 36), {"Fe": "def2-svp", "C": "sto-3g", "H": "sto-3g"}, dict(seed=402),
-                  g.dihedral(5, "d"), dict(virtuals=12, degenerate=[2])),
+                  g.dihedral(5, "d"), dict(virtuals=9, degenerate=[2])),
     # a flat organic chromophore
     "ribbon-2": (g.azaacene(), "6-31g", dict(seed=403), D2H, dict(virtuals=7)),
 }

@@ -16,7 +16,8 @@ from file_basis import Functions, convention_of, read
 from nuclear_group import operations
 from pyscf_run import OUT, levels, operation_matrix
 
-SKIP = ("broken_", "localised_", "noisy_", "mixed_", "dialect_", "xtb_", "psi3_", "cp2k_", "neon_with")
+SKIP = ("broken_", "localised_", "noisy_", "mixed_", "dialect_", "neon_with",
+        "xtb_", "psi3_", "cp2k_", "psi4_", "bagel_", "openmolcas_", "nwchem_")
 
 
 def classes(ops):
