@@ -98,7 +98,6 @@ PYSCF = {
     "manganese_aqua_sextet_th_sto3g": ("[Mn(H2O)6]2+, sextet", "UHF/STO-3G", "Th", "high spin d5, intact"),
     "nickel_carbonyl_td_ecp": ("Ni(CO)4", "RHF/LANL2DZ on Ni, STO-3G", "Td", "core potential on the metal only"),
     "b12h12_ih_sto3g": ("[B12H12]2-", "RHF/STO-3G", "Ih", "t1u t2u gg gu hg"),
-    "fullerene_ih_sto3g": ("C60", "RHF/STO-3G", "Ih", "packed; run in D2h, axes on x, y, z; hu HOMO, t1u LUMO"),
     "sf6_shaken_sto3g": ("SF6, atoms moved by up to 0.004 A", "RHF/STO-3G", "C1", "Oh within 0.01 A"),
     "sf6_stretched_d4h_sto3g": ("SF6, stretched by 5 %", "RHF/STO-3G", "D4h", "for labels in the parent Oh"),
     "neon_with_ghost": ("Ne and functions without nucleus", "RHF/6-31G*", "Cinfv", "ghost atom: nuclear charge 0"),
@@ -211,7 +210,7 @@ def main():
     for path in sorted(paths):
         name = os.path.relpath(path, OUT).removesuffix(".gz").removesuffix(".molden")
         if name in PYSCF:
-            row, engine = PYSCF[name], "PySCF 2.x, rewritten" if name.startswith("dialect") else "PySCF"
+            row, engine = PYSCF[name], "PySCF, rewritten" if name.startswith("dialect") else "PySCF"
         else:
             row, engine = engine_row(name)
         symbols, xyz = nuclei(path)

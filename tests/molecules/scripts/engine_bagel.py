@@ -49,7 +49,6 @@ JOBS = {name: job(name, *rest) for name, *rest in [
     ("bagel_formaldehyde_svp_cart", "formaldehyde", "svp", True, 16),
     ("bagel_ammonia_ccpvdz_pure", "ammonia", "cc-pvdz"),
     ("bagel_ethene_svp_pure", "ethene", "svp", False, 16),
-    ("bagel_benzene_631g_pure", "benzene", "6-31g", False, 8),
     ("bagel_amidogen_uhf_pure", "amidogen", "svp"),
     ("bagel_modes_water", "water", "svp", False, None, True),
 ]}

@@ -1,4 +1,4 @@
-"""Wavefunctions that keep, hide or break the symmetry of their nuclei. Engine: PySCF 2.x.
+"""Wavefunctions that keep, hide or break the symmetry of their nuclei. Engine: PySCF 2.14.0.
 
 Also writes reference/spin.json with the engine's own <S^2>.
 Usage: python pyscf_broken.py [name ...]

@@ -1,4 +1,4 @@
-"""The everyday molecules. Engine: PySCF 2.x; symmetry off; each file has its own seed.
+"""The everyday molecules. Engine: PySCF 2.14.0; symmetry off; each file has its own seed.
 
 Usage: python pyscf_first.py [name ...]
 """

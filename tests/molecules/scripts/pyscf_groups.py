@@ -1,6 +1,6 @@
 """One file for each point group not covered by pyscf_first.py, and atoms and core potentials.
 
-Engine: PySCF 2.x; symmetry off; each file has its own seed. `group` averages the Fock matrix
+Engine: PySCF 2.14.0; symmetry off; each file has its own seed. `group` averages the Fock matrix
 over the molecule's rotations where grid or an instability would break them.
 Usage: python pyscf_groups.py [name ...]
 """

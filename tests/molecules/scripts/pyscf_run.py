@@ -1,6 +1,6 @@
 """Runs a self-consistent field without symmetry and writes a small Molden file.
 
-Shared by the PySCF scripts of this folder. Engine: PySCF (version in the README).
+Shared by the PySCF scripts of this folder. Engine: PySCF 2.14.0.
 """
 import os
 

@@ -1,4 +1,4 @@
-"""The invented project of the README: three compounds with code names. Engine: PySCF 2.x, PBE0.
+"""The invented project of the README: three compounds with code names. Engine: PySCF 2.14.0, PBE0.
 
 The Fock matrix is averaged over the group, because an integration grid has no fivefold axis.
 Usage: python pyscf_scenario.py [name ...]
