@@ -7,8 +7,8 @@
 
 pub mod diagnostic;
 pub mod grammar;
-pub mod group;
 pub mod model;
+pub mod group;
 pub mod wavefunction;
 pub mod labelling;
 pub mod report;

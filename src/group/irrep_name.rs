@@ -343,7 +343,7 @@ mod tests {
     fn names_survive_a_round_trip() {
         for text in [
             "A1g", "B2u", "E''", "A2'", "T1u", "Gg", "Hu", "E10u", "A", "Sigma_g+", "Sigma_u-", "Sigma+", "Pi_u",
-            "Delta_g", "Eta_u", "E12_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u",
+            "Delta_g", "Eta_u", "Theta_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u",
         ] {
             let name: IrrepName = text.parse().unwrap();
             assert_eq!(name.to_string(), text);

@@ -18,13 +18,17 @@ pub mod operation;
 pub mod point_group;
 pub mod products;
 pub mod schoenflies;
+pub mod settings;
 pub mod subgroups;
 pub mod symbols;
 pub mod symmetry;
 
 pub use error::GroupError;
+pub use exact::exact_character;
 pub use identify::{identify, standard_frames};
 pub use irrep_name::IrrepName;
 pub use operation::Operation;
-pub use point_group::{Class, Element, Irrep, PointGroup, Setting, Subgroup};
+pub use point_group::{Class, Element, Irrep, PointGroup};
 pub use schoenflies::GroupName;
+pub use settings::Setting;
+pub use subgroups::Subgroup;

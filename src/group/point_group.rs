@@ -72,30 +72,6 @@ pub struct PointGroup {
     pub(super) irreps: Vec<Irrep>,
 }
 
-/// Another choice of axes that fits the group as well, and what it does to the names.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Setting {
-    /// Rows are the axes of the other setting: it takes standard coordinates to those of the setting.
-    pub rotation: Matrix3<f64>,
-    /// In words.
-    pub description: String,
-    /// (irrep here, what it is called in the other setting), for those that change.
-    pub swaps: Vec<(usize, usize)>,
-}
-
-/// A subgroup, up to conjugacy, in its own standard frame.
-#[derive(Debug, Clone)]
-pub struct Subgroup {
-    /// The subgroup.
-    pub group: PointGroup,
-    /// For each element of `group` the index of the same operation in the parent.
-    pub embedding: Vec<usize>,
-    /// Takes coordinates of the parent's frame to those of the subgroup's: rows are the subgroup's axes.
-    pub axes: Matrix3<f64>,
-    /// In words: which axes are kept.
-    pub description: String,
-}
-
 /// An irrep with its name and characters, before its matrices.
 struct NamedIrrep {
     name: IrrepName,
@@ -233,6 +209,12 @@ impl PointGroup {
     #[must_use]
     pub fn inverse(&self, a: usize) -> usize {
         self.multiplication.inverse(a)
+    }
+
+    /// The smallest power above 0 that is the identity.
+    #[must_use]
+    pub fn element_order(&self, a: usize) -> usize {
+        self.multiplication.powers(a).len()
     }
 
     /// The classes, that of the identity first.

@@ -3,8 +3,9 @@
 use super::atomic::HIGHEST_L;
 use super::elements::LINEAR_AXIS_ORDER;
 use super::error::GroupError;
+use super::functions::Space;
 use super::irrep_name::{IrrepName, Parity};
-use super::point_group::PointGroup;
+use super::point_group::{Class, PointGroup};
 
 /// How far a multiplicity may lie from a whole number.
 pub const WHOLE: f64 = 1e-6;
@@ -144,6 +145,30 @@ impl PointGroup {
     #[must_use]
     pub fn quadratic_irreps(&self) -> Decomposition {
         self.with_functions(|functions| functions.quadratic.len())
+    }
+
+    /// The characters, one per class, of the functions of degree l about a centre: an s, p, d … shell.
+    #[must_use]
+    pub fn shell_characters(&self, l: usize) -> Vec<f64> {
+        let space = Space::Harmonics(l);
+        let of_irrep = self.orbital_irrep(l).map(|irrep| self.irreps()[irrep].characters.clone());
+        of_irrep.unwrap_or_else(|| {
+            let of_class = |class: &Class| {
+                class
+                    .members
+                    .first()
+                    .map_or(f64::NAN, |&member| space.character(self.elements()[member].operation.matrix()))
+            };
+            self.classes().iter().map(of_class).collect()
+        })
+    }
+
+    /// For an atom the irrep of its functions of degree l, of parity (−1)^l; `None` for other groups and beyond the l held.
+    #[must_use]
+    pub fn orbital_irrep(&self, l: usize) -> Option<usize> {
+        let l = u8::try_from(l).ok()?;
+        let parity = if l % 2 == 0 { Parity::Even } else { Parity::Odd };
+        self.irrep_idx(&IrrepName::Atomic { parity, l }).ok()
     }
 
     /// What ⟨i|R|i⟩ of each element is multiplied with, and summed, to give the weight of irrep `a` in function i.
