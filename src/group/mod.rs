@@ -3,7 +3,10 @@
 //! Knows no molecule, basis or file.
 
 mod atomic;
+mod character_table;
 pub mod characters;
+pub mod double;
+pub mod double_name;
 mod elements;
 pub mod error;
 mod exact;
@@ -23,6 +26,8 @@ pub mod subgroups;
 pub mod symbols;
 pub mod symmetry;
 
+pub use double::{DoubleClass, DoubleGroup, DoubleIrrep, Kramers};
+pub use double_name::DoubleName;
 pub use error::GroupError;
 pub use exact::exact_character;
 pub use identify::{identify, standard_frames};
