@@ -40,9 +40,8 @@ pub(super) fn full_rotation_group() -> Result<PointGroup, GroupError> {
     for proper in [true, false] {
         for j in 0..N_ANGLES {
             let angle = std::f64::consts::PI * (j as f64 + 0.5) / N_ANGLES as f64;
-            let degrees = angle.to_degrees();
             classes.push(Class {
-                symbol: if proper { format!("C({degrees})") } else { format!("iC({degrees})") },
+                symbol: angle_symbol(j, proper),
                 members: Vec::new(),
                 weight: (1.0 - angle.cos()) / (2 * N_ANGLES) as f64,
             });
@@ -63,6 +62,12 @@ pub(super) fn full_rotation_group() -> Result<PointGroup, GroupError> {
     Ok(PointGroup { name, elements, multiplication, classes, irreps })
 }
 
+/// `C(phi)` for the first angle of the quadrature, `C(3phi)`, `C(5phi)` … for the others.
+fn angle_symbol(j: usize, proper: bool) -> String {
+    let letters = if proper { "C" } else { "iC" };
+    if j == 0 { format!("{letters}(phi)") } else { format!("{letters}({}phi)", 2 * j + 1) }
+}
+
 fn irrep(
     l: u8,
     parity: Parity,
@@ -73,7 +78,7 @@ fn irrep(
     let degree = usize::from(l);
     let dimension = 2 * degree + 1;
     // Harmonics of degree l have parity (−1)^l; the other parity is the same under rotations.
-    let natural = (l % 2 == 0) == (parity == Parity::Even);
+    let natural = l.is_multiple_of(2) == (parity == Parity::Even);
     let functions = Space::Harmonics(degree).functions(GroupName::K);
     let basis = DMatrix::from_columns(&functions.iter().map(|function| function.vector.clone()).collect::<Vec<_>>());
     let generators: Vec<(usize, DMatrix<f64>)> = group

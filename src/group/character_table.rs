@@ -60,8 +60,7 @@ pub(super) fn decompose(table: &impl CharacterTable, characters: &[f64]) -> Resu
         let multiplicity = mean(table, &[row.characters, characters]) / row.constituents as f64;
         let nearest = multiplicity.round().max(0.0);
         let deviation = (multiplicity - nearest).abs();
-        // NaN is refused too.
-        if !(deviation <= WHOLE) {
+        if deviation.is_nan() || deviation > WHOLE {
             let irrep = table.irrep_name(at);
             return Err(GroupError::NotWhole { irrep, multiplicity, deviation, limit: WHOLE });
         }

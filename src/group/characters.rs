@@ -106,8 +106,7 @@ fn rows(
     eigenvectors: &DMatrix<Complex<f64>>,
 ) -> Result<Vec<ComplexIrrep>, GroupError> {
     let order = group.order() as f64;
-    let powers: Vec<Vec<usize>> =
-        classes.iter().map(|class| group.powers(class[0]).into_iter().map(|power| class_of[power]).collect()).collect();
+    let cyclic = Cyclic::covering(group, classes, class_of);
     let mut irreps = Vec::with_capacity(classes.len());
     for vector in eigenvectors.column_iter() {
         let phase = vector[0].conj() / vector[0].norm();
@@ -116,7 +115,10 @@ fn rows(
             .zip(classes)
             .map(|(entry, class)| entry * phase * (order / class.len() as f64).sqrt() / vector.norm())
             .collect();
-        let characters = powers.iter().map(|powers| exact(powers, &rough)).collect::<Result<Vec<_>, _>>()?;
+        let mut characters = vec![Complex::new(f64::NAN, 0.0); classes.len()];
+        for cyclic in &cyclic {
+            cyclic.fill(&rough, &mut characters)?;
+        }
         irreps.push(characters);
     }
     check_orthogonality(&irreps, classes, order)?;
@@ -137,18 +139,61 @@ fn rows(
         .collect()
 }
 
-/// The character of an element from those of its powers: the whole multiplicities of its eigenvalues, each a root of unity.
-fn exact(powers: &[usize], rough: &[Complex<f64>]) -> Result<Complex<f64>, GroupError> {
-    let period = powers.len() as i64;
-    let mut sum = Complex::new(0.0, 0.0);
-    for k in 0..period {
-        let multiplicity = powers.iter().zip(0_i64..).map(|(&class, j)| {
-            (rough[class] * Complex::new(cos_turn(j * k, period), -sin_turn(j * k, period))).re / period as f64
-        });
-        let count = whole(multiplicity.sum(), "whole multiplicities of eigenvalues")? as f64;
-        sum += Complex::new(cos_turn(k, period), sin_turn(k, period)) * count;
+/// The powers of one element: their classes, and the roots of unity that their eigenvalues are among.
+struct Cyclic {
+    /// Class of each power.
+    powers: Vec<usize>,
+    roots: Vec<Complex<f64>>,
+    /// (class, a power in it) for the classes that are taken from this element.
+    taken: Vec<(usize, usize)>,
+}
+
+impl Cyclic {
+    /// A few elements whose powers meet every class, those of highest order first: each class is taken from one of them.
+    fn covering(group: &Multiplication, classes: &[Vec<usize>], class_of: &[usize]) -> Vec<Self> {
+        let mut powers: Vec<Vec<usize>> = classes
+            .iter()
+            .map(|class| group.powers(class[0]).into_iter().map(|power| class_of[power]).collect())
+            .collect();
+        powers.sort_by_key(|powers| std::cmp::Reverse(powers.len()));
+        let mut open = vec![true; classes.len()];
+        let mut found = Vec::new();
+        for powers in powers {
+            let taken: Vec<(usize, usize)> = powers
+                .iter()
+                .enumerate()
+                .filter(|(_, class)| std::mem::replace(&mut open[**class], false))
+                .map(|(power, &class)| (class, power))
+                .collect();
+            if !taken.is_empty() {
+                let period = i64::try_from(powers.len()).unwrap_or(i64::MAX);
+                let roots = (0..period).map(|k| Complex::new(cos_turn(k, period), sin_turn(k, period))).collect();
+                found.push(Self { powers, roots, taken });
+            }
+        }
+        found
     }
-    Ok(sum)
+
+    /// The characters of the classes taken here: sums of roots of unity by the whole multiplicities of the element's eigenvalues.
+    fn fill(&self, rough: &[Complex<f64>], characters: &mut [Complex<f64>]) -> Result<(), GroupError> {
+        let period = self.powers.len();
+        let mut eigenvalues = Vec::new();
+        for k in 0..period {
+            let terms = self
+                .powers
+                .iter()
+                .enumerate()
+                .map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
+            let count = whole(terms.sum::<f64>() / period as f64, "whole multiplicities of eigenvalues")?;
+            if count > 0 {
+                eigenvalues.push((k, count as f64));
+            }
+        }
+        for &(class, power) in &self.taken {
+            characters[class] = eigenvalues.iter().map(|&(k, count)| self.roots[k * power % period] * count).sum();
+        }
+        Ok(())
+    }
 }
 
 /// A number that must be whole and not negative.
@@ -177,4 +222,49 @@ fn check_orthogonality(rows: &[Vec<Complex<f64>>], classes: &[Vec<usize>], order
 fn nearest_row(rows: &[Vec<Complex<f64>>], wanted: &[Complex<f64>]) -> usize {
     let distance = |row: &[Complex<f64>]| -> f64 { row.iter().zip(wanted).map(|(x, y)| (x.conj() - y).norm()).sum() };
     (0..rows.len()).min_by(|&i, &j| distance(&rows[i]).total_cmp(&distance(&rows[j]))).unwrap_or(0)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::group::multiplication::closure;
+    use nalgebra::Quaternion;
+
+    fn dimensions_and_indicators(generators: &[Quaternion<f64>], limit: usize) -> Vec<(usize, i8)> {
+        let same = |a: &Quaternion<f64>, b: &Quaternion<f64>| (a.coords - b.coords).amax() < 1e-9;
+        let elements = closure(Quaternion::identity(), generators, |a, b| a * b, same, limit).unwrap();
+        assert_eq!(elements.len(), limit);
+        let group = Multiplication::of(&elements, |a, b| a * b, same).unwrap();
+        let irreps = complex_irreps(&group, &group.classes()).unwrap();
+        let mut found: Vec<(usize, i8)> = irreps.iter().map(|irrep| (irrep.dimension, irrep.indicator)).collect();
+        found.sort_unstable();
+        found
+    }
+
+    /// The same routine serves double groups: unit quaternions instead of matrices. The double octahedral group has the irreps
+    /// A1 A2 E T1 T2 of O and Γ6 Γ7 Γ8 of dimensions 2, 2, 4, which have real characters but no real matrices ("Splitting of terms in
+    /// crystals" (Termaufspaltung in Kristallen), Ann. Phys. 3, 133 (1929)).
+    #[test]
+    fn double_groups_of_the_octahedron_and_of_d2() {
+        let octahedral =
+            [Quaternion::new(0.5, 0.5, 0.5, 0.5), Quaternion::new(0.5_f64.sqrt(), 0.5_f64.sqrt(), 0.0, 0.0)];
+        assert_eq!(
+            dimensions_and_indicators(&octahedral, 48),
+            [(1, 1), (1, 1), (2, -1), (2, -1), (2, 1), (3, 1), (3, 1), (4, -1)]
+        );
+        let half_turns = [Quaternion::new(0.0, 1.0, 0.0, 0.0), Quaternion::new(0.0, 0.0, 1.0, 0.0)];
+        assert_eq!(dimensions_and_indicators(&half_turns, 8), [(1, 1), (1, 1), (1, 1), (1, 1), (2, -1)]);
+    }
+
+    #[test]
+    fn complex_conjugates_of_a_cyclic_group_are_paired() {
+        let elements: Vec<u32> = (0..7).collect();
+        let group = Multiplication::of(&elements, |a, b| (a + b) % 7, |a, b| a == b).unwrap();
+        let irreps = complex_irreps(&group, &group.classes()).unwrap();
+        assert_eq!(irreps.iter().filter(|irrep| irrep.indicator == 1).count(), 1);
+        for (at, irrep) in irreps.iter().enumerate() {
+            assert_eq!(irreps[irrep.conjugate].conjugate, at);
+            assert_eq!(irrep.conjugate == at, irrep.indicator == 1);
+        }
+    }
 }

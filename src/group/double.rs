@@ -154,18 +154,22 @@ impl DoubleGroup {
         let barred: Vec<Lift> = lifts.iter().map(Lift::barred).collect();
         let elements = [lifts, barred].concat();
         let multiplication = Multiplication::of(&elements, Lift::times, Lift::same)?;
-        let (classes, members) = classes(group, &elements, &multiplication);
-        let class_of = class_of(elements.len(), &members);
-        let rows = complex_irreps(&multiplication, &members)?;
-        let mut double = Self {
-            name: group.name(),
-            elements,
-            class_of,
-            multiplication: Some(multiplication),
-            classes,
-            irreps: Vec::new(),
-            n_single: 0,
-        };
+        let original = multiplication.classes();
+        let entries = entries(group, &elements, &original);
+        let mut rows = complex_irreps(&multiplication, &original)?;
+        for row in &mut rows {
+            row.characters = entries.iter().map(|entry| row.characters[entry.original]).collect();
+        }
+        let mut class_of = vec![0; elements.len()];
+        for (at, entry) in entries.iter().enumerate() {
+            for &member in &entry.members {
+                class_of[member] = at;
+            }
+        }
+        let classes = entries.into_iter().map(|entry| entry.class).collect();
+        let (irreps, n_single) = (Vec::new(), 0);
+        let mut double =
+            Self { name: group.name(), elements, class_of, multiplication: Some(multiplication), classes, irreps, n_single };
         double.irreps = double.named(group, &rows);
         Ok(double)
     }
@@ -370,43 +374,48 @@ impl DoubleGroup {
 /// Order of double-valued irreps: spin 1/2, its products with one-dimensional irreps, others; dimension of a level; 2J.
 type SortKey = (u8, usize, u16);
 
-/// Classes in the order of the point group's, each before its product with R, and their members.
-fn classes(
-    group: &PointGroup,
-    elements: &[Lift],
-    multiplication: &Multiplication,
-) -> (Vec<DoubleClass>, Vec<Vec<usize>>) {
+/// A class with its members, and one of the classes that products alone tell apart.
+struct Entry {
+    class: DoubleClass,
+    members: Vec<usize>,
+    original: usize,
+}
+
+/// Classes in the order of the point group's, each before its product with R.
+///
+/// `original` are those of the product table; classes that the point group joins (planes of linear molecules) are joined here too.
+fn entries(group: &PointGroup, elements: &[Lift], original: &[Vec<usize>]) -> Vec<Entry> {
     let order = group.order();
-    let found = multiplication.classes();
-    let class_of = class_of(elements.len(), &found);
-    let mut classes = Vec::with_capacity(found.len());
-    let mut members = Vec::with_capacity(found.len());
+    let class_of = class_of(elements.len(), original);
+    let mut entries = Vec::with_capacity(original.len());
     for (single, class) in group.classes().iter().enumerate() {
         let first = class.members.first().copied().unwrap_or(0);
         let (plain, barred) = (class_of[first], class_of[first + order]);
         let stem = class.symbol.trim_start_matches(|c: char| c.is_ascii_digit());
-        let size = class.members.len();
-        let count = if size == 1 { String::new() } else { size.to_string() };
-        let turned = if stem == "E" { "R".to_owned() } else { format!("R{stem}") };
-        let mut enter = |at: usize, symbol: String| {
-            classes.push(DoubleClass {
+        let stem = stem.strip_prefix("inf").unwrap_or(stem);
+        let count = &class.symbol[..class.symbol.len() - stem.len()];
+        let turned = if stem == "E" { "R".to_owned() } else { format!("{count}R{stem}") };
+        let mut enter = |at: usize, symbol: String, members: Vec<usize>| {
+            let lift = elements[original[at][0]];
+            let class = DoubleClass {
                 symbol,
-                size: found[at].len(),
-                weight: found[at].len() as f64 / elements.len() as f64,
-                half_angle: elements[found[at][0]].half_angle(),
-                proper: !elements[found[at][0]].inverted,
+                size: members.len(),
+                weight: members.len() as f64 / elements.len() as f64,
+                half_angle: lift.half_angle(),
+                proper: !lift.inverted,
                 single,
-            });
-            members.push(found[at].clone());
+            };
+            entries.push(Entry { class, members, original: at });
         };
         if plain == barred {
-            enter(plain, format!("{count}{stem}+{count}{turned}"));
+            let members = class.members.iter().flat_map(|&member| [member, member + order]).collect();
+            enter(plain, format!("{}+{turned}", class.symbol), members);
         } else {
-            enter(plain, format!("{count}{stem}"));
-            enter(barred, format!("{count}{turned}"));
+            enter(plain, class.symbol.clone(), original[plain].clone());
+            enter(barred, turned, original[barred].clone());
         }
     }
-    (classes, members)
+    entries
 }
 
 impl CharacterTable for DoubleGroup {

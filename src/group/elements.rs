@@ -113,7 +113,7 @@ fn dihedral(n: u32) -> Vec<Matrix3<f64>> {
 
 fn tetrahedral_rotations() -> Vec<Matrix3<f64>> {
     let cycle = Matrix3::new(0.0, 0.0, 1.0, 1.0, 0.0, 0.0, 0.0, 1.0, 0.0);
-    in_printed_order(closure(&[turn_z(1, 2), cycle]), |fold, power| match (fold, power) {
+    in_printed_order(&closure(&[turn_z(1, 2), cycle]), |fold, power| match (fold, power) {
         (3, power) => power,
         _ => 3,
     })
@@ -121,7 +121,7 @@ fn tetrahedral_rotations() -> Vec<Matrix3<f64>> {
 
 fn octahedral_rotations() -> Vec<Matrix3<f64>> {
     let cycle = Matrix3::new(0.0, 0.0, 1.0, 1.0, 0.0, 0.0, 0.0, 1.0, 0.0);
-    in_printed_order(closure(&[turn_z(1, 4), cycle]), |fold, power| match (fold, power) {
+    in_printed_order(&closure(&[turn_z(1, 4), cycle]), |fold, power| match (fold, power) {
         (3, _) => 1,
         (4, 1 | 3) => 2,
         (4, _) => 3,
@@ -132,7 +132,7 @@ fn octahedral_rotations() -> Vec<Matrix3<f64>> {
 fn icosahedral_rotations() -> Vec<Matrix3<f64>> {
     let vertex = nalgebra::Unit::new_normalize(Vector3::new(2.0, 0.0, 1.0));
     let about_vertex = nalgebra::Rotation3::from_axis_angle(&vertex, std::f64::consts::TAU / 5.0).into_inner();
-    in_printed_order(closure(&[turn_z(1, 5), about_vertex]), |fold, power| match (fold, power) {
+    in_printed_order(&closure(&[turn_z(1, 5), about_vertex]), |fold, power| match (fold, power) {
         (5, 1 | 4) => 1,
         (5, _) => 2,
         (3, _) => 3,
@@ -147,7 +147,7 @@ fn closure(generators: &[Matrix3<f64>]) -> Vec<Matrix3<f64>> {
 }
 
 /// Sorts rotations by the rank of (order of the axis, power), then power, then axis: from z down, from x round.
-fn in_printed_order(rotations: Vec<Matrix3<f64>>, rank: impl Fn(u32, u32) -> u32) -> Vec<Matrix3<f64>> {
+fn in_printed_order(rotations: &[Matrix3<f64>], rank: impl Fn(u32, u32) -> u32) -> Vec<Matrix3<f64>> {
     let axes: Vec<Vector3<f64>> = rotations.iter().map(directed_axis).collect();
     let fold = |axis: &Vector3<f64>| axes.iter().skip(1).filter(|other| (*other - axis).amax() < SAME).count() + 1;
     let mut keyed: Vec<_> = rotations

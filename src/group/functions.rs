@@ -129,18 +129,22 @@ impl Space {
                 (5, "x(x2-3y2)"),
                 (6, "y(3x2-y2)"),
             ]),
-            Self::Harmonics(l) => (0..n)
-                .map(|at| {
-                    let sign = if at == 0 {
-                        ""
-                    } else if at % 2 == 1 {
-                        "+"
-                    } else {
-                        "-"
+            Self::Harmonics(l) => {
+                let function = |at: usize| {
+                    let sign = match at {
+                        0 => "",
+                        at if at % 2 == 1 => "+",
+                        _ => "-",
                     };
                     unit(at, &format!("Y({l},{sign}{})", at.div_ceil(2)))
-                })
-                .collect(),
+                };
+                if is_cubic(group) || is_icosahedral(group) {
+                    (0..n).map(function).collect()
+                } else {
+                    // About one axis what is new at this degree has the highest |m|.
+                    (1..=l).rev().flat_map(|m| [2 * m - 1, 2 * m]).chain([0]).map(function).collect()
+                }
+            }
         }
     }
 }
@@ -148,6 +152,10 @@ impl Space {
 /// Groups whose axes treat x, y and z alike.
 fn is_cubic(group: GroupName) -> bool {
     matches!(group, GroupName::T | GroupName::Td | GroupName::Th | GroupName::O | GroupName::Oh)
+}
+
+fn is_icosahedral(group: GroupName) -> bool {
+    matches!(group, GroupName::I | GroupName::Ih | GroupName::K)
 }
 
 /// Trace of a turn by `angle` on the functions of degree l: 1 + 2Σ cos(m·angle).

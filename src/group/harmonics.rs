@@ -7,10 +7,19 @@ use nalgebra::{DMatrix, Matrix3};
 
 /// The matrix of an operation on the functions of degree `l`; column j is the image of function j.
 ///
+/// (R f)(r) = f(R⁻¹ r): for l = 1 this is the operation itself in the order z, x, y. Also for improper operations.
+///
+/// # Holds
+/// `rotation(l, a * b)` is `rotation(l, a) * rotation(l, b)`; the matrix is orthogonal when `operation` is.
 /// # Source
 /// Recursion over l: J. Phys. Chem. 100, 6342 (1996), with the corrections of doi:10.1021/jp9833350.
 #[must_use]
-#[expect(clippy::cast_possible_wrap, clippy::cast_sign_loss, reason = "degrees are below 100")]
+#[expect(
+    clippy::cast_possible_wrap,
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "degrees are far below 2³¹"
+)]
 pub fn rotation(l: usize, operation: &Matrix3<f64>) -> DMatrix<f64> {
     let place = |m: i64| if m > 0 { 2 * m as usize - 1 } else { 2 * m.unsigned_abs() as usize };
     let axis = |m: i64| match m {
@@ -68,4 +77,64 @@ pub fn rotation(l: usize, operation: &Matrix3<f64>) -> DMatrix<f64> {
         below = matrix;
     }
     below
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use nalgebra::{DVector, Rotation3, Vector3};
+
+    /// Real harmonics of degree l at a point of the unit sphere, by the recursion of normalised Legendre functions.
+    fn values(l: usize, r: &Vector3<f64>) -> DVector<f64> {
+        let mut values = DVector::zeros(2 * l + 1);
+        // (x + iy)^m and the function with l = m.
+        let (mut re, mut im, mut diagonal) = (1.0, 0.0, 1.0);
+        for m in 0..=l {
+            if m > 0 {
+                (re, im) = (re * r.x - im * r.y, re * r.y + im * r.x);
+                diagonal *= ((2 * m + 1) as f64 / (2 * m) as f64).sqrt();
+            }
+            let (mut below, mut here) = (0.0, diagonal);
+            for degree in m + 1..=l {
+                let (d, m) = (degree as f64, m as f64);
+                let a = ((4.0 * d * d - 1.0) / (d * d - m * m)).sqrt();
+                let b = (((d - 1.0).powi(2) - m * m) / (4.0 * (d - 1.0).powi(2) - 1.0)).sqrt();
+                let b = if degree as f64 - 1.0 > m { b } else { 0.0 };
+                (below, here) = (here, a * (r.z * here - b * below));
+            }
+            if m == 0 {
+                values[0] = here;
+            } else {
+                values[2 * m - 1] = 2.0_f64.sqrt() * here * re;
+                values[2 * m] = 2.0_f64.sqrt() * here * im;
+            }
+        }
+        values
+    }
+
+    #[test]
+    fn turned_functions_have_the_values_of_the_functions_at_turned_points() {
+        let turn = Rotation3::from_euler_angles(0.4, -1.2, 2.1).into_inner();
+        for operation in [turn, -turn, Matrix3::from_diagonal(&Vector3::new(1.0, -1.0, 1.0))] {
+            for l in 0..=12 {
+                let matrix = rotation(l, &operation);
+                for r in [Vector3::new(0.3, -0.5, 0.8), Vector3::new(-0.9, 0.1, 0.2), Vector3::new(0.1, 0.7, -0.3)] {
+                    let r = r.normalize();
+                    // f_j(R⁻¹ r) = Σ_i D_ij f_i(r).
+                    let difference = values(l, &(operation.transpose() * r)) - matrix.transpose() * values(l, &r);
+                    assert!(difference.amax() < 1e-12, "l = {l}: {difference}");
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn products_of_operations_are_products_of_matrices() {
+        let a = Rotation3::from_euler_angles(1.0, 0.2, -0.7).into_inner();
+        let b = -Rotation3::from_euler_angles(-0.3, 1.4, 0.5).into_inner();
+        for l in [1, 2, 6, 20] {
+            let difference = rotation(l, &(a * b)) - rotation(l, &a) * rotation(l, &b);
+            assert!(difference.amax() < 1e-11, "l = {l}");
+        }
+    }
 }

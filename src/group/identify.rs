@@ -54,15 +54,21 @@ pub fn standard_frames(operations: &[Matrix3<f64>]) -> Result<(GroupName, Vec<Ma
     if frames.is_empty() { Err(refused("their products leave the set", smallest)) } else { Ok((name, frames)) }
 }
 
-/// The frame whose axes deviate least from the given ones; of equal ones the first.
+/// The frame whose axes deviate least from the given ones; of equal ones that whose z has the largest sum of components, then the first.
 pub(super) fn nearest_to_identity(frames: &[Matrix3<f64>]) -> Matrix3<f64> {
     let mut best = frames.first().copied().unwrap_or_else(Matrix3::identity);
     for frame in frames {
-        if frame.trace() > best.trace() + 1e-9 {
+        if nearness(frame) > nearness(&best) {
             best = *frame;
         }
     }
     best
+}
+
+/// Larger for frames nearer to the given axes; whole numbers, so that rounding decides nothing.
+#[expect(clippy::cast_possible_truncation, reason = "sums of three cosines")]
+pub(super) fn nearness(frame: &Matrix3<f64>) -> [i64; 2] {
+    [frame.trace(), frame.row(2).sum()].map(|sum| (sum * 1e6).round() as i64)
 }
 
 /// Largest distance of an operation, seen in `axes`, from the nearest standard one.

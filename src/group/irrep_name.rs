@@ -150,10 +150,10 @@ impl IrrepName {
         self.decorated(false)
     }
 
-    fn decorated(&self, capital: bool) -> String {
+    fn decorated(self, capital: bool) -> String {
         let case = |c: char| if capital { c } else { c.to_ascii_lowercase() };
         let mut text = String::new();
-        match *self {
+        match self {
             Self::Mulliken { parity, prime, letter, number } => {
                 text.push(case(letter.as_char()));
                 if let Some(number) = number {
@@ -266,6 +266,7 @@ fn plain(text: &str) -> String {
 }
 
 /// `g`, `u` or nothing, with or without an underscore before it; `None` for anything else.
+#[expect(clippy::option_option, reason = "no parity and no match are different things")]
 fn parity(text: &str) -> Option<Option<Parity>> {
     match text.strip_prefix('_').unwrap_or(text) {
         "" => Some(None),

@@ -1,6 +1,6 @@
 //! A symmetry operation as an orthogonal matrix, and what kind of operation it is.
 //!
-//! Not here: products and groups (`group::finite`), names that depend on the whole group (`sigma_h`, `C2'`).
+//! Not here: products and groups (`group::multiplication`), names that depend on the whole group (`group::symbols`).
 
 use nalgebra::{Matrix3, Unit, Vector3};
 use thiserror::Error;

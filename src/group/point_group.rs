@@ -123,6 +123,37 @@ fn named_irreps(
     Ok(irreps)
 }
 
+/// Joins the two families of planes through the axis of a linear molecule, and of half turns across it.
+///
+/// The finite stand-in parts them, the irreps of the linear group do not.
+fn joined(
+    classes: Vec<Vec<usize>>,
+    mut irreps: Vec<NamedIrrep>,
+    operations: &[Matrix3<f64>],
+) -> (Vec<Vec<usize>>, Vec<NamedIrrep>) {
+    // What reflects the xy plane in a line, and what that does to z.
+    let family = |class: &[usize]| {
+        let matrix = operations[class[0]];
+        (matrix[(0, 0)] * matrix[(1, 1)] < matrix[(0, 1)] * matrix[(1, 0)]).then_some(matrix[(2, 2)] > 0.0)
+    };
+    let mut kept: Vec<(usize, Vec<usize>)> = Vec::new();
+    for (at, class) in classes.into_iter().enumerate() {
+        let wanted = family(&class);
+        match kept.iter_mut().find(|(_, other)| wanted.is_some() && family(other) == wanted) {
+            Some((_, other)) => other.extend(class),
+            None => kept.push((at, class)),
+        }
+    }
+    for irrep in &mut irreps {
+        irrep.characters = kept.iter().map(|(at, _)| irrep.characters[*at]).collect();
+    }
+    let mut classes: Vec<Vec<usize>> = kept.into_iter().map(|(_, class)| class).collect();
+    for class in &mut classes {
+        class.sort_unstable();
+    }
+    (classes, irreps)
+}
+
 /// Elements and classes with their symbols.
 pub(super) fn elements_and_classes(
     name: GroupName,
@@ -154,6 +185,17 @@ impl Class {
 impl PointGroup {
     /// The group of this name in its standard frame.
     ///
+    /// ```
+    /// # use orbsieve::group::PointGroup;
+    /// # fn main() -> Result<(), orbsieve::group::GroupError> {
+    /// let group = PointGroup::standard("D5d".parse()?)?;
+    /// let e1g = group.irrep_idx(&"E1g".parse()?)?;
+    /// let names = |sum: Vec<(usize, usize)>| sum.iter().map(|&(at, _)| group.irreps()[at].name.to_string()).collect::<Vec<_>>();
+    /// assert_eq!(names(group.product(e1g, e1g)?), ["A1g", "A2g", "E2g"]);
+    /// assert_eq!(group.irreps()[e1g].partners, ["xz", "yz"]);
+    /// # Ok(())
+    /// # }
+    /// ```
     /// # Errors
     /// [`GroupError::AxisOrder`] for an n that is not supported.
     pub fn standard(name: GroupName) -> Result<Self, GroupError> {
@@ -165,6 +207,8 @@ impl PointGroup {
         let multiplication = Multiplication::of(&operations, |a, b| a * b, same)?;
         let members = multiplication.classes();
         let named = named_irreps(name, &operations, &multiplication, &members)?;
+        let (members, named) =
+            if name.is_continuous() { joined(members, named, &operations) } else { (members, named) };
         let by_element: Vec<Vec<f64>> =
             named.iter().map(|irrep| irrep.by_element(&members, operations.len())).collect();
         let sought: Vec<Sought<'_>> =
@@ -221,6 +265,29 @@ impl PointGroup {
     #[must_use]
     pub fn classes(&self) -> &[Class] {
         &self.classes
+    }
+
+    /// The classes that a printed table shows: all of a finite group, of a continuous one those that stand for the rest.
+    ///
+    /// For linear groups E, C(φ), σv (and i, S(φ), C2'), for atoms E, C(φ), i, iC(φ), in which characters are functions of φ:
+    /// see [`super::exact_character`].
+    #[must_use]
+    pub fn printed_classes(&self) -> Vec<usize> {
+        let shown = |class: &Class| match self.name {
+            GroupName::Cinfv | GroupName::Dinfh => {
+                let symbol = class.symbol.as_str();
+                matches!(symbol, "E" | "2C(phi)" | "i" | "2S(phi)") || symbol.starts_with("inf")
+            }
+            GroupName::K => matches!(class.symbol.as_str(), "E" | "i" | "C(phi)" | "iC(phi)"),
+            _ => true,
+        };
+        let mut printed: Vec<usize> = (0..self.classes.len()).filter(|&at| shown(&self.classes[at])).collect();
+        if self.is_continuous() {
+            // Turns before inversion and its products, planes with the turns, as in printed tables.
+            let order = ["E", "2C(phi)", "C(phi)", "infsigma_v", "i", "2S(phi)", "iC(phi)", "infC2'"];
+            printed.sort_by_key(|&at| order.iter().position(|symbol| *symbol == self.classes[at].symbol));
+        }
+        printed
     }
 
     /// The irreps in the order of printed tables.

@@ -4,7 +4,7 @@
 
 use super::elements::{LINEAR_AXIS_ORDER, same};
 use super::error::GroupError;
-use super::identify::{nearest_to_identity, standard_frames};
+use super::identify::{nearest_to_identity, nearness, standard_frames};
 use super::multiplication::Multiplication;
 use super::point_group::PointGroup;
 use super::products::Decomposition;
@@ -29,20 +29,22 @@ pub struct Subgroup {
 impl PointGroup {
     /// All subgroups up to conjugacy, largest first, the group itself left out.
     ///
-    /// Each is given with axes as near as possible to the parent's. For linear groups those without their whole axis
-    /// are listed with axes to order 2, as molecules meet them; for atoms those of the sample of elements.
+    /// Of conjugate subgroups the one nearest to the parent's axes stands for all. For linear groups those are listed that molecules
+    /// meet: the whole axis or axes to order 2. For atoms none, as every point group is one: see [`PointGroup::shell_characters`].
     ///
     /// # Errors
     /// None for groups made by [`PointGroup::standard`].
     pub fn subgroups(&self) -> Result<Vec<Subgroup>, GroupError> {
         let mut known: BTreeMap<GroupName, PointGroup> = BTreeMap::new();
         let mut found = Vec::new();
-        for members in subgroups_up_to_conjugacy(&self.multiplication) {
-            let whole = members.len() == self.order();
-            if (whole && self.name() != GroupName::K) || !self.is_listed(&members) {
-                continue;
+        if self.name() == GroupName::K {
+            return Ok(found);
+        }
+        for class in subgroups_up_to_conjugacy(&self.multiplication) {
+            let members = self.nearest_of(&class)?;
+            if members.len() < self.order() && self.is_listed(&members) {
+                found.push(self.subgroup_of(&members, &mut known)?);
             }
-            found.push(self.subgroup_of(&members, &mut known)?);
         }
         found.sort_by_key(|subgroup| std::cmp::Reverse((subgroup.embedding.len(), subgroup.group.name())));
         Ok(found)
@@ -82,32 +84,57 @@ impl PointGroup {
         self.subgroup_of(&members, &mut BTreeMap::new()).expect("sign changes of the axes form a point group")
     }
 
-    fn is_listed(&self, members: &[usize]) -> bool {
-        if !matches!(self.name(), GroupName::Cinfv | GroupName::Dinfh) {
-            return true;
-        }
-        // Of the stand-in's cyclic groups only those of the whole axis or to order 2 are subgroups that molecules have.
-        let axis = members.iter().filter(|&&at| {
-            let matrix = self.elements()[at].operation.matrix();
-            matrix.determinant() > 0.0 && matrix[(2, 2)] > 0.5
-        });
-        let planes = members.iter().any(|&at| self.elements()[at].operation.matrix().determinant() < 0.0);
-        match axis.count() {
-            1 | 2 => true,
-            n => {
-                n == LINEAR_AXIS_ORDER as usize
-                    && planes
-                    && members.len() == 2 * n
-                    && self.has_plane_through_axis(members)
+    /// Of conjugate subgroups the one whose elements, then whose standard axes, agree best with the parent's.
+    fn nearest_of(&self, class: &[Bits]) -> Result<Vec<usize>, GroupError> {
+        let agreement = |bits: &Bits| self.agreement(bits.members());
+        let best = class.iter().map(agreement).max();
+        let mut nearest: Option<([i64; 2], Vec<usize>)> = None;
+        for bits in class.iter().filter(|bits| Some(agreement(bits)) == best) {
+            let members: Vec<usize> = bits.members().collect();
+            let near = nearness(&nearest_to_identity(&standard_frames(&self.matrices_of(&members))?.1));
+            // Of equally near ones the lowest indices, whatever the order in which they were found.
+            if nearest.as_ref().is_none_or(|(other, known)| (near, known) > (*other, &members)) {
+                nearest = Some((near, members));
             }
         }
+        Ok(nearest.map(|(_, members)| members).unwrap_or_default())
     }
 
-    fn has_plane_through_axis(&self, members: &[usize]) -> bool {
-        members.iter().any(|&at| {
-            let matrix = self.elements()[at].operation.matrix();
-            matrix.determinant() < 0.0 && matrix[(2, 2)] > 0.5
-        })
+    /// How many directions of z, then of x, the elements keep or reverse, as whole numbers.
+    #[expect(clippy::cast_possible_truncation, reason = "sums of at most 256 cosines")]
+    fn agreement(&self, members: impl Iterator<Item = usize>) -> [i64; 2] {
+        let mut sums = [0.0; 2];
+        for member in members {
+            let matrix = self.elements()[member].operation.matrix();
+            sums[0] += matrix[(2, 2)].abs();
+            sums[1] += matrix[(0, 0)].abs();
+        }
+        sums.map(|sum: f64| (sum * 1e6).round() as i64)
+    }
+
+    fn matrices_of(&self, members: &[usize]) -> Vec<Matrix3<f64>> {
+        members.iter().map(|&member| *self.elements()[member].operation.matrix()).collect()
+    }
+
+    /// Whether a subgroup of the finite stand-in is one that linear molecules have; each kind once.
+    fn is_listed(&self, members: &[usize]) -> bool {
+        if !self.is_continuous() {
+            return true;
+        }
+        let matrices = || members.iter().map(|&member| self.elements()[member].operation.matrix());
+        let turns = matrices().filter(|m| m.determinant() > 0.0 && m[(2, 2)] > 0.5).count();
+        // What reflects the xy plane in a line; all lines are alike, so the x axis stands for all.
+        let line = |m: &Matrix3<f64>| m[(0, 0)] * m[(1, 1)] < m[(0, 1)] * m[(1, 0)];
+        let half_turns = || matrices().filter(|m| line(m) && m[(2, 2)] < 0.0);
+        let planes = || matrices().filter(|m| line(m) && m[(2, 2)] > 0.0);
+        let is_x = |m: &Matrix3<f64>| (m[(0, 0)] - 1.0).abs() < 1e-6;
+        let at_x = if half_turns().next().is_some() {
+            half_turns().any(is_x)
+        } else {
+            planes().next().is_none() || planes().any(is_x)
+        };
+        let whole_axis = turns == LINEAR_AXIS_ORDER as usize && members.len() == 2 * turns && planes().next().is_some();
+        (turns <= 2 && at_x) || whole_axis
     }
 
     /// The subgroup of these elements; groups already made are taken from `known`.
@@ -116,8 +143,7 @@ impl PointGroup {
         members: &[usize],
         known: &mut BTreeMap<GroupName, PointGroup>,
     ) -> Result<Subgroup, GroupError> {
-        let operations: Vec<Matrix3<f64>> =
-            members.iter().map(|&member| *self.elements()[member].operation.matrix()).collect();
+        let operations = self.matrices_of(members);
         let (name, frames) = standard_frames(&operations)?;
         let name =
             if name == GroupName::Cnv(LINEAR_AXIS_ORDER) && self.is_continuous() { GroupName::Cinfv } else { name };
@@ -141,7 +167,8 @@ impl PointGroup {
         let mut classes: Vec<usize> = embedding.iter().map(|&at| self.elements()[at].class_idx).collect();
         classes.sort_unstable();
         for class in classes {
-            let stem = self.classes()[class].symbol.trim_start_matches(|c: char| c.is_ascii_digit());
+            let symbol = self.classes()[class].symbol.trim_start_matches(|c: char| c.is_ascii_digit());
+            let stem = symbol.strip_prefix("inf").unwrap_or(symbol);
             if (stem == "C2" || stem.starts_with("C2'") || stem.starts_with("C2(") || stem.starts_with("sigma"))
                 && !kept.contains(&stem)
             {
@@ -180,10 +207,11 @@ fn direction(axis: &Vector3<f64>) -> String {
     let whole =
         sizes.into_iter().map(|size| axis / size).find(|scaled| scaled.iter().all(|c| (c - c.round()).abs() < 1e-6));
     // Adding zero turns −0 into 0.
-    match whole {
-        Some(scaled) => format!("({}, {}, {})", scaled.x.round() + 0.0, scaled.y.round() + 0.0, scaled.z.round() + 0.0),
-        None => format!("({:.3}, {:.3}, {:.3})", axis.x, axis.y, axis.z),
+    if let Some(scaled) = whole.map(|scaled| scaled.map(|c| c.round() + 0.0)) {
+        return format!("({}, {}, {})", scaled.x, scaled.y, scaled.z);
     }
+    let rounded = axis.map(|c| (c * 1e3).round() / 1e3 + 0.0);
+    format!("({:.3}, {:.3}, {:.3})", rounded.x, rounded.y, rounded.z)
 }
 
 /// A set of elements, one bit each.
@@ -210,10 +238,10 @@ impl Bits {
     }
 }
 
-/// One subgroup of each class of conjugate ones, as ascending indices, the whole group included.
+/// All subgroups by classes of conjugate ones, the trivial and the whole group included.
 ///
 /// Every subgroup is a join of cyclic ones, so joining each subgroup found with each cyclic one finds all.
-fn subgroups_up_to_conjugacy(group: &Multiplication) -> Vec<Vec<usize>> {
+fn subgroups_up_to_conjugacy(group: &Multiplication) -> Vec<Vec<Bits>> {
     let order = group.order();
     debug_assert!(order <= 256, "an axis order of 64 gives 256 elements");
     let mut cyclic: Vec<(Bits, usize)> = Vec::new();
@@ -225,23 +253,30 @@ fn subgroups_up_to_conjugacy(group: &Multiplication) -> Vec<Vec<usize>> {
     }
     let trivial = Bits::of([0]);
     let mut seen = BTreeSet::from([trivial]);
-    let mut found: Vec<(Bits, Vec<usize>)> = vec![(trivial, Vec::new())];
+    let mut found: Vec<(Vec<Bits>, Vec<usize>)> = vec![(vec![trivial], Vec::new())];
     let mut next = 0;
-    while let Some((bits, generators)) = found.get(next).cloned() {
+    while let Some((class, generators)) = found.get(next).cloned() {
+        let bits = class[0];
         for &(_, a) in cyclic.iter().filter(|(_, a)| !bits.has(*a)) {
             let generators: Vec<usize> = generators.iter().copied().chain([a]).collect();
             let joined = generated(group, &generators);
             if seen.contains(&joined) {
                 continue;
             }
+            // The one that `generators` generate comes first.
+            let mut class = vec![joined];
+            seen.insert(joined);
             for by in 0..order {
-                seen.insert(Bits::of(joined.members().map(|member| group.conjugate(member, by))));
+                let conjugate = Bits::of(joined.members().map(|member| group.conjugate(member, by)));
+                if seen.insert(conjugate) {
+                    class.push(conjugate);
+                }
             }
-            found.push((joined, generators));
+            found.push((class, generators));
         }
         next += 1;
     }
-    found.into_iter().map(|(bits, _)| bits.members().collect()).collect()
+    found.into_iter().map(|(class, _)| class).collect()
 }
 
 fn generated(group: &Multiplication, generators: &[usize]) -> Bits {

@@ -2,7 +2,8 @@
 //!
 //! Not here: which operations there are (`group::elements`).
 
-use super::elements::{SAME, directed_axis};
+use super::elements::{LINEAR_AXIS_ORDER, SAME, directed_axis};
+use super::exact::greatest_common_divisor;
 use super::schoenflies::GroupName;
 use nalgebra::{Matrix3, Vector3};
 
@@ -35,7 +36,11 @@ pub(super) fn symbols(
     let of_classes = classes.iter().map(|class| {
         let lowest = class.iter().map(|&member| &stems[member]).min_by_key(|stem| stem.power);
         let text = lowest.map_or("", |stem| stem.text.as_str());
-        if class.len() == 1 { text.to_owned() } else { format!("{}{text}", class.len()) }
+        match class.len() {
+            1 => text.to_owned(),
+            _ if name.is_continuous() && !text.contains('(') => format!("inf{text}"),
+            n => format!("{n}{text}"),
+        }
     });
     (numbered.collect(), of_classes.collect())
 }
@@ -48,6 +53,9 @@ struct Family {
 
 fn stem(name: GroupName, operation: &Matrix3<f64>, family: &Family) -> Stem {
     let proper = operation.determinant() > 0.0;
+    if let Some(stem) = turn_of_linear_group(name, operation, proper) {
+        return stem;
+    }
     let rotation = if proper { *operation } else { -operation };
     let axis = directed_axis(&rotation);
     let (numerator, denominator) = fraction_of_turn(&rotation, &axis);
@@ -67,6 +75,33 @@ fn stem(name: GroupName, operation: &Matrix3<f64>, family: &Family) -> Stem {
     }
 }
 
+/// Turns about the axis of a linear molecule: `C(phi)`, `C(-2phi)`, `S(phi)`; `None` for special angles and all other operations.
+fn turn_of_linear_group(name: GroupName, operation: &Matrix3<f64>, proper: bool) -> Option<Stem> {
+    let multiple = multiple_of_phi(name, operation)?;
+    let letter = if proper { 'C' } else { 'S' };
+    let sign = if multiple < 0 { "-" } else { "" };
+    let text = match multiple.unsigned_abs() {
+        1 => format!("{letter}({sign}phi)"),
+        n => format!("{letter}({sign}{n}phi)"),
+    };
+    Some(Stem { text, power: 2 * multiple.unsigned_abs() + u32::from(multiple < 0) })
+}
+
+/// k of a turn (proper or improper) by kφ about the axis of a linear group, φ being the smallest turn of the finite stand-in.
+///
+/// `None` for other groups, other operations, and turns by 0 and π.
+pub(super) fn multiple_of_phi(name: GroupName, operation: &Matrix3<f64>) -> Option<i32> {
+    let linear = matches!(name, GroupName::Cinfv | GroupName::Dinfh);
+    let turns = operation[(0, 0)] * operation[(1, 1)] - operation[(0, 1)] * operation[(1, 0)] > 0.0;
+    if !linear || !turns || operation[(0, 1)].abs() < SAME {
+        return None;
+    }
+    let part = operation[(1, 0)].atan2(operation[(0, 0)]) / std::f64::consts::TAU;
+    #[expect(clippy::cast_possible_truncation, reason = "at most half the order of the axis")]
+    let multiple = (part * f64::from(LINEAR_AXIS_ORDER)).round() as i32;
+    Some(multiple)
+}
+
 fn power(letter: &str, n: u32, power: u32) -> Stem {
     let text = if power == 1 { format!("{letter}{n}") } else { format!("{letter}{n}^{power}") };
     Stem { text, power }
@@ -76,19 +111,12 @@ fn half_turn(name: GroupName, axis: &Vector3<f64>, family: &Family) -> String {
     let along_z = axis.z > 1.0 - SAME;
     let text = match name {
         GroupName::Dn(2) | GroupName::Dnh(2) => return format!("C2({})", coordinate(axis)),
-        GroupName::O | GroupName::Oh => {
-            // Those along the four-fold axes are C4².
-            if axis.iter().filter(|component| component.abs() > SAME).count() == 1 { "C2" } else { "C2'" }
-        }
+        // Half turns about the four-fold axes are C4².
+        GroupName::O | GroupName::Oh if along_coordinate(axis) => "C2",
+        GroupName::O | GroupName::Oh => "C2'",
         _ if along_z => "C2",
-        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => {
-            if family.first {
-                "C2'"
-            } else {
-                "C2''"
-            }
-        }
-        GroupName::Dinfh if !family.first => "C2''",
+        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 && !family.first => "C2''",
+        GroupName::Dn(n) | GroupName::Dnh(n) if n % 2 == 0 => "C2'",
         GroupName::Dinfh => "C2'",
         GroupName::Dnd(n) if n % 2 == 0 => "C2'",
         _ => "C2",
@@ -110,22 +138,21 @@ fn plane(name: GroupName, normal: &Vector3<f64>, family: &Family) -> String {
         GroupName::Cnv(2) if family.first => "sigma_v(xz)",
         GroupName::Cnv(2) => "sigma_v'(yz)",
         GroupName::Ih | GroupName::I | GroupName::K => "sigma",
-        GroupName::Td => "sigma_d",
         GroupName::Th => "sigma_h",
-        GroupName::Oh => {
-            if normal.iter().filter(|component| component.abs() > SAME).count() == 1 {
-                "sigma_h"
-            } else {
-                "sigma_d"
-            }
-        }
+        GroupName::Oh if along_coordinate(normal) => "sigma_h",
+        GroupName::Td | GroupName::Oh => "sigma_d",
         _ if horizontal => "sigma_h",
         GroupName::Dnd(_) => "sigma_d",
+        GroupName::Cinfv | GroupName::Dinfh => "sigma_v",
         GroupName::Cnv(n) | GroupName::Dnh(n) if n % 2 == 1 => "sigma_v",
         _ if family.first => "sigma_v",
         _ => "sigma_d",
     };
     text.to_owned()
+}
+
+fn along_coordinate(axis: &Vector3<f64>) -> bool {
+    axis.iter().filter(|component| component.abs() > SAME).count() == 1
 }
 
 fn coordinate(axis: &Vector3<f64>) -> char {
@@ -154,11 +181,8 @@ fn fraction_of_turn(rotation: &Matrix3<f64>, axis: &Vector3<f64>) -> (u32, u32) 
 /// A fraction of a turn in lowest terms, between 0 and 1.
 fn reduced(numerator: u32, denominator: u32) -> (u32, u32) {
     let numerator = numerator % denominator;
-    let (mut a, mut b) = (denominator, numerator);
-    while b > 0 {
-        (a, b) = (b, a % b);
-    }
-    (numerator / a, denominator / a)
+    let common = greatest_common_divisor(numerator, denominator);
+    (numerator / common, denominator / common)
 }
 
 /// An ASCII symbol of an operation or a class with subscripts, superscripts, primes and σ: `2S₁₀³`, `3σv`, `3C₂″`.

@@ -1,1 +1,19 @@
 //! Basis functions, their overlap, the conventions of files, and operations on orbitals.
+//!
+//! Reading order: `cartesian` (functions of one shell), `basis`, `overlap`, `convention`, `turn`, `population`.
+
+pub mod basis;
+pub mod cartesian;
+pub mod convention;
+pub mod overlap;
+pub mod population;
+mod product;
+pub mod turn;
+
+pub use basis::Basis;
+pub use cartesian::angular_projector;
+pub use convention::{ConventionError, Settled, settle};
+pub use overlap::{overlap, overlap_between};
+pub use population::lowdin;
+pub use product::product;
+pub use turn::{Turning, TurningError};
