@@ -29,3 +29,51 @@ pub struct Diagnostic {
     /// What to do, where there is something to do.
     pub help: Option<String>,
 }
+
+/// Longest part of a line that is drawn, in characters.
+const DRAWN: usize = 100;
+
+/// A finding with file, line, column, the line itself, a caret and help.
+///
+/// ```text
+/// x.molden:3:8: error: expected a real number, found `0.12,5`
+///   |
+/// 3 |   17   0.12,5
+///   |        ^^^^^^
+///   = help: Molden files write a decimal point, not a comma
+/// ```
+/// Lines and columns count from 1, columns in bytes; bytes that are no UTF-8 are shown as �.
+#[must_use]
+pub fn draw(finding: &Diagnostic, file: &str, bytes: &[u8]) -> String {
+    let start = finding.span.start.min(bytes.len());
+    let end = finding.span.end.clamp(start, bytes.len());
+    let line_start = memchr::memrchr(b'\n', &bytes[..start]).map_or(0, |newline| newline + 1);
+    let line_end = memchr::memchr(b'\n', &bytes[start..]).map_or(bytes.len(), |step| start + step);
+    let number = memchr::memchr_iter(b'\n', &bytes[..line_start]).count() + 1;
+    // Of an endless line only the part around the finding is drawn.
+    let from = if start - line_start > DRAWN / 2 { start - DRAWN / 2 } else { line_start };
+    let to = line_end.min(from + DRAWN);
+    let show = |range: Span| -> String {
+        String::from_utf8_lossy(&bytes[range]).chars().map(|sign| if sign.is_control() { ' ' } else { sign }).collect()
+    };
+    let line = show(from..to);
+    let before = show(from..start).chars().count();
+    let carets = show(start..end.min(to)).chars().count().max(1);
+    let word = match finding.severity {
+        Severity::Warning => "warning",
+        Severity::Error => "error",
+    };
+    let margin = " ".repeat(number.to_string().len());
+    let mut text = format!(
+        "{file}:{number}:{}: {word}: {}\n{margin} |\n{number} | {}\n{margin} | {}{}",
+        start - line_start + 1,
+        finding.message,
+        line.trim_end(),
+        " ".repeat(before),
+        "^".repeat(carets)
+    );
+    if let Some(help) = &finding.help {
+        text.push_str(&format!("\n{margin} = help: {help}"));
+    }
+    text
+}

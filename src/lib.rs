@@ -12,5 +12,6 @@ pub mod group;
 pub mod states;
 pub mod wavefunction;
 pub mod labelling;
+pub mod selection;
 pub mod report;
 pub mod cli;

@@ -76,7 +76,9 @@ fn unpack(packed: &[u8]) -> io::Result<Vec<u8>> {
     if bytes.len() as u64 > limit {
         return Err(io::Error::new(
             io::ErrorKind::InvalidData,
-            format!("unpacks to more than {UNPACKED_RATIO} times its size: no orbital file does; unpack it by hand if it is one"),
+            format!(
+                "unpacks to more than {UNPACKED_RATIO} times its size: no orbital file does; unpack it by hand if it is one"
+            ),
         ));
     }
     Ok(bytes)

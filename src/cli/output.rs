@@ -13,7 +13,9 @@ use std::path::Path;
 /// [`CliError::Write`] with the reason.
 pub fn deliver(path: Option<&Path>, bytes: &[u8], out: &mut dyn Write) -> Result<(), CliError> {
     match path {
-        None => out.write_all(bytes).and_then(|()| out.flush()).map_err(|source| CliError::Write { path: None, source }),
+        None => {
+            out.write_all(bytes).and_then(|()| out.flush()).map_err(|source| CliError::Write { path: None, source })
+        }
         Some(path) => replace(path, bytes).map_err(|source| CliError::Write { path: Some(path.to_owned()), source }),
     }
 }

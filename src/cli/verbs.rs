@@ -51,13 +51,12 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
     let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
-    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule));
+    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     let name = path.display().to_string();
     let wanted = Wanted { window: arguments.window };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
-    let printed = print(&document, &arguments.common, || {
-        text::label_text(&document, TextOptions { all: arguments.all })
-    })?;
+    let printed =
+        print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
     if let Some(target) = &arguments.write_labels {
         let labels = build::sym_labels(&labelled);
         output::deliver(Some(target), &model::write_labels(&bytes, &molecule, &labels), out)?;
@@ -73,9 +72,10 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
     let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
     let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
-    let (detection, symmetry) = sites::place(&molecule, tolerance_bohr)
-        .map_err(|source| CliError::Label { path: path.clone(), source: LabelError::Geometry(source) })?;
-    let document = build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
+    let (detection, symmetry) =
+        sites::place(&molecule, tolerance_bohr).map_err(|source| CliError::Label { path: path.clone(), source })?;
+    let document =
+        build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
     let printed = print(&document, &arguments.common, || text::geometry_text(&document))?;
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -2,18 +2,25 @@
 //!
 //! Knows no molecule, basis or file.
 
+mod arrangement;
 mod atomic;
 mod character_table;
 pub mod characters;
 pub mod double;
 pub mod double_name;
 mod elements;
+pub mod detect;
 pub mod error;
 mod exact;
+mod fit;
+mod frame;
 pub mod functions;
 pub mod harmonics;
 pub mod identify;
 pub mod irrep_name;
+mod ladder;
+mod linear;
+pub mod matching;
 mod matrices;
 mod mulliken;
 pub mod multiplication;
@@ -28,12 +35,15 @@ pub mod symmetry;
 
 pub use double::{DoubleClass, DoubleGroup, DoubleIrrep, Kramers};
 pub use double_name::DoubleName;
+pub use detect::{DetectError, DetectSettings, Detection, Rung, detect};
 pub use error::GroupError;
 pub use exact::exact_character;
 pub use identify::{identify, standard_frames};
 pub use irrep_name::IrrepName;
+pub use matching::SiteOperation;
 pub use operation::Operation;
 pub use point_group::{Class, Element, Irrep, PointGroup};
 pub use schoenflies::GroupName;
 pub use settings::Setting;
 pub use subgroups::Subgroup;
+pub use symmetry::{Deviation, Frame, OtherSetting, Passage, Site, Symmetry};

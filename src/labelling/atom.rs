@@ -33,12 +33,8 @@ fn sample() -> Vec<Matrix3<f64>> {
             let fraction = |step: f64| (k as f64 * step).fract();
             let (u, v, w) = (fraction(0.819_172_513), fraction(0.671_043_607), fraction(0.549_700_478));
             let (a, b) = ((1.0 - u).sqrt(), u.sqrt());
-            let quaternion = Quaternion::new(
-                a * (turn * v).sin(),
-                a * (turn * v).cos(),
-                b * (turn * w).sin(),
-                b * (turn * w).cos(),
-            );
+            let quaternion =
+                Quaternion::new(a * (turn * v).sin(), a * (turn * v).cos(), b * (turn * w).sin(), b * (turn * w).cos());
             UnitQuaternion::from_quaternion(quaternion).to_rotation_matrix().into_inner()
         })
         .collect()

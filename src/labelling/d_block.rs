@@ -67,8 +67,7 @@ pub fn d_blocks(
         let mut levels = Vec::new();
         for (spin_idx, (spin, weights)) in spins.iter().zip(lowdin).enumerate() {
             let share = |set: &SetLabel| {
-                let sum: f64 =
-                    set.orbitals.iter().flat_map(|&i| functions.iter().map(move |&f| weights[(i, f)])).sum();
+                let sum: f64 = set.orbitals.iter().flat_map(|&i| functions.iter().map(move |&f| weights[(i, f)])).sum();
                 sum / set.orbitals.len() as f64
             };
             let mut of_spin: Vec<DLevel> = spin

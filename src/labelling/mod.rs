@@ -125,6 +125,9 @@ pub enum LabelError {
     /// The nuclei admit no symmetry search.
     #[error(transparent)]
     Geometry(#[from] crate::group::DetectError),
+    /// The group found is not supported.
+    #[error(transparent)]
+    Group(#[from] crate::group::GroupError),
     /// No convention makes the orbitals orthonormal.
     #[error(transparent)]
     Convention(#[from] crate::wavefunction::ConventionError),
@@ -186,19 +189,14 @@ fn label_spin(
                 let partners = weights::partner_weights(group, irrep, expectations.row(i))?;
                 partners.iter().position(|weight| *weight >= thresholds.partner * purity)
             });
-            let abelian = abelian_weights.as_ref().and_then(|all| {
-                all.row(i).iter().position(|weight| *weight >= thresholds.purity)
-            });
+            let abelian = abelian_weights
+                .as_ref()
+                .and_then(|all| all.row(i).iter().position(|weight| *weight >= thresholds.purity));
             OrbitalLabel { irrep, partner, purity, weights, abelian, set: 0 }
         })
         .collect();
-    let connected = sets::Connected {
-        orbitals: &set.orbitals,
-        coefficients,
-        products,
-        turnings,
-        expectations: &expectations,
-    };
+    let connected =
+        sets::Connected { orbitals: &set.orbitals, coefficients, products, turnings, expectations: &expectations };
     let sets = sets::join(&connected, group, &orbitals, set.spin, thresholds);
     for (set_idx, set) in sets.iter().enumerate() {
         for &orbital in &set.orbitals {
@@ -210,7 +208,8 @@ fn label_spin(
 
 /// Weights above the floor, largest first; equal ones in the order of the irreps.
 fn ranked(row: ArrayView1<'_, f64>) -> Vec<(usize, f64)> {
-    let mut weights: Vec<(usize, f64)> = row.iter().copied().enumerate().filter(|entry| entry.1 > WEIGHT_FLOOR).collect();
+    let mut weights: Vec<(usize, f64)> =
+        row.iter().copied().enumerate().filter(|entry| entry.1 > WEIGHT_FLOOR).collect();
     weights.sort_by(|a, b| b.1.total_cmp(&a.1));
     weights
 }

@@ -93,7 +93,10 @@ pub fn join(
     let place: BTreeMap<usize, usize> = order.iter().enumerate().map(|(at, &i)| (i, at)).collect();
     let mut sets: Vec<Vec<usize>> = members.into_values().collect();
     sets.sort_by_key(|set| set.iter().map(|i| place[i]).min());
-    number(sets.into_iter().map(|set| describe(connected, group, labels, spin, thresholds, set, &kept)).collect(), group)
+    number(
+        sets.into_iter().map(|set| describe(connected, group, labels, spin, thresholds, set, &kept)).collect(),
+        group,
+    )
 }
 
 fn links_from(
@@ -139,9 +142,7 @@ fn links_from(
 fn shared_weight(a: &OrbitalLabel, b: &OrbitalLabel) -> f64 {
     a.weights
         .iter()
-        .filter_map(|&(irrep, weight)| {
-            b.weights.iter().find(|other| other.0 == irrep).map(|other| weight.min(other.1))
-        })
+        .filter_map(|&(irrep, weight)| b.weights.iter().find(|other| other.0 == irrep).map(|other| weight.min(other.1)))
         .sum()
 }
 

@@ -2,7 +2,8 @@
 //!
 //! Not here: the search for operations (`group::detect`).
 
-use crate::group::{self, DetectError, Detection, Site, Symmetry};
+use super::LabelError;
+use crate::group::{self, DetectSettings, Detection, Site, Symmetry};
 use crate::model::{Atom, Molecule, Shell, elements};
 
 /// Two atoms are bonded when they are nearer than this times the sum of their covalent radii (common practice).
@@ -33,7 +34,10 @@ pub fn sites(molecule: &Molecule) -> Vec<Site> {
                 examples.len() - 1
             });
             let element = u32::from(molecule.atoms[examples[variety]].element);
-            Site { kind: element << 16 | u32::try_from(variety).unwrap_or(u32::MAX), position: molecule.atoms[atom].position }
+            Site {
+                kind: element << 16 | u32::try_from(variety).unwrap_or(u32::MAX),
+                position: molecule.atoms[atom].position,
+            }
         })
         .collect()
 }
@@ -66,13 +70,16 @@ pub fn bonds(molecule: &Molecule) -> Vec<(usize, usize)> {
     bonds
 }
 
+/// Groups are listed up to this displacement of a nucleus, bohr (0.3 Å).
+const LADDER_BOHR: f64 = 0.3 / crate::model::ANGSTROM_PER_BOHR;
+
 /// Finds the groups near the nuclei and places the highest one within the tolerance.
 ///
 /// # Errors
-/// [`DetectError`] when there is no atom or two like atoms coincide.
-pub fn place(molecule: &Molecule, tolerance_bohr: f64) -> Result<(Detection, Symmetry), DetectError> {
+/// [`LabelError::Geometry`] when there is no atom or two like atoms coincide.
+pub fn place(molecule: &Molecule, tolerance_bohr: f64) -> Result<(Detection, Symmetry), LabelError> {
     let sites = sites(molecule);
-    let detection = group::detect(&sites, tolerance_bohr)?;
-    let symmetry = detection.place(&sites, &bonds(molecule), tolerance_bohr)?;
+    let detection = group::detect(&sites, &DetectSettings { limit_bohr: LADDER_BOHR.max(tolerance_bohr) })?;
+    let symmetry = detection.place(detection.at(tolerance_bohr), &sites, Some(&bonds(molecule)))?;
     Ok((detection, symmetry))
 }

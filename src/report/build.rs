@@ -1,10 +1,10 @@
 //! From labels to the document: names instead of indices, the units of the JSON keys.
 
 use super::document::{
-    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA, SetEntry,
-    SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
+    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA,
+    SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
-use crate::group::{Detection, PointGroup, Symmetry};
+use crate::group::{Detection, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
 use crate::labelling::frontier::{self, Configuration};
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
@@ -52,17 +52,41 @@ pub fn source(file: &str, molecule: &Molecule) -> Source {
 
 /// Another choice of axes with the names that swap.
 #[must_use]
-pub fn setting_entry(group: &PointGroup, description: &str, swaps: &[(usize, usize)]) -> SettingEntry {
-    let name = |irrep: usize| group.irreps()[irrep].name.to_string();
+pub fn setting_entry(description: &str, swaps: &[(IrrepName, IrrepName)]) -> SettingEntry {
     SettingEntry {
         description: description.to_owned(),
-        swaps: swaps.iter().map(|&(here, there)| (name(here), json!(name(there)))).collect(),
+        swaps: swaps.iter().map(|(here, there)| (here.to_string(), json!(there.to_string()))).collect(),
     }
+}
+
+/// More atoms or bonds than this on one axis are counted, not named.
+const NAMED_ON_AXIS: usize = 8;
+
+/// The convention, then the atoms and bonds that each axis passes through by name.
+fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
+    let atom = |i: &usize| format!("{}{}", elements::label(&molecule.atoms[*i]), i + 1);
+    let bond = |(i, j): &(usize, usize)| format!("{}–{}", atom(i), atom(j));
+    let list = |names: Vec<String>, what: &str| match names.len() {
+        0 => None,
+        n if n > NAMED_ON_AXIS => Some(format!("{n} {what}")),
+        _ => Some(names.join(" ")),
+    };
+    let mut text = symmetry.frame.convention.clone();
+    let free = molecule.atoms.len() < 2 || symmetry.group.name() == crate::group::GroupName::C1;
+    for (axis, passage) in ["x", "y", "z"].iter().zip(&symmetry.passages).filter(|_| !free) {
+        let atoms = list(passage.atoms.iter().map(atom).collect(), "atoms");
+        let bonds = list(passage.bonds.iter().map(bond).collect(), "bonds");
+        let parts: Vec<String> = [atoms, bonds].into_iter().flatten().collect();
+        if !parts.is_empty() {
+            text.push_str(&format!("; {axis} passes {}", parts.join(" and ")));
+        }
+    }
+    text
 }
 
 /// The geometry block.
 #[must_use]
-pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
+pub fn geometry(molecule: &Molecule, detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
     let group = &symmetry.group;
     let angstrom = |bohr: f64| bohr * ANGSTROM_PER_BOHR;
     let axes = &symmetry.frame.axes;
@@ -76,11 +100,11 @@ pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64)
         deviation_rms_angstrom: angstrom(symmetry.deviation.rms),
         centre_bohr: symmetry.frame.centre.coords.into(),
         axes: std::array::from_fn(|row| std::array::from_fn(|column| axes[(row, column)])),
-        axes_convention: symmetry.frame.convention.clone(),
+        axes_convention: axes_in_words(molecule, symmetry),
         other_settings: symmetry
             .other_settings
             .iter()
-            .map(|setting| setting_entry(group, &setting.description, &setting.swaps))
+            .map(|setting| setting_entry(&setting.description, &setting.swaps))
             .collect(),
         ladder: detection
             .ladder
@@ -116,7 +140,7 @@ pub fn label_document(
     Document {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(&labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
+        geometry: geometry(molecule, &labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
         basis: Some(builder.basis()),
         orbitals: Some(builder.orbitals()),
         frontier: Some(builder.frontier()),
@@ -146,7 +170,7 @@ pub fn geometry_document(
     Document {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(detection, symmetry, tolerance_bohr),
+        geometry: geometry(molecule, detection, symmetry, tolerance_bohr),
         basis: None,
         orbitals: None,
         sets: None,
@@ -165,7 +189,8 @@ pub fn sym_labels(labelled: &Labelled) -> Vec<Vec<String>> {
     let of_spin = |spin: &crate::labelling::SpinLabels| {
         let text = |label: &crate::labelling::OrbitalLabel| {
             set_label(group, &spin.sets[label.set]).filter(|_| label.irrep.is_some()).unwrap_or_else(|| {
-                let largest = label.weights.first().map_or("?".to_owned(), |&(irrep, _)| group.irreps()[irrep].name.symbol());
+                let largest =
+                    label.weights.first().map_or("?".to_owned(), |&(irrep, _)| group.irreps()[irrep].name.symbol());
                 format!("?{largest}?")
             })
         };
@@ -260,11 +285,10 @@ impl Builder<'_> {
         for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
             let first = self.first_set(spin_idx);
             for (set_idx, set) in spin.sets.iter().enumerate() {
-                let near = |other: &SetLabel| {
-                    matches!((set.energy, other.energy), (Some(a), Some(b)) if (a - b).abs() <= thresholds.degeneracy_hartree)
-                };
-                let accidental_with =
-                    (0..spin.sets.len()).filter(|&other| other != set_idx && near(&spin.sets[other])).map(|other| first + other + 1);
+                let near = |other: &SetLabel| matches!((set.energy, other.energy), (Some(a), Some(b)) if (a - b).abs() <= thresholds.degeneracy_hartree);
+                let accidental_with = (0..spin.sets.len())
+                    .filter(|&other| other != set_idx && near(&spin.sets[other]))
+                    .map(|other| first + other + 1);
                 entries.push(SetEntry {
                     set: first + set_idx + 1,
                     spin: spin.spin,
@@ -346,7 +370,8 @@ impl Builder<'_> {
                 let mut levels: Vec<DLevelEntry> = Vec::new();
                 for level in block.levels {
                     let set = &spins[level.spin_idx].sets[level.set_idx];
-                    let before = levels.last().filter(|last| last.spin == set.spin).and_then(|last| last.energy_hartree);
+                    let before =
+                        levels.last().filter(|last| last.spin == set.spin).and_then(|last| last.energy_hartree);
                     levels.push(DLevelEntry {
                         set: self.first_set(level.spin_idx) + level.set_idx + 1,
                         label: set_label(self.group, set),

@@ -161,7 +161,8 @@ fn answer(document: &Document, sets: &[SetEntry]) -> String {
         let set = &sets[number - 1];
         let label = set.label.as_deref().map_or_else(|| format!("set {number} (no irrep)"), pretty);
         let energy = set.energy_hartree.map_or(String::new(), |energy| format!("  {:.3} eV", energy * EV_PER_HARTREE));
-        let electrons = set.electrons.filter(|n| *n > 0.0).map_or(String::new(), |n| format!("  {} electrons", count(n)));
+        let electrons =
+            set.electrons.filter(|n| *n > 0.0).map_or(String::new(), |n| format!("  {} electrons", count(n)));
         format!("{label}{energy}{electrons}{}", if set.complete { "" } else { "  (set incomplete)" })
     };
     for spin in &frontier.spins {
@@ -229,7 +230,7 @@ fn checks(document: &Document, sets: &[SetEntry]) -> String {
 
 pub(super) fn table() -> Table {
     let mut table = Table::new();
-    table.load_preset(presets::NOTHING);
+    table.load_style(presets::NOTHING);
     table
 }
 
@@ -315,7 +316,11 @@ fn remark(set: &SetEntry) -> String {
 fn d_block(document: &Document) -> String {
     let mut out = String::new();
     for block in &document.d_block {
-        let _ = writeln!(out, "\nMetal d of {} (gaps are of orbitals: no ligand-field parameter, no band energy)", block.metals);
+        let _ = writeln!(
+            out,
+            "\nMetal d of {} (gaps are of orbitals: no ligand-field parameter, no band energy)",
+            block.metals
+        );
         let mut rows = table();
         rows.set_header(["label", "spin", "eV", "metal d", "above the one before"]);
         for level in &block.levels {

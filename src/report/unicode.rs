@@ -7,7 +7,8 @@
 /// Works on names and labels, not on sentences.
 #[must_use]
 pub fn pretty(name: &str) -> String {
-    const GREEK: [(&str, &str); 12] = [
+    // Longer words first: theta ends in eta.
+    const GREEK: [(&str, &str); 28] = [
         ("Sigma", "Σ"),
         ("sigma", "σ"),
         ("Pi", "Π"),
@@ -18,6 +19,22 @@ pub fn pretty(name: &str) -> String {
         ("phi", "φ"),
         ("Gamma", "Γ"),
         ("gamma", "γ"),
+        ("Theta", "Θ"),
+        ("theta", "θ"),
+        ("Eta", "Η"),
+        ("eta", "η"),
+        ("Iota", "Ι"),
+        ("iota", "ι"),
+        ("Kappa", "Κ"),
+        ("kappa", "κ"),
+        ("Lambda", "Λ"),
+        ("lambda", "λ"),
+        ("Omicron", "Ο"),
+        ("omicron", "ο"),
+        ("Mu", "Μ"),
+        ("mu", "μ"),
+        ("Nu", "Ν"),
+        ("nu", "ν"),
         ("inf", "∞"),
         ("''", "″"),
     ];
@@ -34,9 +51,14 @@ mod tests {
 
     #[test]
     fn names_are_set_as_people_print_them() {
-        for (ascii, printed) in
-            [("2a2''", "2a2″"), ("3sigma_g", "3σg"), ("Sigma_u-", "Σu-"), ("Dinfh", "D∞h"), ("E'", "E′"), ("t2g", "t2g")]
-        {
+        for (ascii, printed) in [
+            ("2a2''", "2a2″"),
+            ("3sigma_g", "3σg"),
+            ("Sigma_u-", "Σu-"),
+            ("Dinfh", "D∞h"),
+            ("E'", "E′"),
+            ("t2g", "t2g"),
+        ] {
             assert_eq!(pretty(ascii), printed);
         }
     }

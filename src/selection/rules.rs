@@ -82,7 +82,8 @@ impl Operators {
     /// Projects the functions of each operator onto the irreps.
     #[must_use]
     pub fn new(group: &PointGroup) -> Self {
-        let inversion = group.elements().iter().find(|element| (element.operation.matrix() + Matrix3::identity()).amax() < 1e-9);
+        let inversion =
+            group.elements().iter().find(|element| (element.operation.matrix() + Matrix3::identity()).amax() < 1e-9);
         Self {
             dipole: std::array::from_fn(|a| parts(group, |matrix| matrix[(a, a)])),
             rotation: std::array::from_fn(|a| parts(group, |matrix| matrix.determinant() * matrix[(a, a)])),

@@ -196,7 +196,9 @@ pub struct Settled {
 #[derive(Debug, Clone, PartialEq, Error)]
 pub enum ConventionError {
     /// More orbitals than functions cannot be orthonormal.
-    #[error("{orbitals} orbitals over {functions} functions cannot be orthonormal: shells are missing from [GTO] (some engines drop h and higher ones)")]
+    #[error(
+        "{orbitals} orbitals over {functions} functions cannot be orthonormal: shells are missing from [GTO] (some engines drop h and higher ones)"
+    )]
     TooManyOrbitals {
         /// Orbitals of one spin.
         orbitals: usize,

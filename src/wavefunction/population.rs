@@ -24,6 +24,7 @@ pub fn lowdin(settled: &Settled, molecule: &Molecule) -> Option<Vec<Array2<f64>>
     // Each column times λ^¼, so that one product with its transpose gives the square root.
     let quarter = Array2::from_shape_fn((n, n), |(i, k)| vectors[(i, k)] * values[k].max(0.0).powf(0.25));
     let root = product(quarter.view(), quarter.t());
-    let squares = |coefficients: &Array2<f64>| product(coefficients.view(), root.view()).mapv_into(|value| value * value);
+    let squares =
+        |coefficients: &Array2<f64>| product(coefficients.view(), root.view()).mapv_into(|value| value * value);
     Some(molecule.orbital_sets.iter().map(|set| squares(&set.coefficients)).collect())
 }

@@ -58,9 +58,7 @@ impl Turning {
         }
         let used = |kind: usize| basis.shells().iter().any(|shell| 2 * shell.l + usize::from(shell.pure) == kind);
         let matrices = (0..2 * (L_MAX + 1))
-            .map(|kind| {
-                if used(kind) { shell_rotation(kind / 2, kind % 2 == 1, matrix) } else { DMatrix::zeros(0, 0) }
-            })
+            .map(|kind| if used(kind) { shell_rotation(kind / 2, kind % 2 == 1, matrix) } else { DMatrix::zeros(0, 0) })
             .collect();
         Ok(Self { moves, matrices })
     }

@@ -4,9 +4,17 @@
 //! Not here: the grammar (`grammar`), normalisation and order of functions (`wavefunction::convention`):
 //! coefficients stand exactly as the file gives them.
 
+pub mod elements;
+mod molden;
+
+pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};
+
 use crate::diagnostic::Span;
 use nalgebra::Point3;
 use ndarray::Array2;
+
+/// One bohr in ångström. CODATA 2018.
+pub const ANGSTROM_PER_BOHR: f64 = 0.529_177_210_903;
 
 /// An atom, a ghost centre, or the core of a pseudopotential.
 #[derive(Debug, Clone, PartialEq)]

@@ -1,0 +1,112 @@
+//! Numbers and words of a line, as engines write them.
+//!
+//! Here: reals with Fortran exponents, blanks, lines. Not here: what a number is for.
+
+use nom::branch::alt;
+use nom::bytes::complete::{take_while, take_while1};
+use nom::character::complete::{digit1, one_of};
+use nom::combinator::{opt, recognize};
+use nom::{IResult, Parser};
+use std::ops::Range;
+
+/// Blanks, tabs and the carriage return before a line's end.
+#[must_use]
+pub fn is_blank(byte: u8) -> bool {
+    matches!(byte, b' ' | b'\t' | b'\r' | 0x0b | 0x0c)
+}
+
+/// Lines of `bytes[range]` as ranges without their ends.
+pub fn lines(bytes: &[u8], range: Range<usize>) -> impl Iterator<Item = Range<usize>> + '_ {
+    let mut at = range.start;
+    let end = range.end.min(bytes.len());
+    std::iter::from_fn(move || {
+        if at >= end {
+            return None;
+        }
+        let stop = memchr::memchr(b'\n', &bytes[at..end]).map_or(end, |step| at + step);
+        let line = at..stop;
+        at = stop + 1;
+        Some(line)
+    })
+}
+
+/// Words of a line as ranges.
+#[must_use]
+pub fn words(bytes: &[u8], line: Range<usize>) -> Vec<Range<usize>> {
+    let mut found = Vec::new();
+    let mut start = None;
+    for at in line.clone() {
+        match (is_blank(bytes[at]), start) {
+            (false, None) => start = Some(at),
+            (true, Some(first)) => {
+                found.push(first..at);
+                start = None;
+            }
+            _ => {}
+        }
+    }
+    if let Some(first) = start {
+        found.push(first..line.end);
+    }
+    found
+}
+
+/// ```text
+/// real = [ sign ] ( digits [ "." [ digits ] ] | "." digits ) [ ( "e" | "E" | "d" | "D" ) [ sign ] digits ]
+/// ```
+fn real_text(input: &[u8]) -> IResult<&[u8], &[u8]> {
+    let sign = || opt(one_of("+-"));
+    let mantissa = alt((
+        recognize((digit1, opt((nom::character::complete::char('.'), take_while(|byte: u8| byte.is_ascii_digit()))))),
+        recognize((nom::character::complete::char('.'), take_while1(|byte: u8| byte.is_ascii_digit()))),
+    ));
+    let exponent = opt((one_of("eEdD"), sign(), digit1));
+    recognize((sign(), mantissa, exponent)).parse(input)
+}
+
+/// A finite real number and what follows it; None when none stands here.
+#[must_use]
+pub fn leading_real(input: &[u8]) -> Option<(f64, &[u8])> {
+    let (rest, text) = real_text(input).ok()?;
+    let value: f64 = if text.iter().any(|byte| matches!(byte, b'd' | b'D')) {
+        let plain: Vec<u8> = text.iter().map(|byte| if matches!(byte, b'd' | b'D') { b'e' } else { *byte }).collect();
+        fast_float2::parse(&plain).ok()?
+    } else {
+        fast_float2::parse(text).ok()?
+    };
+    value.is_finite().then_some((value, rest))
+}
+
+/// A word that is one finite real number.
+#[must_use]
+pub fn real(word: &[u8]) -> Option<f64> {
+    leading_real(word).filter(|(_, rest)| rest.is_empty()).map(|(value, _)| value)
+}
+
+/// A word that is one whole number, not negative.
+#[must_use]
+pub fn whole(word: &[u8]) -> Option<usize> {
+    std::str::from_utf8(word).ok()?.parse().ok()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn reals_as_engines_write_them() {
+        for (text, value) in [
+            ("1", 1.0),
+            ("-.1408E-01", -0.014_08),
+            ("8.29D-002", 0.0829),
+            ("+3.", 3.0),
+            ("1.0d0", 1.0),
+            ("-0.5e+1", -5.0),
+        ] {
+            assert_eq!(real(text.as_bytes()), Some(value), "{text}");
+        }
+        for text in ["", "0.12,5", "nan", "inf", "1e999", "***", "1.0.0", "--1", "e5", "."] {
+            assert_eq!(real(text.as_bytes()), None, "{text}");
+        }
+    }
+}
