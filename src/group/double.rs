@@ -294,6 +294,13 @@ impl DoubleGroup {
         &self.classes
     }
 
+    /// The classes that a printed table shows: those over the printed classes of the point group, in their order.
+    #[must_use]
+    pub fn printed_classes(&self, group: &PointGroup) -> Vec<usize> {
+        let over = |single: usize| (0..self.classes.len()).filter(move |&at| self.classes[at].single == single);
+        group.printed_classes().into_iter().flat_map(over).collect()
+    }
+
     /// Single-valued irreps with the indices that they have in the point group, then the double-valued ones.
     #[must_use]
     pub fn irreps(&self) -> &[DoubleIrrep] {
