@@ -100,6 +100,9 @@ pub struct Geometry {
 pub struct Table {
     /// Point group, such as D5d, Oh, C12v, Dinfh
     pub group: String,
+    /// Only the selection rules between two irreps, such as --transition t2g eg
+    #[arg(long, num_args = 2, value_names = ["FROM", "TO"])]
+    pub transition: Option<Vec<String>>,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

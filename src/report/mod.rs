@@ -5,6 +5,7 @@
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod rule;
 pub mod table;
 pub mod text;
 pub mod unicode;
