@@ -1,15 +1,17 @@
 //! Overlap of contracted Gaussians on any centres.
 //!
-//! Not here: normalisation (`wavefunction::basis`), other operators.
+//! Not here: normalisation (`wavefunction::basis`), other operators (`wavefunction::moments`).
 
 use super::basis::{Basis, BasisShell};
 use super::cartesian::{self, L_MAX, Powers};
 use ndarray::{Array2, Axis, parallel::prelude::*, s};
 
-/// Largest degree in one direction.
+/// Degrees of one direction: 0 to `L_MAX`.
 const N: usize = L_MAX + 1;
+/// Overlaps in one direction; the ket goes two degrees higher for the operators of `wavefunction::moments`.
+pub(super) type AxisTable = [[f64; N + 2]; N];
 /// Primitive pairs whose Gaussian factor is below e^−SCREEN are left out: 2e-18.
-const SCREEN: f64 = 41.0;
+pub(super) const SCREEN: f64 = 41.0;
 
 /// ⟨μ|ν⟩ of all functions of one basis: n_functions × n_functions, symmetric, unit diagonal.
 ///
@@ -58,8 +60,8 @@ fn rectangle(bra: &Basis, ket: &Basis, upper: bool) -> Array2<f64> {
 }
 
 /// Overlaps of one pair of shells over Cartesian components.
-#[derive(Default)]
-struct Block {
+#[derive(Clone, Default)]
+pub(super) struct Block {
     values: Vec<f64>,
     half: Vec<f64>,
 }
@@ -68,8 +70,7 @@ impl Block {
     /// Sums over pairs of primitives; false when all are negligible.
     fn fill(&mut self, a: &BasisShell, b: &BasisShell) -> bool {
         let (bras, kets) = (components(a.l), components(b.l));
-        self.values.clear();
-        self.values.resize(bras.len() * kets.len(), 0.0);
+        self.clear(a, b);
         let apart = b.centre - a.centre;
         let distance_squared = apart.norm_squared();
         let mut any = false;
@@ -84,24 +85,34 @@ impl Block {
                 let scale = f * g * (-gaussian).exp() * (std::f64::consts::PI / p).powf(1.5);
                 let half = 0.5 / p;
                 // From each centre to the centre of the product.
-                let tables: [[[f64; N]; N]; 3] = std::array::from_fn(|axis| {
+                let tables: [AxisTable; 3] = std::array::from_fn(|axis| {
                     let (from_a, from_b) = (beta / p * apart[axis], -alpha / p * apart[axis]);
                     one_axis(a.l, b.l, from_a, from_b, half)
                 });
-                let mut at = 0;
-                for &[ax, ay, az] in bras {
-                    for &[bx, by, bz] in kets {
-                        self.values[at] += scale * tables[0][ax][bx] * tables[1][ay][by] * tables[2][az][bz];
-                        at += 1;
-                    }
-                }
+                self.add(bras, kets, scale, [&tables[0], &tables[1], &tables[2]]);
             }
         }
         any
     }
 
+    /// Zeros for every pair of components.
+    pub(super) fn clear(&mut self, a: &BasisShell, b: &BasisShell) {
+        self.values.clear();
+        self.values.resize(components(a.l).len() * components(b.l).len(), 0.0);
+    }
+
+    /// Adds `scale` times the product of the tables of x, y and z.
+    pub(super) fn add(&mut self, bras: &[Powers], kets: &[Powers], scale: f64, [x, y, z]: [&AxisTable; 3]) {
+        let mut values = self.values.iter_mut();
+        for &[ax, ay, az] in bras {
+            for (&[bx, by, bz], value) in kets.iter().zip(&mut values) {
+                *value += scale * x[ax][bx] * y[ay][by] * z[az][bz];
+            }
+        }
+    }
+
     /// Normalises the components, makes pure functions where the shells are pure, writes the block.
-    fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ndarray::ArrayViewMut2<'_, f64>) {
+    pub(super) fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ndarray::ArrayViewMut2<'_, f64>) {
         let (bras, kets) = (components(a.l), components(b.l));
         let (left, right) = (scales(a.l), scales(b.l));
         for (row, scale) in left.iter().enumerate() {
@@ -139,8 +150,8 @@ impl Block {
 }
 
 /// ∫ (x − A)^i (x − B)^j exp(−p(x − P)²) over √(π/p), for i ≤ `la`, j ≤ `lb`.
-fn one_axis(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> [[f64; N]; N] {
-    let mut table = [[0.0; N]; N];
+pub(super) fn one_axis(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> AxisTable {
+    let mut table = [[0.0; N + 2]; N];
     table[0][0] = 1.0;
     for j in 0..lb {
         let below = if j > 0 { table[0][j - 1] } else { 0.0 };
@@ -166,7 +177,7 @@ static SCALES: std::sync::LazyLock<Vec<Vec<f64>>> = std::sync::LazyLock::new(|| 
     (0..=L_MAX).map(of).collect()
 });
 
-fn components(l: usize) -> &'static [Powers] {
+pub(super) fn components(l: usize) -> &'static [Powers] {
     &COMPONENTS[l]
 }
 
