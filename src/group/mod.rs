@@ -5,8 +5,8 @@
 mod arrangement;
 mod atomic;
 pub mod characters;
-mod elements;
 pub mod detect;
+mod elements;
 pub mod error;
 mod exact;
 mod fit;
@@ -17,7 +17,7 @@ pub mod identify;
 pub mod irrep_name;
 mod ladder;
 mod linear;
-pub mod matching;
+mod matching;
 mod matrices;
 mod mulliken;
 pub mod multiplication;

@@ -23,7 +23,9 @@ LIBRARY = {"sto3g": "STO-3G", "631g": "6-31G", "631gs": "6-31G*", "ccpvdz": "cc-
            "def2svp": "def2-SVP", "def2tzvp": "def2-TZVP", "svp": "SVP"}
 NAMES = {"water": ("H2O", "C2v"), "formaldehyde": ("H2CO", "C2v"), "ammonia": ("NH3", "C3v"), "ethene": ("C2H4", "D2h"),
          "benzene": ("C6H6", "D6h"), "amidogen": ("NH2 radical", "C2v"), "sulfur_hexafluoride": ("SF6", "Oh"),
-         "sf6": ("SF6", "Oh"), "methane": ("CH4", "Td"), "carbon_dioxide": ("CO2", "Dinfh")}
+         "sf6": ("SF6", "Oh"), "methane": ("CH4", "Td"),
+         "allene": ("C3H4", "D2d"), "ethane": ("C2H6 staggered", "D3d"), "boron_trifluoride": ("BF3", "D3h"),
+         "cyclopentadienide": ("C5H5-", "D5h"), "carbon_dioxide": ("CO2", "Dinfh")}
 # what an engine's files are here for
 ENGINE_NOTES = {
     "nwchem": "full-group labels; scale column 0; oriented by the engine",
@@ -96,7 +98,9 @@ PYSCF = {
     "manganese_aqua_sextet_th_sto3g": ("[Mn(H2O)6]2+, sextet", "UHF/STO-3G", "Th", "high spin d5, intact"),
     "nickel_carbonyl_td_ecp": ("Ni(CO)4", "RHF/LANL2DZ on Ni, STO-3G", "Td", "core potential on the metal only"),
     "b12h12_ih_sto3g": ("[B12H12]2-", "RHF/STO-3G", "Ih", "t1u t2u gg gu hg"),
-    "fullerene_ih_sto3g": ("C60", "RHF/STO-3G", "Ih", "packed; run in D2h, axes on x, y, z; hu HOMO, t1u LUMO"),
+    "sf6_shaken_sto3g": ("SF6, atoms moved by up to 0.004 A", "RHF/STO-3G", "C1", "Oh within 0.01 A"),
+    "sf6_stretched_d4h_sto3g": ("SF6, stretched by 5 %", "RHF/STO-3G", "D4h", "for labels in the parent Oh"),
+    "neon_with_ghost": ("Ne and functions without nucleus", "RHF/6-31G*", "Cinfv", "ghost atom: nuclear charge 0"),
     "helium_pinwheel_c4": ("He8", "RHF/s and p", "C4", ""), "helium_pinwheel_c6": ("He12", "RHF/s and p", "C6", ""),
     "helium_pinwheel_c4h": ("He8", "RHF/s and p", "C4h", ""), "helium_pinwheel_c5h": ("He10", "RHF/s and p", "C5h", ""),
     "helium_pinwheel_c6h": ("He12", "RHF/s and p", "C6h", ""), "helium_s6": ("He12", "RHF/s and p", "S6", ""),
@@ -131,9 +135,8 @@ PYSCF = {
     "dialect_water_g_shell": ("H2O", "RHF/by hand", "C2v", "components with (2l-1)!!"),
     "dialect_water_g_cart_list": ("H2O", "RHF/by hand", "C2v", "pure orbitals over cartesian components"),
     "dialect_formaldehyde_raw_flipped": ("H2CO", "RHF/6-31G*", "C2v", "raw coefficients"),
-    "dialect_formaldehyde_bare": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
     "dialect_formaldehyde_shell": ("H2CO", "RHF/6-31G*", "C2v", "as the water file"),
-    "scenario/lantern-3": ("[Co(CN)6]3-", "RKS PBE0/def2-SVP on Co, STO-3G", "Oh", "ligand field; Fock matrix averaged"),
+    "scenario/lantern-3": ("[Co(CN)6]3-", "RKS PBE0/def2-SVP on Co, 6-31G", "Oh", "ligand field; Fock matrix averaged"),
     "scenario/bellows-5": ("Fe(C5H5)2 staggered", "RKS PBE0/def2-SVP on Fe, STO-3G", "D5d", "sandwich; Fock matrix averaged"),
     "scenario/ribbon-2": ("tetraazaanthracene", "RKS PBE0/6-31G", "D2h", "chromophore; Fock matrix averaged"),
 }
@@ -207,12 +210,12 @@ def main():
     for path in sorted(paths):
         name = os.path.relpath(path, OUT).removesuffix(".gz").removesuffix(".molden")
         if name in PYSCF:
-            row, engine = PYSCF[name], "PySCF 2.x, rewritten" if name.startswith("dialect") else "PySCF"
+            row, engine = PYSCF[name], "PySCF, rewritten" if name.startswith("dialect") else "PySCF"
         else:
             row, engine = engine_row(name)
         symbols, xyz = nuclei(path)
         group = row[2]
-        ops = operations(symbols, xyz, 1e-3) if len(symbols) > 1 else None
+        ops = operations(symbols, xyz, 1e-4) if len(symbols) > 1 else None
         if ops is None:
             ok = group in ("Kh", "Cinfv", "Dinfh")
         else:

@@ -111,5 +111,4 @@ if __name__ == "__main__":
     tilted = solve(molecule(g.formaldehyde(), "6-31g*", seed=603))
     write("dialect_formaldehyde_raw_flipped", tilted, raw=True, flips=ORCA_FLIPS, tags="[5D]\n[7F]\n[9G]\n", head=title,
           sym=lambda k: f"{k}a")
-    write("dialect_formaldehyde_bare", tilted, cart=lambda l, m: bare_norm2(m))
     write("dialect_formaldehyde_shell", tilted, cart=lambda l, m: double_factorial(2 * l - 1), lower=True)

@@ -3,19 +3,12 @@
 Usage: python xyz_files.py
 """
 import os
-import random
 
 import numpy as np
 
 import shapes as g
 
 OUT = os.path.join(os.path.dirname(os.path.dirname(os.path.abspath(__file__))), "xyz")
-
-
-def shaken(atoms, size, seed):
-    """Every atom moved by a random vector of at most `size` angstrom in each coordinate."""
-    rng = random.Random(seed)
-    return [(s, tuple(x + rng.uniform(-size, size) for x in p)) for s, p in atoms]
 
 
 def ring_propeller():
@@ -46,7 +39,7 @@ def tub_with_four():
 
 
 FILES = {
-    "octahedron_shaken": (shaken(g.octahedral("S", "F", 1.56), 0.004 / 3 ** 0.5, 1), 701),
+    "octahedron_shaken": (g.shaken(g.octahedral("S", "F", 1.56), 0.004 / 3 ** 0.5, 1), 701),
     "octahedron_stretched": ([(s, (x, y, 1.06 * z)) for s, (x, y, z) in g.octahedral("Cu", "O", 2.0)], 702),
     "fullerene": (g.fullerene(), 703),
     "sandwich_d5": (g.sandwich("Fe", 15), 704),
@@ -56,7 +49,7 @@ FILES = {
     "hexaaqua_th": (g.hexaaqua("Fe", 2.1), 708),
     "tub_s4": (tub_with_four(), 709),
     "cyanogen_linear": ([(s, (0, 0, k * z)) for s, z in (("C", 0.69), ("N", 1.85)) for k in (1, -1)], 710),
-    "benzene_shaken": (shaken(g.annulene(6, 1.395, 1.085), 0.003, 2), 711),
+    "benzene_shaken": (g.shaken(g.annulene(6, 1.395, 1.085), 0.003, 2), 711),
     "icosahedron": (g.icosahedral("B", 1.693, ("H", 2.893)), 712),
 }
 
