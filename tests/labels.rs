@@ -7,8 +7,8 @@ mod support;
 use ndarray::Axis;
 use orbsieve::labelling::Labelled;
 use orbsieve::model::Molecule;
-use serde_json::Value;
 use orbsieve::wavefunction::convention::CartesianOrder;
+use serde_json::Value;
 use support::files::{labelled, reference, set_labels};
 
 /// Fixture, point group. Every orbital must be pure and every set whole.
@@ -182,10 +182,8 @@ fn labels_descend_to_those_of_a_reference_library() {
                 }
                 let theirs: f64 = labels.iter().map(|label| abelian_sign(group, label, signs)).sum();
                 let class = labelled.symmetry.group.elements()[element].class_idx;
-                let ours: f64 = sets
-                    .iter()
-                    .map(|set| labelled.symmetry.group.irreps()[set.irrep.unwrap()].characters[class])
-                    .sum();
+                let ours: f64 =
+                    sets.iter().map(|set| labelled.symmetry.group.irreps()[set.irrep.unwrap()].characters[class]).sum();
                 assert!((theirs - ours).abs() < 1e-6, "{file}, orbitals {members:?}, signs {signs:?}: {theirs} {ours}");
                 compared += 1;
             }
@@ -292,7 +290,11 @@ fn populations_agree_with_a_reference_library() {
             assert!((row.sum() - 1.0).abs() < 1e-8);
             for (shell, expected) in labelled.settled.basis.shells().iter().zip(numbers(&orbital["by_shell"])) {
                 let found: f64 = shell.range().map(|function| row[function]).sum();
-                assert!((found - expected).abs() < 1e-8, "{file}, orbital {index}, shell at {}: {found} {expected}", shell.offset);
+                assert!(
+                    (found - expected).abs() < 1e-8,
+                    "{file}, orbital {index}, shell at {}: {found} {expected}",
+                    shell.offset
+                );
             }
         }
     }
@@ -318,7 +320,15 @@ fn three_digits_are_enough_to_label() {
 /// Labels survive everything that has no meaning: place and orientation, order of atoms, signs, turned partners.
 #[test]
 fn labels_do_not_depend_on_what_has_no_meaning() {
-    for file in ["water_631gs_cart", "benzene_sto3g", "methane_631gs", "allene_d2d_631g", "ferrocene_d5d_sto3g", "ptcl4_d4h_ecp", "carbon_dioxide_631gs"] {
+    for file in [
+        "water_631gs_cart",
+        "benzene_sto3g",
+        "methane_631gs",
+        "allene_d2d_631g",
+        "ferrocene_d5d_sto3g",
+        "ptcl4_d4h_ecp",
+        "carbon_dioxide_631gs",
+    ] {
         let (_, plain) = labelled(file);
         for seed in 0..4 {
             let mut molecule: Molecule = support::files::disturbed(file, seed);
