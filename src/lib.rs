@@ -12,5 +12,6 @@ pub mod group;
 pub mod wavefunction;
 pub mod labelling;
 pub mod selection;
+pub mod modes;
 pub mod report;
 pub mod cli;

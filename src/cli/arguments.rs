@@ -1,5 +1,6 @@
 //! What a person types, as types.
 
+use crate::selection::Selector;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
 
@@ -21,6 +22,8 @@ pub enum Verb {
     Geometry(Geometry),
     /// Operations, classes, characters, functions, products and descent of a point group
     Table(Table),
+    /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
+    Transitions(Transitions),
 }
 
 /// Options of every verb.
@@ -103,6 +106,34 @@ pub struct Table {
     /// Only the selection rules between two irreps, such as --transition t2g eg
     #[arg(long, num_args = 2, value_names = ["FROM", "TO"])]
     pub transition: Option<Vec<String>>,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `transitions`.
+#[derive(Debug, Args)]
+pub struct Transitions {
+    /// Molden-format file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Sets to leave: labels (3e2g), orbital numbers, homo, homo-1; by default those of the window
+    #[arg(long, value_name = "SETS", value_delimiter = ',', allow_hyphen_values = true)]
+    pub from: Vec<Selector>,
+    /// Sets to enter: labels, orbital numbers, lumo, lumo+1
+    #[arg(long, value_name = "SETS", value_delimiter = ',')]
+    pub to: Vec<Selector>,
+    /// Pair the K highest sets with electrons and the L lowest with room
+    #[arg(long, value_name = "K,L", value_parser = window, default_value = "4,4")]
+    pub window: (usize, usize),
+    /// Leave out pairs farther apart than this in orbital energy, eV
+    #[arg(long, value_name = "EV", value_parser = positive)]
+    pub max_ev: Option<f64>,
+    /// Only pairs that an electric dipole connects
+    #[arg(long)]
+    pub allowed_only: bool,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

@@ -17,7 +17,7 @@ use std::path::Path;
 const CHARACTER_LIMIT: usize = 1200;
 
 /// What is read, or all findings drawn.
-fn read(
+pub(super) fn read(
     result: Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>,
     path: &Path,
     bytes: &[u8],
@@ -121,7 +121,7 @@ fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) ->
 }
 
 /// Indented JSON with a newline at its end.
-fn json(document: &impl serde::Serialize) -> Result<Vec<u8>, CliError> {
+pub(super) fn json(document: &impl serde::Serialize) -> Result<Vec<u8>, CliError> {
     let mut bytes = serde_json::to_vec_pretty(document)
         .map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
     bytes.push(b'\n');

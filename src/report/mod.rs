@@ -8,4 +8,6 @@ pub mod document;
 pub mod rule;
 pub mod table;
 pub mod text;
+pub mod transitions;
+pub mod transitions_text;
 pub mod unicode;
