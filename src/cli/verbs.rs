@@ -8,7 +8,7 @@ use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
 use crate::report::text::{self, TextOptions};
-use crate::report::{csv, table};
+use crate::report::{csv, rule, table};
 use crate::wavefunction;
 use std::io::Write;
 use std::path::Path;
@@ -17,7 +17,7 @@ use std::path::Path;
 const CHARACTER_LIMIT: usize = 1200;
 
 /// What is read, or all findings drawn.
-fn read(
+pub(super) fn read(
     result: Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>,
     path: &Path,
     bytes: &[u8],
@@ -83,6 +83,19 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
 
 pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
+    if arguments.double {
+        return super::states::double_table(arguments, out);
+    }
+    if let Some([from, to]) = arguments.transition.as_deref() {
+        let document = rule::build(&arguments.group, from, to).map_err(|error| CliError::Usage(error.to_string()))?;
+        let printed = match arguments.common.format {
+            Format::Text => rule::text(&document).into_bytes(),
+            Format::Json => json(&document)?,
+            Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        };
+        output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+        return Ok(Status::Done);
+    }
     let document = table::build(&arguments.group).map_err(|error| CliError::Usage(error.to_string()))?;
     let printed = match arguments.common.format {
         Format::Text => table::text(&document).into_bytes(),
@@ -111,7 +124,7 @@ fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) ->
 }
 
 /// Indented JSON with a newline at its end.
-fn json(document: &impl serde::Serialize) -> Result<Vec<u8>, CliError> {
+pub(super) fn json(document: &impl serde::Serialize) -> Result<Vec<u8>, CliError> {
     let mut bytes = serde_json::to_vec_pretty(document)
         .map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
     bytes.push(b'\n');

@@ -4,7 +4,10 @@
 
 mod arrangement;
 mod atomic;
+mod character_table;
 pub mod characters;
+pub mod double;
+pub mod double_name;
 pub mod detect;
 mod elements;
 pub mod error;
@@ -30,6 +33,8 @@ pub mod subgroups;
 pub mod symbols;
 pub mod symmetry;
 
+pub use double::{DoubleClass, DoubleGroup, DoubleIrrep, Kramers};
+pub use double_name::DoubleName;
 pub use detect::{DetectError, DetectSettings, Detection, Rung, detect};
 pub use error::GroupError;
 pub use exact::exact_character;

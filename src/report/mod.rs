@@ -5,6 +5,10 @@
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod double_table;
+pub mod states;
+pub mod states_text;
+pub mod rule;
 pub mod table;
 pub mod text;
 pub mod unicode;

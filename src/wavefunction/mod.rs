@@ -14,7 +14,7 @@ pub mod turn;
 pub use basis::Basis;
 pub use cartesian::angular_projector;
 pub use convention::{ConventionError, Settled, settle};
-pub use moments::{Operator, moments};
+pub use moments::{Moments, moments};
 pub use overlap::{overlap, overlap_between};
 pub use population::lowdin;
 pub use product::product;

@@ -1,156 +1,166 @@
-//! One-electron integrals beside the overlap: position, gradient, turning about an origin, second moments.
+//! One-electron moments between orbitals: r, ∇, r × ∇ and products of two coordinates, about a given origin.
 //!
-//! Not here: the recursion and the passage to pure functions (`wavefunction::overlap`), what the integrals mean for
-//! transitions.
+//! Not here: what symmetry says of them (`selection`), the recursion itself (`wavefunction::overlap`).
 
 use super::basis::{Basis, BasisShell};
-use super::overlap::{AxisTable, Block, SCREEN, components, one_axis};
+use super::overlap::{Block, N, components, one_axis, primitive_pairs};
+use super::product;
 use nalgebra::Point3;
-use ndarray::{Array3, Axis, parallel::prelude::*, s};
+use ndarray::{Array2, ArrayView2, ArrayViewMut2, Axis, parallel::prelude::*, s};
 
-/// A real operator; r counts from the origin given to [`moments`].
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Operator {
-    /// x, y, z, bohr.
-    Position,
-    /// ∂/∂x, ∂/∂y, ∂/∂z on the ket, bohr⁻¹.
-    Gradient,
-    /// (r × ∇) on the ket, components x, y, z: angular momentum is −iħ times this.
-    Turn,
-    /// xx, xy, xz, yy, yz, zz, bohr².
-    SecondMoments,
+/// Two degrees more than a shell's, for the second moments.
+const W: usize = N + 2;
+/// How many operators there are.
+const N_OPERATORS: usize = 15;
+/// Kets taken at a time, so that memory stays at 15 × n_functions × this.
+const KETS: usize = 256;
+
+/// ⟨i|O|j⟩ for all i and j, each n_bra × n_ket, in the axes of the file, atomic units.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Moments {
+    /// x, y, z from the origin.
+    pub position: [Array2<f64>; 3],
+    /// ∂/∂x, ∂/∂y, ∂/∂z.
+    pub gradient: [Array2<f64>; 3],
+    /// r × ∇ about the origin.
+    pub angular: [Array2<f64>; 3],
+    /// xx, yy, zz, xy, xz, yz from the origin.
+    pub second: [Array2<f64>; 6],
 }
 
-/// What acts in one direction.
-#[derive(Clone, Copy)]
-enum Factor {
-    One,
-    Coordinate,
-    Square,
-    Derivative,
-}
-
-use Factor::{Coordinate, Derivative, One, Square};
-
-/// Components as sums of products of what acts along x, y and z.
-const POSITION: &[&[(f64, [Factor; 3])]] =
-    &[&[(1.0, [Coordinate, One, One])], &[(1.0, [One, Coordinate, One])], &[(1.0, [One, One, Coordinate])]];
-const GRADIENT: &[&[(f64, [Factor; 3])]] =
-    &[&[(1.0, [Derivative, One, One])], &[(1.0, [One, Derivative, One])], &[(1.0, [One, One, Derivative])]];
-const TURN: &[&[(f64, [Factor; 3])]] = &[
-    &[(1.0, [One, Coordinate, Derivative]), (-1.0, [One, Derivative, Coordinate])],
-    &[(1.0, [Derivative, One, Coordinate]), (-1.0, [Coordinate, One, Derivative])],
-    &[(1.0, [Coordinate, Derivative, One]), (-1.0, [Derivative, Coordinate, One])],
-];
-const SECOND_MOMENTS: &[&[(f64, [Factor; 3])]] = &[
-    &[(1.0, [Square, One, One])],
-    &[(1.0, [Coordinate, Coordinate, One])],
-    &[(1.0, [Coordinate, One, Coordinate])],
-    &[(1.0, [One, Square, One])],
-    &[(1.0, [One, Coordinate, Coordinate])],
-    &[(1.0, [One, One, Square])],
-];
-
-impl Operator {
-    fn terms(self) -> &'static [&'static [(f64, [Factor; 3])]] {
-        match self {
-            Self::Position => POSITION,
-            Self::Gradient => GRADIENT,
-            Self::Turn => TURN,
-            Self::SecondMoments => SECOND_MOMENTS,
-        }
-    }
-}
-
-/// ⟨μ|O|ν⟩ of all functions: n_components × n_functions × n_functions.
+/// Moments between two lists of orbitals given by rows of coefficients over the same basis.
 ///
+/// # Shapes and units
+/// `bra` is n_bra × n_functions, `ket` n_ket × n_functions. Bohr and its powers.
 /// # Holds
-/// Position and second moments are symmetric in μ, ν; gradient and turn are antisymmetric.
+/// For real functions r and its products are symmetric, ∇ and r × ∇ antisymmetric under exchange of bra and ket.
 /// # Source
-/// Recurrence as for the overlap, the ket raised or lowered by the operator: J. Chem. Phys. 84, 3963 (1986),
+/// Moments and derivatives raise and lower the degree of the ket in the recursion of J. Chem. Phys. 84, 3963 (1986),
 /// doi:10.1063/1.450106.
 #[must_use]
-pub fn moments(basis: &Basis, operator: Operator, origin: &Point3<f64>) -> Array3<f64> {
-    let terms = operator.terms();
-    let n = basis.n_functions();
-    // Function by component by function, so that each thread owns whole rows.
-    let mut integrals = Array3::zeros((n, terms.len(), n));
-    let mut rows = Vec::with_capacity(basis.shells().len());
-    let mut rest = integrals.view_mut();
-    for shell in basis.shells() {
-        let (head, tail) = rest.split_at(Axis(0), shell.n_functions());
-        rows.push(head);
-        rest = tail;
+pub fn moments(basis: &Basis, origin: &Point3<f64>, bra: ArrayView2<'_, f64>, ket: ArrayView2<'_, f64>) -> Moments {
+    let mut all: Vec<Array2<f64>> = vec![Array2::zeros((bra.nrows(), ket.nrows())); N_OPERATORS];
+    for start in (0..ket.nrows()).step_by(KETS) {
+        let columns = start..(start + KETS).min(ket.nrows());
+        let halves = half_transformed(basis, origin, ket.slice(s![columns.clone(), ..]));
+        for (whole, half) in all.iter_mut().zip(&halves) {
+            whole.slice_mut(s![.., columns.clone()]).assign(&product(bra, half.view()));
+        }
     }
-    rows.into_par_iter().zip(basis.shells()).for_each(|(mut rows, a)| {
-        let mut blocks = vec![Block::default(); terms.len()];
+    let mut parts = all.into_iter();
+    let mut next = || parts.next().expect("fifteen operators, fifteen matrices");
+    Moments {
+        position: std::array::from_fn(|_| next()),
+        gradient: std::array::from_fn(|_| next()),
+        angular: std::array::from_fn(|_| next()),
+        second: std::array::from_fn(|_| next()),
+    }
+}
+
+/// ⟨μ|O|j⟩ of all functions μ: for each operator n_functions × n_ket.
+fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64>) -> Vec<Array2<f64>> {
+    let mut halves: Vec<Array2<f64>> = vec![Array2::zeros((basis.n_functions(), ket.nrows())); N_OPERATORS];
+    // One piece of every operator's matrix a shell: rows are written by one thread each.
+    let mut pieces: Vec<Vec<ArrayViewMut2<'_, f64>>> = basis.shells().iter().map(|_| Vec::new()).collect();
+    for half in &mut halves {
+        let mut rest = half.view_mut();
+        for (shell, pieces) in basis.shells().iter().zip(&mut pieces) {
+            let (head, tail) = rest.split_at(Axis(0), shell.n_functions());
+            pieces.push(head);
+            rest = tail;
+        }
+    }
+    pieces.into_par_iter().zip(basis.shells()).for_each(|(mut pieces, a)| {
+        let mut blocks: [Block; N_OPERATORS] = Default::default();
+        let mut strip = Array2::zeros((0, 0));
         for b in basis.shells() {
-            if fill(&mut blocks, a, b, terms, origin) {
-                for (component, block) in blocks.iter_mut().enumerate() {
-                    block.store(a, b, rows.slice_mut(s![.., component, b.range()]));
-                }
+            if !fill(&mut blocks, a, b, origin) {
+                continue;
+            }
+            if strip.dim() != (a.n_functions(), b.n_functions()) {
+                strip = Array2::zeros((a.n_functions(), b.n_functions()));
+            }
+            for (block, piece) in blocks.iter_mut().zip(&mut pieces) {
+                block.store(a, b, strip.view_mut());
+                ndarray::linalg::general_mat_mul(1.0, &strip, &ket.slice(s![.., b.range()]).t(), 1.0, piece);
             }
         }
     });
-    integrals.permuted_axes([1, 0, 2])
+    halves
 }
 
-/// Sums over pairs of primitives, one block a component; false when all are negligible.
-fn fill(
-    blocks: &mut [Block],
-    a: &BasisShell,
-    b: &BasisShell,
-    terms: &[&[(f64, [Factor; 3])]],
-    origin: &Point3<f64>,
-) -> bool {
-    for block in &mut *blocks {
-        block.clear(a, b);
-    }
-    let (bras, kets) = (components(a.l), components(b.l));
-    let (apart, from_origin) = (b.centre - a.centre, b.centre - origin);
-    let mut any = false;
-    for (alpha, f) in a.exponents.iter().zip(&a.factors) {
-        for (beta, g) in b.exponents.iter().zip(&b.factors) {
-            let p = alpha + beta;
-            let gaussian = alpha * beta / p * apart.norm_squared();
-            if gaussian > SCREEN {
-                continue;
+/// One direction: overlap, moment, second moment and derivative of the ket, degree by degree.
+struct Direction {
+    overlap: [[f64; W]; N],
+    moment: [[f64; N]; N],
+    second: [[f64; N]; N],
+    derivative: [[f64; N]; N],
+}
+
+impl Direction {
+    /// `from_origin` is the ket's centre less the origin.
+    fn new(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64, beta: f64, from_origin: f64) -> Self {
+        let overlap = one_axis::<W>(la, lb + 2, from_a, from_b, half);
+        let mut direction = Self { overlap, moment: [[0.0; N]; N], second: [[0.0; N]; N], derivative: [[0.0; N]; N] };
+        for i in 0..=la {
+            let row = &overlap[i];
+            for j in 0..=lb {
+                // x − O = (x − B) + (B − O).
+                direction.moment[i][j] = row[j + 1] + from_origin * row[j];
+                direction.second[i][j] = row[j + 2] + from_origin * (2.0 * row[j + 1] + from_origin * row[j]);
+                let lowered = if j > 0 { j as f64 * row[j - 1] } else { 0.0 };
+                direction.derivative[i][j] = lowered - 2.0 * beta * row[j + 1];
             }
+        }
+        direction
+    }
+}
+
+/// Sums all operators over pairs of primitives; false when every pair is negligible.
+fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origin: &Point3<f64>) -> bool {
+    let (bras, kets) = (components(a.l), components(b.l));
+    let from_origin = b.centre - origin;
+    let mut any = false;
+    for pair in primitive_pairs(a, b) {
+        if !any {
+            blocks.iter_mut().for_each(|block| block.clear(a, b));
             any = true;
-            let scale = f * g * (-gaussian).exp() * (std::f64::consts::PI / p).powf(1.5);
-            let axes: [[AxisTable; 4]; 3] = std::array::from_fn(|axis| {
-                let (from_a, from_b) = (beta / p * apart[axis], -alpha / p * apart[axis]);
-                let overlap = one_axis(a.l, b.l + 2, from_a, from_b, 0.5 / p);
-                [One, Coordinate, Square, Derivative]
-                    .map(|factor| acted(factor, &overlap, a.l, b.l, *beta, from_origin[axis]))
-            });
-            for (block, terms) in blocks.iter_mut().zip(terms) {
-                for &(sign, [x, y, z]) in *terms {
-                    let tables = [&axes[0][x as usize], &axes[1][y as usize], &axes[2][z as usize]];
-                    block.add(bras, kets, sign * scale, tables);
+        }
+        let directions: [Direction; 3] = std::array::from_fn(|axis| {
+            let (from_a, from_b) = (pair.from_a[axis], pair.from_b[axis]);
+            Direction::new(a.l, b.l, from_a, from_b, pair.half, pair.beta, from_origin[axis])
+        });
+        let mut at = 0;
+        for bra in bras {
+            for ket in kets {
+                let values = one_pair(&directions, bra, ket);
+                for (block, value) in blocks.iter_mut().zip(values) {
+                    block.values[at] += pair.scale * value;
                 }
+                at += 1;
             }
         }
     }
     any
 }
 
-/// The table of one direction with the operator between: x − O is (x − B) + (B − O), the derivative of
-/// (x − B)^j exp(−β(x − B)²) is j (x − B)^{j−1} − 2β (x − B)^{j+1} times the same Gaussian.
-fn acted(factor: Factor, overlap: &AxisTable, la: usize, lb: usize, beta: f64, shift: f64) -> AxisTable {
-    let mut table = *overlap;
-    for (row, source) in table.iter_mut().zip(overlap).take(la + 1) {
-        for j in 0..=lb {
-            row[j] = match factor {
-                One => source[j],
-                Coordinate => source[j + 1] + shift * source[j],
-                Square => source[j + 2] + shift * (2.0 * source[j + 1] + shift * source[j]),
-                Derivative => {
-                    let below = if j > 0 { j as f64 * source[j - 1] } else { 0.0 };
-                    below - 2.0 * beta * source[j + 1]
-                }
-            };
-        }
+/// All operators between two monomials, in the order of [`Moments`].
+fn one_pair(directions: &[Direction; 3], bra: &[usize; 3], ket: &[usize; 3]) -> [f64; N_OPERATORS] {
+    let overlap: [f64; 3] = std::array::from_fn(|k| directions[k].overlap[bra[k]][ket[k]]);
+    let moment: [f64; 3] = std::array::from_fn(|k| directions[k].moment[bra[k]][ket[k]]);
+    let second: [f64; 3] = std::array::from_fn(|k| directions[k].second[bra[k]][ket[k]]);
+    let derivative: [f64; 3] = std::array::from_fn(|k| directions[k].derivative[bra[k]][ket[k]]);
+    let others = |k: usize| overlap[(k + 1) % 3] * overlap[(k + 2) % 3];
+    let mut values = [0.0; N_OPERATORS];
+    for k in 0..3 {
+        let (next, last) = ((k + 1) % 3, (k + 2) % 3);
+        values[k] = moment[k] * others(k);
+        values[3 + k] = derivative[k] * others(k);
+        values[6 + k] = overlap[k] * (moment[next] * derivative[last] - moment[last] * derivative[next]);
+        values[9 + k] = second[k] * others(k);
     }
-    table
+    values[12] = moment[0] * moment[1] * overlap[2];
+    values[13] = moment[0] * overlap[1] * moment[2];
+    values[14] = overlap[0] * moment[1] * moment[2];
+    values
 }
