@@ -7,8 +7,8 @@ mod support;
 use ndarray::Axis;
 use orbsieve::labelling::Labelled;
 use orbsieve::model::Molecule;
-use serde_json::Value;
 use orbsieve::wavefunction::convention::CartesianOrder;
+use serde_json::Value;
 use support::files::{labelled, reference, set_labels};
 
 /// Fixture, point group. Every orbital must be pure and every set whole.

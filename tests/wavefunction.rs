@@ -2,16 +2,40 @@
 //! (`tests/molecules/reference`, made by `tests/molecules/scripts/reference_values.py`), laws, and a second path.
 
 use nalgebra::{DMatrix, Matrix3, Point3, Rotation3, Vector3};
-use ndarray::{Array1, Array2, ArrayView2, Axis};
+use ndarray::{Array1, Array2, Array3, ArrayView2, Axis, stack};
 use orbsieve::model::{Atom, Molecule, Orbital, OrbitalSet, Shell, Spin, read_molden};
 use orbsieve::wavefunction::basis::Primitives;
 use orbsieve::wavefunction::cartesian::{Powers, lexicographic, monomials, pure_over_monomials, squared_norm};
 use orbsieve::wavefunction::convention::{CartesianNorm, CartesianOrder, Convention, PureSigns};
 use orbsieve::wavefunction::{
-    Basis, ConventionError, Moments, Settled, Turning, lowdin, moments, overlap, overlap_between, overlap_with_turned,
-    settle,
+    Basis, ConventionError, Settled, Turning, lowdin, moments as moments_between, overlap, overlap_between,
+    overlap_with_turned, settle,
 };
 use serde_json::Value;
+
+/// One of the operators of [`moments_between`].
+#[derive(Clone, Copy)]
+enum Operator {
+    Position,
+    Gradient,
+    Turn,
+    SecondMoments,
+}
+
+/// An operator's integrals over all functions; second moments as xx, xy, xz, yy, yz, zz.
+fn moments(basis: &Basis, operator: Operator, origin: &Point3<f64>) -> Array3<f64> {
+    let functions = Array2::eye(basis.n_functions());
+    let all = moments_between(basis, origin, functions.view(), functions.view());
+    let [xx, yy, zz, xy, xz, yz] = &all.second;
+    let parts = match operator {
+        Operator::Position => all.position.each_ref().to_vec(),
+        Operator::Gradient => all.gradient.each_ref().to_vec(),
+        Operator::Turn => all.angular.each_ref().to_vec(),
+        Operator::SecondMoments => vec![xx, xy, xz, yy, yz, zz],
+    };
+    let views: Vec<ArrayView2<'_, f64>> = parts.into_iter().map(|matrix| matrix.view()).collect();
+    stack(Axis(0), &views).unwrap()
+}
 
 /// The limit that `label` takes.
 const LIMIT: f64 = 5e-3;
@@ -319,30 +343,25 @@ fn overlaps_are_those_of_the_reference_library() {
     }
 }
 
-/// All fifteen in the order of the reference.
-fn operators(all: &Moments) -> [(&'static str, Vec<&Array2<f64>>); 4] {
-    let [xx, yy, zz, xy, xz, yz] = &all.second;
-    [
-        ("r", all.position.iter().collect()),
-        ("nabla", all.gradient.iter().collect()),
-        ("r_cross_nabla", all.angular.iter().collect()),
-        ("xx_xy_xz_yy_yz_zz", vec![xx, xy, xz, yy, yz, zz]),
-    ]
-}
-
 #[test]
 fn moments_between_orbitals_are_those_of_the_reference_library() {
     for (name, rows) in reference("moments") {
         let (molecule, settled) = settled_fixture(&name);
-        let coefficients = molecule.orbital_sets[0].coefficients.view();
-        let all = moments(&settled.basis, &Point3::origin(), coefficients, coefficients);
-        for (key, matrices) in operators(&all) {
+        let coefficients = &molecule.orbital_sets[0].coefficients;
+        for (operator, key) in [
+            (Operator::Position, "r"),
+            (Operator::Gradient, "nabla"),
+            (Operator::Turn, "r_cross_nabla"),
+            (Operator::SecondMoments, "xx_xy_xz_yy_yz_zz"),
+        ] {
+            let integrals = moments(&settled.basis, operator, &Point3::origin());
             for row in rows.as_array().unwrap() {
                 let (i, j) = (place(&row["i"]), place(&row["j"]));
                 let expected = row[key].as_array().unwrap();
-                assert_eq!(matrices.len(), expected.len());
-                for (matrix, expected) in matrices.iter().zip(expected) {
-                    let (found, expected) = (matrix[(i, j)], float(expected));
+                assert_eq!(integrals.len_of(Axis(0)), expected.len());
+                for (matrix, expected) in integrals.outer_iter().zip(expected) {
+                    let found = coefficients.row(i).dot(&matrix.dot(&coefficients.row(j)));
+                    let expected = float(expected);
                     assert!((found - expected).abs() < 1e-9, "{name} {key} {i} {j}: {found} against {expected}");
                 }
             }
@@ -355,16 +374,15 @@ fn moments_of_all_degrees_follow_from_moving_and_turning() {
     for pure in [true, false] {
         let molecule = generic_molecule(6, pure);
         let basis = Basis::new(&molecule.atoms, &molecule.shells, Primitives::Normalised);
-        let functions = Array2::eye(basis.n_functions());
-        let of_functions = |point: &Point3<f64>| moments(&basis, point, functions.view(), functions.view());
         let origin = Point3::new(0.4, -0.3, 0.2);
-        let (plain, shifted) = (of_functions(&Point3::origin()), of_functions(&origin));
         // Derivative of f at 0, to fourth order in the step.
         let derivative = |f: &dyn Fn(f64) -> Array2<f64>| {
             // Large enough for rounding, small enough for h functions far from the axis: 1e-8 is left, falling as h⁴.
             let h = 1e-3;
             (8.0 * (f(h) - f(-h)) - (f(2.0 * h) - f(-2.0 * h))) / (12.0 * h)
         };
+        let gradient = moments(&basis, Operator::Gradient, &origin);
+        let turn = moments(&basis, Operator::Turn, &origin);
         for axis in [0, 2] {
             let unit = Vector3::ith_axis(axis);
             let moved = |step: f64| {
@@ -373,23 +391,29 @@ fn moments_of_all_degrees_follow_from_moving_and_turning() {
                 overlap_between(&basis, &Basis::new(&atoms, &molecule.shells, Primitives::Normalised))
             };
             // f(r − a) changes with a as −∇f.
-            assert!(largest(&(derivative(&moved) + &shifted.gradient[axis])) < 1e-8);
+            assert!(largest(&(derivative(&moved) + gradient.index_axis(Axis(0), axis))) < 1e-8);
             let turned =
                 |angle: f64| overlap_with_turned(&basis, Rotation3::from_axis_angle(&unit, angle).matrix(), &origin);
             // f(R⁻¹r) changes with the angle as −n·(r × ∇)f.
-            assert!(largest(&(derivative(&turned) + &shifted.angular[axis])) < 1e-7);
+            let difference = largest(&(derivative(&turned) + turn.index_axis(Axis(0), axis)));
+            assert!(difference < 1e-7, "{pure} {axis}: {difference:e}");
         }
         let s = overlap(&basis);
+        let [position, shifted] = [Point3::origin(), origin].map(|point| moments(&basis, Operator::Position, &point));
+        let second = moments(&basis, Operator::SecondMoments, &Point3::origin());
+        let second_shifted = moments(&basis, Operator::SecondMoments, &origin);
+        let pairs = [(0, 0), (0, 1), (0, 2), (1, 1), (1, 2), (2, 2)];
         for axis in 0..3 {
-            let expected = &plain.position[axis] - &(origin[axis] * &s);
-            assert!(largest(&(&shifted.position[axis] - &expected)) < 1e-12);
+            let expected = &position.index_axis(Axis(0), axis) - &(origin[axis] * &s);
+            assert!(largest(&(&shifted.index_axis(Axis(0), axis) - &expected)) < 1e-12);
         }
-        for (component, (a, b)) in [(0, 0), (1, 1), (2, 2), (0, 1), (0, 2), (1, 2)].into_iter().enumerate() {
-            let expected =
-                &plain.second[component] - &(origin[b] * &plain.position[a]) - &(origin[a] * &plain.position[b])
-                    + origin[a] * origin[b] * &s;
-            assert!(largest(&(&shifted.second[component] - &expected)) < 1e-11);
-            assert!(largest(&(&plain.second[component] - &plain.second[component].t())) < 1e-12);
+        for (component, (a, b)) in pairs.into_iter().enumerate() {
+            let (x, y) = (position.index_axis(Axis(0), a), position.index_axis(Axis(0), b));
+            let expected = &second.index_axis(Axis(0), component) - &(origin[b] * &x) - &(origin[a] * &y)
+                + origin[a] * origin[b] * &s;
+            assert!(largest(&(&second_shifted.index_axis(Axis(0), component) - &expected)) < 1e-11);
+            let matrix = second.index_axis(Axis(0), component);
+            assert!(largest(&(&matrix - &matrix.t())) < 1e-12);
         }
     }
 }

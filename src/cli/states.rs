@@ -35,9 +35,7 @@ pub fn states(arguments: &States, out: &mut dyn Write, errors: &mut dyn Write) -
         (None, _) => of_file(arguments, errors)?,
     };
     let printed = match arguments.common.format {
-        Format::Text => {
-            states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes()
-        }
+        Format::Text => states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => return Err(CliError::Usage("states prints text or json, not csv".to_owned())),
     };
@@ -85,7 +83,8 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
 
 /// l and n of one shell of a free ion, `d^3`, in a group whose irreps have no such name.
 fn ionic_shell(group: &PointGroup, text: &str) -> Option<(u8, u32)> {
-    let first = text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
+    let first =
+        text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
     if group.name() == GroupName::K || !matches!(first, 's' | 'p' | 'd' | 'f') {
         return None;
     }
@@ -167,7 +166,9 @@ fn free_term(text: &str) -> Result<(String, u16, Parity), CliError> {
     let multiplicity = &stem[..stem.len() - letter.len()];
     let l = TERM_LETTERS.find(letter).filter(|_| letter.len() == 1).and_then(|l| u16::try_from(l).ok());
     match l {
-        Some(l) if !multiplicity.is_empty() && multiplicity.len() < 3 => Ok((format!("{multiplicity}{letter}"), l, parity)),
+        Some(l) if !multiplicity.is_empty() && multiplicity.len() < 3 => {
+            Ok((format!("{multiplicity}{letter}"), l, parity))
+        }
         _ => Err(CliError::Usage(format!(
             "`{text}` is no term of a free ion: expected a multiplicity and a letter of {TERM_LETTERS}, such as 4F, with u at its end for odd terms"
         ))),
@@ -225,9 +226,8 @@ fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
             list.len(),
             set(*irrep, *number)
         ),
-        Obstacle::Fractional { irrep, number, electrons, limit } => format!(
-            "{} holds {electrons:.3} electrons, further than {limit} from a whole number",
-            set(*irrep, *number)
-        ),
+        Obstacle::Fractional { irrep, number, electrons, limit } => {
+            format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
+        }
     }
 }

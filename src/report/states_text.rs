@@ -198,7 +198,11 @@ fn level_stability(entry: &ConfigurationEntry, file: bool) -> String {
             told.push(&component.irrep);
             let verdict = jahn_teller(&component.jahn_teller).unwrap_or_default();
             let of = if file { "in this molecule " } else { "" };
-            push_wrapped(&mut out, "", &format!("Level {} of the ground term: {of}{verdict}", component_name(component)));
+            push_wrapped(
+                &mut out,
+                "",
+                &format!("Level {} of the ground term: {of}{verdict}", component_name(component)),
+            );
         }
     }
     out
@@ -230,7 +234,9 @@ fn component_name(component: &ComponentEntry) -> String {
     let name = pretty(&component.irrep);
     match (&component.gamma, &component.quantum_number) {
         (Some(gamma), _) => format!("{name} ({})", pretty(gamma)),
-        (None, Some(_)) if component.irrep.contains('_') && !component.irrep.starts_with(|c: char| c.is_alphabetic()) => {
+        (None, Some(_))
+            if component.irrep.contains('_') && !component.irrep.starts_with(|c: char| c.is_alphabetic()) =>
+        {
             format!("J = {name}")
         }
         (None, Some(number)) => format!("{name} ({number})"),

@@ -3,8 +3,8 @@
 //! Not here: which terms they give (`states::terms`).
 
 use super::error::StatesError;
-use crate::group::{GroupName, IrrepName, PointGroup};
 use crate::group::irrep_name::Parity;
+use crate::group::{GroupName, IrrepName, PointGroup};
 use std::fmt;
 
 /// Most microstates: characters stay whole to 1e-6 in double precision up to here.

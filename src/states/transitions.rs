@@ -96,14 +96,13 @@ fn between(
     (to, b): (usize, &Split<'_>),
 ) -> Transition {
     let orbital = |irrep: usize| group.irreps()[irrep].characters.as_slice();
-    let allowed = |operator: &&usize| {
-        group.mean(&[orbital(a.term.irrep), orbital(b.term.irrep), orbital(**operator)]) > WHOLE
-    };
+    let allowed =
+        |operator: &&usize| group.mean(&[orbital(a.term.irrep), orbital(b.term.irrep), orbital(**operator)]) > WHOLE;
     let through_components = |operator: &&usize| {
         let of = |irrep: usize| double.irreps()[irrep].characters.as_slice();
-        a.components.iter().any(|&(c, _)| {
-            b.components.iter().any(|&(d, _)| double.mean(&[of(c), of(d), of(**operator)]) > WHOLE)
-        })
+        a.components
+            .iter()
+            .any(|&(c, _)| b.components.iter().any(|&(d, _)| double.mean(&[of(c), of(d), of(**operator)]) > WHOLE))
     };
     let electric_dipole: Vec<usize> = operators.dipole.iter().filter(allowed).copied().collect();
     let spin_allowed = a.term.multiplicity == b.term.multiplicity;
@@ -115,7 +114,12 @@ fn between(
         spin_allowed,
         magnetic_dipole: operators.rotation.iter().filter(allowed).copied().collect(),
         quadrupole: operators.quadrupole.iter().filter(allowed).copied().collect(),
-        borrowed: operators.dipole.iter().filter(|operator| same_kind && through_components(operator)).copied().collect(),
+        borrowed: operators
+            .dipole
+            .iter()
+            .filter(|operator| same_kind && through_components(operator))
+            .copied()
+            .collect(),
         borrowed_order: (steps / 2).max(u16::from(electric_dipole.is_empty())),
         electric_dipole,
     }
