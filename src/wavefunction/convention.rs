@@ -96,7 +96,7 @@ impl Convention {
     }
 
     /// Where the canonical functions of one shell stand in the file, and what their coefficients are multiplied with.
-    fn of_shell(&self, l: usize, pure: bool) -> Vec<(usize, f64)> {
+    fn of_shell(self, l: usize, pure: bool) -> Vec<(usize, f64)> {
         if l < 2 {
             return (0..=2 * l).map(|k| (k, 1.0)).collect();
         }
@@ -115,10 +115,9 @@ impl Convention {
             CartesianNorm::ShellFactor => squared_norm([l, 0, 0]).sqrt(),
         };
         let in_file: Vec<Powers> = match self.order {
-            CartesianOrder::Published => cartesian::monomials(l),
             CartesianOrder::Lexicographic => cartesian::lexicographic(l),
             CartesianOrder::ReversedAboveG if l > 4 => cartesian::lexicographic(l).into_iter().rev().collect(),
-            CartesianOrder::ReversedAboveG => cartesian::monomials(l),
+            CartesianOrder::Published | CartesianOrder::ReversedAboveG => cartesian::monomials(l),
         };
         cartesian::monomials(l)
             .into_iter()
@@ -127,7 +126,7 @@ impl Convention {
     }
 
     /// For every canonical function its place in the file and the factor of its coefficient.
-    fn components(&self, basis: &Basis) -> Vec<(usize, f64)> {
+    fn components(self, basis: &Basis) -> Vec<(usize, f64)> {
         basis
             .shells()
             .iter()
@@ -320,7 +319,8 @@ pub fn settle(molecule: &mut Molecule, limit: f64) -> Result<Settled, Convention
         all.push(coefficients);
         products.push(sc);
     }
-    if !(residual <= limit) {
+    // NaN is no fit either.
+    if residual.is_nan() || residual > limit {
         trials[chosen].residual = residual;
         return Err(none_fits(trials));
     }
