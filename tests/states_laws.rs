@@ -1,4 +1,5 @@
 //! Laws of terms, levels and double groups, tried on every family of groups; second paths that share no code with the program's.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use orbsieve::group::irrep_name::{IrrepName, Parity};
 use orbsieve::group::{DoubleGroup, GroupName, Kramers, PointGroup};
@@ -325,7 +326,7 @@ proptest! {
         let Ok(configuration) = Configuration::new(&group, &shells) else { return Ok(()) };
         let Ok(list) = terms(&group, &configuration) else { return Ok(()) };
         let states: usize = list.iter().map(|term| term.states(&group)).sum();
-        prop_assert_eq!(states as f64, configuration.microstates());
+        prop_assert!((states as f64 - configuration.microstates()).abs() < 0.5);
         // Holes: the same terms.
         let holes: Vec<(usize, Option<u32>, u32)> = configuration
             .shells()

@@ -66,15 +66,12 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     let stage = Stage { group: &group, double: &double, vibrations: None };
     let mut document = StatesDocument::new(&group, None);
     if let Some(text) = text {
-        match ionic_shell(&group, text) {
-            Some((l, electrons)) => {
-                let found = correlation(&group, &double, l, electrons).map_err(usage)?;
-                document.correlation = Some(stage.correlation(&found));
-            }
-            None => {
-                let configuration = Configuration::parse(&group, text).map_err(usage)?;
-                fill(&mut document, arguments, &stage, &configuration)?;
-            }
+        if let Some((l, electrons)) = ionic_shell(&group, text) {
+            let found = correlation(&group, &double, l, electrons).map_err(usage)?;
+            document.correlation = Some(stage.correlation(&found));
+        } else {
+            let configuration = Configuration::parse(&group, text).map_err(usage)?;
+            fill(&mut document, arguments, &stage, &configuration)?;
         }
     }
     levels(&mut document, arguments, &stage)?;

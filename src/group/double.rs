@@ -465,7 +465,7 @@ impl CharacterTable for DoubleGroup {
                 return of.characters[self.class_of[power]];
             }
         };
-        let sign = if self.classes[class].proper || parity == Parity::Even || k % 2 == 0 { 1.0 } else { -1.0 };
+        let sign = if self.classes[class].proper || parity == Parity::Even || k.is_multiple_of(2) { 1.0 } else { -1.0 };
         sign * spin_character(twice_j, self.classes[class].half_angle * k as f64)
     }
 

@@ -13,6 +13,7 @@ use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
 use crate::selection::{self, Choice, SelectError};
 use ndarray::{Array2, Axis};
 use serde_json::{Map, json};
+use std::fmt::Write as _;
 
 /// Shares below this are not listed.
 const SHARE_FLOOR: f64 = 0.01;
@@ -80,7 +81,7 @@ fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
         let bonds = list(passage.bonds.iter().map(bond).collect(), "bonds");
         let parts: Vec<String> = [atoms, bonds].into_iter().flatten().collect();
         if !parts.is_empty() {
-            text.push_str(&format!("; {axis} passes {}", parts.join(" and ")));
+            let _ = write!(text, "; {axis} passes {}", parts.join(" and "));
         }
     }
     text

@@ -137,10 +137,10 @@ fn configuration_text(entry: &ConfigurationEntry, document: &StatesDocument, opt
     let named = if ground.len() > 1 { format!("one of {}", ground.join(", ")) } else { ground.join("") };
     head(&mut out, "Ground term", &format!("{named}{level}: {}", entry.ground.caution));
     for symbol in &entry.ground.terms {
-        if let Some(kind) = entry.terms.iter().find(|kind| kind.term == *symbol) {
-            if let Some(verdict) = jahn_teller(&kind.jahn_teller) {
-                head(&mut out, "Jahn–Teller", &format!("{}: {verdict}", term(symbol)));
-            }
+        if let Some(kind) = entry.terms.iter().find(|kind| kind.term == *symbol)
+            && let Some(verdict) = jahn_teller(&kind.jahn_teller)
+        {
+            head(&mut out, "Jahn–Teller", &format!("{}: {verdict}", term(symbol)));
         }
     }
     out.push('\n');
