@@ -14,7 +14,7 @@ mod weights;
 
 use crate::group::{Detection, GroupName, Symmetry};
 use crate::model::{Molecule, Spin};
-use crate::wavefunction::{Settled, Turning};
+use crate::wavefunction::{Operations, Rows, Settled};
 use ndarray::{Array2, ArrayView1, Axis};
 
 /// Every limit that decides a label, passed explicitly and told back in the report.
@@ -109,7 +109,7 @@ pub struct Labelled {
     /// Basis, overlap, products and the convention found; coefficients are canonical.
     pub settled: Settled,
     /// Operations on orbitals, one an element of the group.
-    pub turnings: Vec<Turning>,
+    pub operations: Operations,
     /// Alpha, then beta where there is one.
     pub spins: Vec<SpinLabels>,
 }
@@ -153,11 +153,11 @@ pub fn label(molecule: &mut Molecule, thresholds: &Thresholds) -> Result<Labelle
     }
     let (detection, symmetry) = sites::place(molecule, thresholds.tolerance_bohr)?;
     let settled = crate::wavefunction::settle(molecule, thresholds.orthonormality)?;
-    let turnings = atom::turnings(&settled.basis, &symmetry)?;
+    let operations = Operations::Permuting(atom::turnings(&settled.basis, &symmetry)?);
     let spins = (0..molecule.orbital_sets.len())
-        .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &turnings, thresholds))
+        .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &operations, thresholds))
         .collect();
-    Ok(Labelled { detection, symmetry, settled, turnings, spins })
+    Ok(Labelled { detection, symmetry, settled, operations, spins })
 }
 
 fn label_spin(
@@ -165,13 +165,14 @@ fn label_spin(
     spin_idx: usize,
     settled: &Settled,
     symmetry: &Symmetry,
-    turnings: &[Turning],
+    operations: &Operations,
     thresholds: &Thresholds,
 ) -> SpinLabels {
     let set = &molecule.orbital_sets[spin_idx];
     let (coefficients, products) = (set.coefficients.view(), settled.products[spin_idx].view());
     let group = &symmetry.group;
-    let expectations = weights::expectations(turnings, coefficients, products);
+    let rows = Rows { coefficients, products };
+    let expectations = operations.expectations(rows);
     let (all_weights, abelian_weights) = if group.name() == GroupName::K {
         (atom::weights(&settled.basis, group, coefficients, products), None)
     } else {
@@ -196,8 +197,7 @@ fn label_spin(
             OrbitalLabel { irrep, partner, purity, weights, abelian, set: 0 }
         })
         .collect();
-    let connected =
-        sets::Connected { orbitals: &set.orbitals, coefficients, products, turnings, expectations: &expectations };
+    let connected = sets::Connected { orbitals: &set.orbitals, rows, operations, expectations: &expectations };
     let sets = sets::join(&connected, group, &orbitals, set.spin, thresholds);
     for (set_idx, set) in sets.iter().enumerate() {
         for &orbital in &set.orbitals {
