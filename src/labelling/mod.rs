@@ -7,6 +7,7 @@ mod atom;
 pub mod composition;
 pub mod configuration;
 pub mod d_block;
+pub mod descent;
 pub mod frontier;
 mod sets;
 pub mod sites;
@@ -153,6 +154,24 @@ pub fn label(molecule: &mut Molecule, thresholds: &Thresholds) -> Result<Labelle
     }
     let (detection, symmetry) = sites::place(molecule, thresholds.tolerance_bohr)?;
     let settled = crate::wavefunction::settle(molecule, thresholds.orthonormality)?;
+    let operations = Operations::Permuting(atom::turnings(&settled.basis, &symmetry)?);
+    let spins = (0..molecule.orbital_sets.len())
+        .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &operations, thresholds))
+        .collect();
+    Ok(Labelled { detection, symmetry, settled, operations, spins })
+}
+
+/// The same orbitals with the same group in other axes.
+///
+/// # Errors
+/// [`LabelError::Turning`] when an operation carries an atom onto one with other functions.
+pub fn relabelled(
+    molecule: &Molecule,
+    labelled: Labelled,
+    symmetry: Symmetry,
+    thresholds: &Thresholds,
+) -> Result<Labelled, LabelError> {
+    let Labelled { detection, settled, .. } = labelled;
     let operations = Operations::Permuting(atom::turnings(&settled.basis, &symmetry)?);
     let spins = (0..molecule.orbital_sets.len())
         .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &operations, thresholds))
