@@ -3,11 +3,14 @@
 //! Not here: how much of a density each operation keeps (`audit::density`), where the subgroup's axes lie
 //! (`labelling::descent`).
 
-use crate::group::PointGroup;
+use crate::group::{GroupError, GroupName, PointGroup};
+use crate::labelling::descent::subgroup_name;
 
 /// Operations that a density keeps.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Kept {
+    /// The subgroup.
+    pub name: GroupName,
     /// Elements of the group, a subgroup.
     pub members: Vec<usize>,
     /// The other elements.
@@ -23,8 +26,17 @@ impl Kept {
     ///
     /// `carried` holds one number an element. Operations near the limit need not close, so a subgroup is built up from
     /// the operations that carry least.
-    #[must_use]
-    pub fn of(group: &PointGroup, carried: &[f64], limit: f64) -> Self {
+    ///
+    /// # Errors
+    /// [`GroupError`] when the operations kept are no point group.
+    pub fn of(group: &PointGroup, carried: &[f64], limit: f64) -> Result<Self, GroupError> {
+        let worst = |elements: &[usize]| elements.iter().map(|&element| carried[element]).fold(0.0, f64::max);
+        let all: Vec<usize> = (0..carried.len()).collect();
+        let carried_worst = worst(&all);
+        if carried_worst <= limit {
+            let name = group.name();
+            return Ok(Self { name, members: all, lost: Vec::new(), carried_kept: carried_worst, carried_worst });
+        }
         let mut order: Vec<usize> = (1..carried.len()).filter(|&element| carried[element] <= limit).collect();
         order.sort_by(|&a, &b| carried[a].total_cmp(&carried[b]).then(a.cmp(&b)));
         let mut inside = vec![false; carried.len()];
@@ -41,13 +53,13 @@ impl Kept {
             }
         }
         let members: Vec<usize> = (0..carried.len()).filter(|&element| inside[element]).collect();
-        let worst = |elements: &[usize]| elements.iter().map(|&element| carried[element]).fold(0.0, f64::max);
-        Self {
+        Ok(Self {
+            name: subgroup_name(group, &members)?,
             lost: (0..carried.len()).filter(|&element| !inside[element]).collect(),
             carried_kept: worst(&members[1..]),
-            carried_worst: carried.iter().copied().fold(0.0, f64::max),
+            carried_worst,
             members,
-        }
+        })
     }
 
     /// Whether every operation is kept.

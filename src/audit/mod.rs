@@ -132,7 +132,7 @@ pub fn audit(
     let electrons = Electrons::of(molecule, &labelled)?;
     let labelled = axis::adapted(molecule, labelled, &electrons, thresholds, limits)?;
     let densities = density::densities(&electrons, &labelled);
-    let kept = kept_groups(&labelled.symmetry, &densities, limits);
+    let kept = kept_groups(&labelled.symmetry, &densities, limits)?;
     let identity = densities.products[0];
     let swaps = kept
         .alpha
@@ -174,17 +174,17 @@ fn electrons_carried(here: f64, whole: f64) -> f64 {
 ///
 /// With A = D − RDR⁻¹ the electrons carried are half the sum of |eigenvalues| of A, which is at least the sum of their
 /// squares over twice the largest possible one: 1 for one spin, 2 for both together and for their difference.
-fn kept_groups(symmetry: &Symmetry, densities: &Densities, limits: &Limits) -> KeptGroups {
+fn kept_groups(symmetry: &Symmetry, densities: &Densities, limits: &Limits) -> Result<KeptGroups, LabelError> {
     let identity = densities.products[0];
     let kept = |value: fn(&Products) -> f64, share: f64| {
         let carried: Vec<f64> =
             densities.products.iter().map(|here| share * electrons_carried(value(here), value(&identity))).collect();
         Kept::of(&symmetry.group, &carried, limits.carried)
     };
-    KeptGroups {
-        total: kept(|here| here.total(), 0.5),
-        alpha: kept(|here| here.aa, 1.0),
-        beta: kept(|here| here.bb, 1.0),
-        spin: kept(|here| here.spin(), 0.5),
-    }
+    Ok(KeptGroups {
+        total: kept(|here| here.total(), 0.5)?,
+        alpha: kept(|here| here.aa, 1.0)?,
+        beta: kept(|here| here.bb, 1.0)?,
+        spin: kept(|here| here.spin(), 0.5)?,
+    })
 }

@@ -3,6 +3,7 @@
 //! Only this layer touches files, the terminal and threads.
 
 pub mod arguments;
+mod audit;
 mod input;
 mod output;
 mod states;
@@ -22,6 +23,8 @@ use thiserror::Error;
 pub enum Status {
     /// The result stands.
     Done = 0,
+    /// `audit` found broken symmetry.
+    Broken = 1,
     /// Wrong usage.
     Usage = 2,
     /// The input cannot be read or is inconsistent.
@@ -105,6 +108,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Geometry(geometry) => verbs::geometry(geometry, out, errors),
         Verb::Table(table) => verbs::table(table, out),
         Verb::States(arguments) => states::states(arguments, out, errors),
+        Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

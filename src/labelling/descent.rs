@@ -3,7 +3,9 @@
 //! Not here: which subgroup is wanted (`labelling::placement`, `audit`).
 
 use super::{LabelError, weights};
-use crate::group::{Detection, GroupName, PointGroup, Rung, Site, SiteOperation, Subgroup, Symmetry, standard_frames};
+use crate::group::{
+    Detection, GroupError, GroupName, PointGroup, Rung, Site, SiteOperation, Subgroup, Symmetry, standard_frames,
+};
 use nalgebra::{Matrix3, Vector3};
 use ndarray::{Array2, ArrayView2, Axis};
 
@@ -34,9 +36,7 @@ impl Descent {
     ) -> Result<Self, LabelError> {
         let group = &symmetry.group;
         let matrices: Vec<Matrix3<f64>> = members.iter().map(|&member| symmetry.matrix(member)).collect();
-        let (name, _) = standard_frames(&matrices)?;
-        let whole_axis = group.is_continuous() && name == GroupName::Cnv(LINEAR_TURNS);
-        let name = if whole_axis { GroupName::Cinfv } else { name };
+        let name = subgroup_name(group, members)?;
         let operations = members
             .iter()
             .zip(&matrices)
@@ -72,6 +72,18 @@ impl Descent {
     pub fn correlation_text(&self, irrep: usize) -> String {
         sum_of_irreps(&self.subgroup.group, &self.correlation[irrep])
     }
+}
+
+/// The point group that these elements make.
+///
+/// # Errors
+/// [`GroupError`] when they are no group.
+pub fn subgroup_name(group: &PointGroup, members: &[usize]) -> Result<GroupName, GroupError> {
+    let operations: Vec<Matrix3<f64>> =
+        members.iter().map(|&member| *group.elements()[member].operation.matrix()).collect();
+    let (name, _) = standard_frames(&operations)?;
+    let whole_axis = group.is_continuous() && name == GroupName::Cnv(LINEAR_TURNS);
+    Ok(if whole_axis { GroupName::Cinfv } else { name })
 }
 
 /// `A1g + 2Eg`.

@@ -152,6 +152,7 @@ pub fn label_document(
         sets: Some(sets),
         transitions: frontier_transitions(molecule, labelled),
         jahn_teller: Vec::new(),
+        audit: None,
         thresholds: Some(ThresholdEntry {
             purity: thresholds.purity,
             partner: thresholds.partner,
@@ -217,6 +218,7 @@ pub fn geometry_document(
         active_window: Vec::new(),
         transitions: None,
         jahn_teller: Vec::new(),
+        audit: None,
         thresholds: None,
         cautions: Vec::new(),
     }

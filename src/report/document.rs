@@ -41,6 +41,9 @@ pub struct Document {
     /// Degenerate sets and the vibrations that split them when part-filled.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub jahn_teller: Vec<super::transitions::JahnTellerEntry>,
+    /// Whether the wavefunction keeps the symmetry, where it was asked.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub audit: Option<super::audit::AuditEntry>,
     /// Limits that decided the labels.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub thresholds: Option<ThresholdEntry>,

@@ -2,6 +2,8 @@
 //!
 //! Only this layer knows JSON keys, electronvolts and ångströms.
 
+pub mod audit;
+pub mod audit_text;
 pub mod build;
 pub mod csv;
 pub mod document;
