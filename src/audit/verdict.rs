@@ -107,7 +107,7 @@ impl Audit {
     pub fn verdict(&self) -> Verdict {
         if !self.is_invariant() {
             Verdict::Broken
-        } else if self.mixed.iter().any(|mixed| !mixed.at_one_energy) {
+        } else if self.mixed.iter().any(|mixed| !mixed.is_harmless()) {
             Verdict::Mixed
         } else if !self.mixed.is_empty() || self.turned_partners > 0 {
             Verdict::Rotated
@@ -119,17 +119,19 @@ impl Audit {
     /// Likely origins, the most telling first; empty for intact and rotated ones.
     #[must_use]
     pub fn origins(&self, labelled: &Labelled) -> Vec<Origin> {
-        match self.verdict() {
-            Verdict::Intact | Verdict::Rotated => return Vec::new(),
-            Verdict::Mixed => return vec![Origin::Orbitals],
-            Verdict::Broken => {}
-        }
         let mut origins: Vec<Origin> = Vec::new();
         let exact = &labelled.detection.ladder[0];
-        let group = &labelled.symmetry.group;
-        let lower = !exact.name.is_continuous() && exact.operations.len() < group.order();
+        let lower = !exact.name.is_continuous() && exact.operations.len() < labelled.symmetry.group.order();
         if lower && self.kept_by_all().members.len() >= exact.operations.len() {
             origins.push(Origin::Geometry { nuclei: exact.name });
+        }
+        match self.verdict() {
+            Verdict::Intact | Verdict::Rotated => return Vec::new(),
+            Verdict::Mixed if origins.is_empty() || self.mixed.iter().any(|mixed| mixed.localised) => {
+                return vec![Origin::Orbitals];
+            }
+            Verdict::Mixed => return origins,
+            Verdict::Broken => {}
         }
         origins.extend(self.open_shells.iter().map(|shell| Origin::OpenShell(*shell)));
         if self.kept.total.is_whole() {

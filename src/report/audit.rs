@@ -98,8 +98,10 @@ pub struct MixedEntry {
     pub energy_hartree: Option<f64>,
     /// It holds electrons.
     pub occupied: bool,
-    /// Operations keep it among orbitals of its own energy: nothing is lost.
+    /// Operations keep it among orbitals of its own energy.
     pub at_one_energy: bool,
+    /// Every operation carries it onto itself or one other that shares atoms with it.
+    pub localised: bool,
     /// Largest first.
     pub weights: Vec<Weight>,
 }
@@ -294,6 +296,7 @@ fn mixed(molecule: &Molecule, labelled: &Labelled, audit: &Audit) -> Vec<MixedEn
             energy_hartree: set.orbitals[mixed.orbital].energy,
             occupied: mixed.occupied,
             at_one_energy: mixed.at_one_energy,
+            localised: mixed.localised,
             weights: label.weights.iter().map(weight).collect(),
         }
     };
@@ -364,11 +367,14 @@ fn summary(labelled: &Labelled, audit: &Audit) -> String {
             format!("rotated: {invariant}; {}, which loses nothing", parts.join(" and "))
         }
         Verdict::Mixed => {
-            let at_several = audit.mixed.iter().filter(|mixed| !mixed.at_one_energy).count();
-            let filled = audit.mixed.iter().filter(|mixed| !mixed.at_one_energy && mixed.occupied).count();
-            format!(
-                "mixed: {invariant}, but {at_several} orbitals ({filled} with electrons) mix irreps at different energies"
-            )
+            let harmful: Vec<_> = audit.mixed.iter().filter(|mixed| !mixed.is_harmless()).collect();
+            let filled = harmful.iter().filter(|mixed| mixed.occupied).count();
+            let how = if harmful.iter().all(|mixed| mixed.localised) {
+                "are localised"
+            } else {
+                "mix irreps at different energies"
+            };
+            format!("mixed: {invariant}, but {} orbitals ({filled} with electrons) {how}", harmful.len())
         }
         Verdict::Broken => {
             let kept = &audit.kept;

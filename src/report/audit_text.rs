@@ -55,7 +55,12 @@ fn densities(audit: &AuditEntry) -> String {
         ("beta", &kept.beta_density),
         ("spin", &kept.spin_density),
     ];
-    let parts: Vec<String> = names.iter().map(|(density, name)| format!("{density} {}", pretty(name))).collect();
+    let spin_is_there = audit.retention.first().is_some_and(|row| row.spin.is_some());
+    let parts: Vec<String> = names
+        .iter()
+        .filter(|(density, _)| *density != "spin" || spin_is_there)
+        .map(|(density, name)| format!("{density} {}", pretty(name)))
+        .collect();
     head(&mut out, "Kept", &parts.join(", "));
     if let Some(subgroup) = &audit.subgroup {
         head(&mut out, "", &format!("{} of all densities: {}", pretty(&subgroup.point_group), subgroup.placed));
@@ -63,14 +68,36 @@ fn densities(audit: &AuditEntry) -> String {
     if audit.operations_lost.is_empty() {
         return out;
     }
-    let lost: Vec<String> = audit.operations_lost.iter().map(|symbol| pretty(symbol)).collect();
+    let lost: Vec<String> = if document_is_linear(audit) {
+        families(&audit.operations_lost)
+    } else {
+        audit.operations_lost.iter().map(|symbol| pretty(symbol)).collect()
+    };
     let text = if lost.len() > 2 * SHOWN {
         format!("{}, … ({} of {})", lost[..2 * SHOWN].join(", "), lost.len(), audit.retention.len())
     } else {
-        format!("{} ({} of {})", lost.join(", "), lost.len(), audit.retention.len())
+        format!("{} ({} of {})", lost.join(", "), audit.operations_lost.len(), audit.retention.len())
     };
     head(&mut out, "Lost", &text);
     out
+}
+
+/// Operations of a linear group are a sample of infinitely many.
+fn document_is_linear(audit: &AuditEntry) -> bool {
+    audit.retention.iter().any(|row| row.operation == "C(phi)")
+}
+
+/// Symbols without their angles and running numbers, each once.
+fn families(symbols: &[String]) -> Vec<String> {
+    let mut found: Vec<String> = Vec::new();
+    for symbol in symbols {
+        let family = pretty(symbol.split('(').next().unwrap_or(symbol));
+        let family = if symbol.contains("phi)") { format!("{family}(φ)") } else { family };
+        if !found.contains(&family) {
+            found.push(family);
+        }
+    }
+    found
 }
 
 fn atoms(pair: &PairEntry) -> String {
@@ -186,7 +213,12 @@ fn mixed(audit: &AuditEntry, all: bool) -> String {
             entry.energy_hartree.map_or(String::new(), |energy| format!("{:.3}", energy * EV_PER_HARTREE)),
             if entry.occupied { "filled" } else { "empty" }.to_owned(),
             weights.join(", "),
-            if entry.at_one_energy { "at one energy: harmless" } else { "" }.to_owned(),
+            match (entry.localised, entry.at_one_energy) {
+                (true, _) => "localised",
+                (false, true) => "at one energy: harmless",
+                (false, false) => "",
+            }
+            .to_owned(),
         ]);
     }
     push_table(&mut out, &printed);
