@@ -59,6 +59,20 @@ pub enum Format {
     Csv,
 }
 
+/// Which group the labels are in.
+#[derive(Debug, Args)]
+pub struct Placing {
+    /// Label in this point group, a parent or a subgroup of that of the nuclei
+    #[arg(long, value_name = "SCHOENFLIES")]
+    pub group: Option<String>,
+    /// Only these atoms define the symmetry: elements, numbers, ranges, `shell 1 around Fe`, such as "Co,N"
+    #[arg(long, value_name = "ATOMS")]
+    pub frame: Option<String>,
+    /// Of several orientations of a subgroup, take this one
+    #[arg(long, value_name = "N", default_value_t = 1)]
+    pub orientation: usize,
+}
+
 /// `label`.
 #[derive(Debug, Args)]
 pub struct Label {
@@ -85,6 +99,9 @@ pub struct Label {
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
@@ -180,6 +197,9 @@ pub struct Audit {
     /// Show every operation and orbital
     #[arg(long)]
     pub all: bool,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
@@ -208,6 +228,9 @@ pub struct Transitions {
     /// Distance a nucleus may lie from its symmetric place, Å
     #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
     pub tolerance: f64,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

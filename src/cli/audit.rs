@@ -1,6 +1,7 @@
 //! The verb `audit`: label, judge, deliver, and say the verdict by the exit status.
 
 use super::arguments::{Audit, Format};
+use super::placing::choice;
 use super::verbs::{json, read};
 use super::{CliError, Status, input, output, use_threads};
 use crate::audit::verdict::Verdict;
@@ -27,7 +28,8 @@ pub fn audit(arguments: &Audit, out: &mut dyn Write, errors: &mut dyn Write) -> 
         magnetic: arguments.magnetic,
         degeneracy_hartree: arguments.degeneracy,
     };
-    let labelled = labelling::label(&mut molecule, &thresholds)
+    let placed = choice(&arguments.placing, &molecule)?;
+    let labelled = labelling::label_in(&mut molecule, &thresholds, &placed)
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let (labelled, found) = audit::audit(&molecule, labelled, &thresholds, &limits).map_err(|error| match error {
         AuditError::Label(source) => CliError::Label { path: path.clone(), source },

@@ -6,6 +6,7 @@ pub mod arguments;
 mod audit;
 mod input;
 mod output;
+mod placing;
 mod states;
 mod transitions;
 mod verbs;
@@ -82,6 +83,7 @@ impl CliError {
         match self {
             Self::Usage(_) => Status::Usage,
             Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
+            Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
             Self::Write { source, .. } if source.kind() == io::ErrorKind::BrokenPipe => Status::Done,
             Self::Read { .. } | Self::Write { .. } | Self::Input { .. } | Self::Label { .. } => Status::BadInput,
         }

@@ -1,6 +1,7 @@
 //! One function a verb: open, call the layers below, deliver.
 
 use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::placing::choice;
 use super::{CliError, Status, draw, input, output, use_threads};
 use crate::diagnostic::Diagnostic;
 use crate::labelling::placement::{self, Choice, Placement};
@@ -50,7 +51,8 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
         ..Thresholds::STANDARD
     };
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
-    let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
+    let choice = choice(&arguments.placing, &molecule)?;
+    let labelled = labelling::label_in(&mut molecule, &thresholds, &choice).map_err(failed)?;
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
     let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     let name = path.display().to_string();

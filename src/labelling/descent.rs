@@ -4,7 +4,8 @@
 
 use super::{LabelError, weights};
 use crate::group::{
-    Detection, GroupError, GroupName, PointGroup, Rung, Site, SiteOperation, Subgroup, Symmetry, standard_frames,
+    Detection, GroupError, GroupName, IrrepName, PointGroup, Rung, Site, SiteOperation, Subgroup, Symmetry,
+    standard_frames,
 };
 use nalgebra::{Matrix3, Vector3};
 use ndarray::{Array2, ArrayView2, Axis};
@@ -19,6 +20,8 @@ pub struct Descent {
     pub symmetry: Symmetry,
     /// The same seen from the group above: embedding, axes in its frame, words.
     pub subgroup: Subgroup,
+    /// Names of the irreps of the group above.
+    pub parent_irreps: Vec<IrrepName>,
     /// For each irrep of the group above what it becomes: (irrep below, how often).
     pub correlation: Vec<Vec<(usize, usize)>>,
 }
@@ -58,7 +61,8 @@ impl Descent {
         let subgroup = group.embed(placed.group.clone(), members, axes)?;
         let correlation =
             (0..group.irreps().len()).map(|irrep| group.subduce(&subgroup, irrep)).collect::<Result<_, _>>()?;
-        Ok(Self { symmetry: placed, subgroup, correlation })
+        let parent_irreps = group.irreps().iter().map(|irrep| irrep.name).collect();
+        Ok(Self { symmetry: placed, subgroup, parent_irreps, correlation })
     }
 
     /// Weights of the subgroup's irreps from ⟨i|R|i⟩ over the group above: n_orbitals × n_irreps.
@@ -96,16 +100,23 @@ pub fn sum_of_irreps(group: &PointGroup, sum: &[(usize, usize)]) -> String {
     sum.iter().map(term).collect::<Vec<_>>().join(" + ")
 }
 
+/// A site that an operation takes farther from its place than this (bohr) is truly turned, not permuted.
+const PERMUTED: f64 = 1.0;
+
 /// Where the sites lie on average over the group, about its centre; sites that it carries nowhere stay.
 fn symmetrised(symmetry: &Symmetry, sites: &[Site]) -> Vec<Vector3<f64>> {
     let about = |site: usize| sites[site].position - symmetry.frame.centre;
     let order = symmetry.permutations.len() as f64;
     (0..sites.len())
         .map(|site| {
-            let images = symmetry.permutations.iter().enumerate();
-            images
-                .map(|(element, permutation)| symmetry.matrix(element).tr_mul(&about(permutation[site])) / order)
-                .sum()
+            let images: Vec<Vector3<f64>> = symmetry
+                .permutations
+                .iter()
+                .enumerate()
+                .map(|(element, permutation)| symmetry.matrix(element).tr_mul(&about(permutation[site])))
+                .collect();
+            let stays = images.iter().any(|image| (image - about(site)).norm() > PERMUTED);
+            if stays { about(site) } else { images.iter().sum::<Vector3<f64>>() / order }
         })
         .collect()
 }

@@ -95,6 +95,9 @@ pub struct Geometry {
     pub other_settings: Vec<SettingEntry>,
     /// Groups near the nuclei, lowest first.
     pub ladder: Vec<RungEntry>,
+    /// How the group came about, where it is not simply that of the nuclei.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub placement: Option<super::placement::PlacementEntry>,
     /// What to know before trusting the group.
     pub warnings: Vec<String>,
 }
