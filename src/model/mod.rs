@@ -5,9 +5,10 @@
 //! coefficients stand exactly as the file gives them.
 
 pub mod elements;
+pub mod masses;
 mod molden;
 
-pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};
+pub use molden::{Reading, looks_like_molden, named_atom, read_molden, read_xyz, write_labels};
 
 use crate::diagnostic::Span;
 use nalgebra::Point3;

@@ -82,7 +82,9 @@ fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecu
     (!findings.any_error()).then_some(molecule)
 }
 
-fn named_atom(name: &str, position: [f64; 3]) -> Atom {
+/// An atom known by its name alone; a ghost where the name means no element. Position in bohr.
+#[must_use]
+pub fn named_atom(name: &str, position: [f64; 3]) -> Atom {
     let element = elements::atomic_number(name);
     Atom {
         name: name.to_owned(),

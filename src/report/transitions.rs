@@ -6,8 +6,8 @@ use super::build::set_label;
 use super::rule::{self, AXES, ROTATIONS};
 use crate::group::PointGroup;
 use crate::labelling::Labelled;
-use crate::model::{ANGSTROM_PER_BOHR, Molecule, Spin};
-use crate::modes::{self, Motion};
+use crate::model::{ANGSTROM_PER_BOHR, Atom, Molecule, Spin};
+use crate::modes::{self, Kind, ModeThresholds, Motion, assignment};
 use crate::selection::agreement::{self, Cause, Finding, Operator};
 use crate::selection::rules::QUADRATIC;
 use crate::selection::states::{self, Ground};
@@ -209,13 +209,30 @@ pub const CAUTIONS: [&str; 3] = [
      rotational and quadrupole strengths refer to the centre of the group",
 ];
 
+/// The file's vibrations by irrep, where its displacements belong to the geometry of the orbitals.
+fn file_modes(molecule: &Molecule, labelled: &Labelled) -> Vec<(usize, ModeReference)> {
+    const SAME_PLACE_BOHR: f64 = 0.02;
+    let Some(vibrations) = &molecule.vibrations else { return Vec::new() };
+    let atoms = assignment::atoms_of_modes(&molecule.atoms, vibrations);
+    let in_place = |(a, b): (&Atom, &Atom)| (a.position - b.position).norm() < SAME_PLACE_BOHR;
+    if atoms.len() != molecule.atoms.len() || !atoms.iter().zip(&molecule.atoms).all(in_place) {
+        return Vec::new();
+    }
+    let assigned = modes::assign(&atoms, vibrations, &labelled.symmetry, &ModeThresholds::STANDARD);
+    let of_mode = |(at, label): (usize, &assignment::ModeLabel)| {
+        let irrep = label.irrep.filter(|_| label.kind == Kind::Vibration)?;
+        Some((irrep, ModeReference { mode: at + 1, wavenumber_per_cm: vibrations.modes[at].wavenumber }))
+    };
+    assigned.modes.iter().enumerate().filter_map(of_mode).collect()
+}
+
 impl<'a> Context<'a> {
     /// Works out operators and vibrations of the molecule.
     #[must_use]
     pub fn new(molecule: &'a Molecule, labelled: &'a Labelled) -> Self {
         let operators = Operators::new(&labelled.symmetry.group);
         let motion = modes::motion(&molecule.atoms, &labelled.symmetry).ok();
-        Self { molecule, labelled, operators, motion, modes: Vec::new() }
+        Self { molecule, labelled, operators, motion, modes: file_modes(molecule, labelled) }
     }
 }
 

@@ -14,6 +14,9 @@ use std::fmt::Write as _;
 /// Columns of a line below the table.
 const WIDTH: usize = 106;
 
+/// Triplets of so many pairs are told; the rest is in the JSON output.
+const TRIPLETS_OF: usize = 2;
+
 /// The whole report of `transitions`.
 #[must_use]
 pub fn transitions_text(document: &Document) -> String {
@@ -67,24 +70,27 @@ fn verdict(allowed: Option<bool>, components: &[&str]) -> String {
 fn answer(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
     let told = |entry: &TransitionEntry| {
-        let f = entry.electric_dipole.oscillator_strength.map_or(String::new(), |f| format!("  f ≈ {f:.3}"));
-        let pol = verdict(entry.electric_dipole.allowed, &entry.electric_dipole.polarisation);
-        format!("{}  {} eV  {}  {}{f}", arrow(entry), electronvolts(entry), product(entry), pol)
+        let f = entry.electric_dipole.oscillator_strength.map_or(String::new(), |f| format!(" · f ≈ {}", strength(f)));
+        let dipole = match entry.electric_dipole.allowed {
+            Some(true) => format!("allowed along {}", listed(&entry.electric_dipole.polarisation)),
+            other => verdict(other, &[]),
+        };
+        format!("{} · {} eV · {} · {dipole}{f}", arrow(entry), electronvolts(entry), product(entry))
     };
-    if let Some(entry) = entries.iter().find(|entry| entry.strongest) {
-        head(&mut out, "Strongest", &format!("{} (one-electron estimate)", told(entry)));
-    }
-    if let Some(entry) = entries.first() {
-        head(&mut out, "Lowest gap", &told(entry));
-    }
-    if let Some(entry) = entries.iter().find(|entry| entry.electric_dipole.allowed == Some(true)) {
-        head(&mut out, "First allowed", &told(entry));
+    let strongest = entries.iter().position(|entry| entry.strongest);
+    let first_allowed = entries.iter().position(|entry| entry.electric_dipole.allowed == Some(true));
+    let named = [("Strongest", strongest), ("First allowed", first_allowed), ("Lowest gap", Some(0))];
+    for (at, &(name, place)) in named.iter().enumerate() {
+        let Some(entry) = place.and_then(|place| entries.get(place)) else { continue };
+        if named[..at].iter().all(|(_, before)| *before != place) {
+            head(&mut out, name, &told(entry));
+        }
     }
     let allowed = entries.iter().filter(|entry| entry.electric_dipole.allowed == Some(true)).count();
     head(&mut out, "Pairs", &format!("{} listed, {allowed} allowed by electric dipole", entries.len()));
     if let Some(states) = entries.iter().find_map(|entry| entry.states.as_ref()) {
         let ground: Vec<String> = states.ground.iter().map(|name| pretty(name)).collect();
-        head(&mut out, "Ground", &format!("{} from {}", ground.join(" + "), pretty(&states.ground_from)));
+        head(&mut out, "Ground", &format!("{} ({})", ground.join(" + "), pretty(&states.ground_from)));
     } else {
         head(
             &mut out,
@@ -219,12 +225,12 @@ fn vibronic(entries: &[TransitionEntry]) -> String {
 fn triplets(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
     let mut told: Vec<&str> = Vec::new();
-    for triplet in entries.iter().flat_map(|entry| &entry.triplets) {
+    for triplet in entries.iter().take(TRIPLETS_OF).flat_map(|entry| &entry.triplets) {
         if told.contains(&triplet.irrep.as_str()) {
             continue;
         }
         if told.is_empty() {
-            out.push_str("\nTriplets: sublevels, each mixing by spin–orbit coupling with singlets of its own irrep\n");
+            out.push_str("\nTriplets of the lowest pairs: sublevels, each mixing by spin–orbit coupling with singlets of its own irrep\n");
         }
         told.push(&triplet.irrep);
         let sublevels: Vec<String> = triplet
