@@ -9,6 +9,7 @@ pub mod diagnostic;
 pub mod grammar;
 pub mod model;
 pub mod group;
+pub mod states;
 pub mod wavefunction;
 pub mod labelling;
 pub mod selection;

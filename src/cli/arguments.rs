@@ -22,6 +22,8 @@ pub enum Verb {
     Geometry(Geometry),
     /// Operations, classes, characters, functions, products and descent of a point group
     Table(Table),
+    /// Terms of an electron configuration, spin–orbit components, rules between states, Jahn–Teller modes
+    States(States),
     /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
     Transitions(Transitions),
     /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
@@ -105,9 +107,47 @@ pub struct Geometry {
 pub struct Table {
     /// Point group, such as D5d, Oh, C12v, Dinfh
     pub group: String,
+    /// The double group instead: irreps of half-integer spin in both notations, splitting of J levels
+    #[arg(long)]
+    pub double: bool,
     /// Only the selection rules between two irreps, such as --transition t2g eg
     #[arg(long, num_args = 2, value_names = ["FROM", "TO"])]
     pub transition: Option<Vec<String>>,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `states`.
+#[derive(Debug, Args)]
+pub struct States {
+    /// Point group, such as Oh, Dinfh or Kh (an atom); or a Molden-format file, `-` for standard input
+    #[arg(value_name = "GROUP|FILE")]
+    pub target: String,
+    /// Electron configuration: orbital symbols with numbers of electrons, such as "t2g^3 eg^1" or "4f^7"; a free ion's shell such as
+    /// d^3 is brought from free ion to strong field. Without one the target's occupations are read
+    pub configuration: Option<String>,
+    /// Show the spin–orbit components of every term
+    #[arg(long)]
+    pub spin_orbit: bool,
+    /// Show which transitions between the terms are allowed
+    #[arg(long)]
+    pub transitions: bool,
+    /// Show which transitions to the terms of this configuration are allowed
+    #[arg(long, value_name = "CONFIGURATION")]
+    pub to: Option<String>,
+    /// How levels of these J split, such as 5/2,7/2; u at the end for odd states
+    #[arg(long, value_name = "J,…", value_delimiter = ',')]
+    pub level: Vec<String>,
+    /// How terms of a free ion split, such as 4F,4P; u at the end for odd terms
+    #[arg(long, value_name = "TERM,…", value_delimiter = ',')]
+    pub term: Vec<String>,
+    /// Of a file: distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// Of a file: energies this near count as one, hartree
+    #[arg(long, value_name = "HARTREE", default_value_t = 1e-3, value_parser = positive)]
+    pub degeneracy: f64,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

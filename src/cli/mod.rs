@@ -6,6 +6,7 @@ pub mod arguments;
 mod input;
 mod modes;
 mod output;
+mod states;
 mod transitions;
 mod verbs;
 
@@ -105,6 +106,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Geometry(geometry) => verbs::geometry(geometry, out, errors),
         Verb::Table(table) => verbs::table(table, out),
         Verb::Modes(arguments) => modes::modes(arguments, out, errors),
+        Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

@@ -83,6 +83,9 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
 
 pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
+    if arguments.double {
+        return super::states::double_table(arguments, out);
+    }
     if let Some([from, to]) = arguments.transition.as_deref() {
         let document = rule::build(&arguments.group, from, to).map_err(|error| CliError::Usage(error.to_string()))?;
         let printed = match arguments.common.format {

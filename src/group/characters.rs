@@ -106,7 +106,7 @@ fn rows(
     eigenvectors: &DMatrix<Complex<f64>>,
 ) -> Result<Vec<ComplexIrrep>, GroupError> {
     let order = group.order() as f64;
-    let powers: Vec<Powers> = classes.iter().map(|class| Powers::of(class[0], group, class_of)).collect();
+    let cyclic = Cyclic::covering(group, classes, class_of);
     let mut irreps = Vec::with_capacity(classes.len());
     for vector in eigenvectors.column_iter() {
         let phase = vector[0].conj() / vector[0].norm();
@@ -115,7 +115,10 @@ fn rows(
             .zip(classes)
             .map(|(entry, class)| entry * phase * (order / class.len() as f64).sqrt() / vector.norm())
             .collect();
-        let characters = powers.iter().map(|powers| powers.exact(&rough)).collect::<Result<Vec<_>, _>>()?;
+        let mut characters = vec![Complex::new(f64::NAN, 0.0); classes.len()];
+        for cyclic in &cyclic {
+            cyclic.fill(&rough, &mut characters)?;
+        }
         irreps.push(characters);
     }
     check_orthogonality(&irreps, classes, order)?;
@@ -136,34 +139,57 @@ fn rows(
         .collect()
 }
 
-/// The powers of an element as classes, and the roots of unity that its eigenvalues are among.
-struct Powers {
-    classes: Vec<usize>,
+/// The powers of one element: their classes, and the roots of unity that their eigenvalues are among.
+struct Cyclic {
+    /// Class of each power.
+    powers: Vec<usize>,
     roots: Vec<Complex<f64>>,
+    /// (class, a power in it) for the classes that are taken from this element.
+    taken: Vec<(usize, usize)>,
 }
 
-impl Powers {
-    fn of(element: usize, group: &Multiplication, class_of: &[usize]) -> Self {
-        let classes: Vec<usize> = group.powers(element).into_iter().map(|power| class_of[power]).collect();
-        let period = i64::try_from(classes.len()).unwrap_or(i64::MAX);
-        let roots = (0..period).map(|k| Complex::new(cos_turn(k, period), sin_turn(k, period))).collect();
-        Self { classes, roots }
-    }
-
-    /// The character of the element from those of its powers: the whole multiplicities of its eigenvalues.
-    fn exact(&self, rough: &[Complex<f64>]) -> Result<Complex<f64>, GroupError> {
-        let period = self.classes.len();
-        let mut sum = Complex::new(0.0, 0.0);
-        for (k, root) in self.roots.iter().enumerate() {
-            let terms = self
-                .classes
+impl Cyclic {
+    /// A few elements whose powers meet every class, those of highest order first: each class is taken from one of them.
+    fn covering(group: &Multiplication, classes: &[Vec<usize>], class_of: &[usize]) -> Vec<Self> {
+        let mut powers: Vec<Vec<usize>> = classes
+            .iter()
+            .map(|class| group.powers(class[0]).into_iter().map(|power| class_of[power]).collect())
+            .collect();
+        powers.sort_by_key(|powers| std::cmp::Reverse(powers.len()));
+        let mut open = vec![true; classes.len()];
+        let mut found = Vec::new();
+        for powers in powers {
+            let taken: Vec<(usize, usize)> = powers
                 .iter()
                 .enumerate()
-                .map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
-            let count = whole(terms.sum::<f64>() / period as f64, "whole multiplicities of eigenvalues")?;
-            sum += root * count as f64;
+                .filter(|(_, class)| std::mem::replace(&mut open[**class], false))
+                .map(|(power, &class)| (class, power))
+                .collect();
+            if !taken.is_empty() {
+                let period = i64::try_from(powers.len()).unwrap_or(i64::MAX);
+                let roots = (0..period).map(|k| Complex::new(cos_turn(k, period), sin_turn(k, period))).collect();
+                found.push(Self { powers, roots, taken });
+            }
         }
-        Ok(sum)
+        found
+    }
+
+    /// The characters of the classes taken here: sums of roots of unity by the whole multiplicities of the element's eigenvalues.
+    fn fill(&self, rough: &[Complex<f64>], characters: &mut [Complex<f64>]) -> Result<(), GroupError> {
+        let period = self.powers.len();
+        let mut eigenvalues = Vec::new();
+        for k in 0..period {
+            let terms =
+                self.powers.iter().enumerate().map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
+            let count = whole(terms.sum::<f64>() / period as f64, "whole multiplicities of eigenvalues")?;
+            if count > 0 {
+                eigenvalues.push((k, count as f64));
+            }
+        }
+        for &(class, power) in &self.taken {
+            characters[class] = eigenvalues.iter().map(|&(k, count)| self.roots[k * power % period] * count).sum();
+        }
+        Ok(())
     }
 }
 

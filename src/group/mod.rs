@@ -4,9 +4,12 @@
 
 mod arrangement;
 mod atomic;
+mod character_table;
 pub mod characters;
-mod elements;
+pub mod double;
+pub mod double_name;
 pub mod detect;
+mod elements;
 pub mod error;
 mod exact;
 mod fit;
@@ -17,7 +20,7 @@ pub mod identify;
 pub mod irrep_name;
 mod ladder;
 mod linear;
-pub mod matching;
+mod matching;
 mod matrices;
 mod mulliken;
 pub mod multiplication;
@@ -31,6 +34,8 @@ pub mod symbols;
 pub mod symmetry;
 
 pub use detect::{DetectError, DetectSettings, Detection, Rung, detect};
+pub use double::{DoubleClass, DoubleGroup, DoubleIrrep, Kramers};
+pub use double_name::DoubleName;
 pub use error::GroupError;
 pub use exact::exact_character;
 pub use identify::{identify, standard_frames};

@@ -1,17 +1,63 @@
 //! Sums, products and squares of representations, and the irreps of x, y, z, of rotations and of products of two coordinates.
 
 use super::atomic::HIGHEST_L;
+use super::character_table::{self, CharacterTable, Row};
 use super::elements::LINEAR_AXIS_ORDER;
 use super::error::GroupError;
-use super::functions::Space;
+use super::functions::{Space, harmonic_character};
 use super::irrep_name::{IrrepName, Parity};
-use super::point_group::{Class, PointGroup};
+use super::operation::axis_angle;
+use super::point_group::{Class, Irrep, PointGroup};
 
-/// How far a multiplicity may lie from a whole number.
-pub const WHOLE: f64 = 1e-6;
+pub use super::character_table::{Decomposition, WHOLE};
 
-/// Irreps by index, each with how often it occurs; ascending.
-pub type Decomposition = Vec<(usize, usize)>;
+impl CharacterTable for PointGroup {
+    fn title(&self) -> String {
+        self.name().to_string()
+    }
+
+    fn n_classes(&self) -> usize {
+        self.classes().len()
+    }
+
+    fn weight(&self, class: usize) -> f64 {
+        self.classes()[class].weight
+    }
+
+    fn n_irreps(&self) -> usize {
+        self.irreps().len()
+    }
+
+    fn irrep_name(&self, irrep: usize) -> String {
+        self.irreps()[irrep].name.to_string()
+    }
+
+    fn row(&self, irrep: usize) -> Row<'_> {
+        let Irrep { dimension, constituents, ref characters, .. } = self.irreps()[irrep];
+        Row { dimension, constituents, characters }
+    }
+
+    fn character_of_power(&self, irrep: usize, class: usize, k: usize) -> f64 {
+        let irrep = &self.irreps()[irrep];
+        if let IrrepName::Atomic { l, parity } = irrep.name {
+            // Classes of the quadrature have no elements: the angle tells.
+            let (angle, proper) = self.angle(class);
+            let sign = if proper || parity == Parity::Even || k % 2 == 0 { 1.0 } else { -1.0 };
+            return sign * harmonic_character(usize::from(l), angle * k as f64);
+        }
+        let member = self.classes()[class].members.first().copied().unwrap_or(0);
+        let power = (0..k).fold(0, |power, _| self.multiply(member, power));
+        irrep.characters[self.elements()[power].class_idx]
+    }
+
+    fn reach(&self, irrep: usize) -> Option<(u32, u32)> {
+        match self.irreps()[irrep].name {
+            IrrepName::Linear { m, .. } => Some((2 * u32::from(m), LINEAR_AXIS_ORDER - 2)),
+            IrrepName::Atomic { l, .. } => Some((2 * u32::from(l), 2 * u32::from(HIGHEST_L))),
+            IrrepName::Mulliken { .. } => None,
+        }
+    }
+}
 
 impl PointGroup {
     /// How often each irrep occurs in a representation: (irrep, multiplicity), only those that occur.
@@ -21,34 +67,8 @@ impl PointGroup {
     /// # Errors
     /// [`GroupError::ClassCount`]; [`GroupError::NotWhole`] when a multiplicity is no whole number; [`GroupError::Incomplete`] when
     /// the irreps found do not make up the dimension, as with |m| > 12 in linear groups.
-    #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "a small whole number, not negative")]
     pub fn decompose(&self, characters: &[f64]) -> Result<Decomposition, GroupError> {
-        let classes = self.classes();
-        if characters.len() != classes.len() {
-            return Err(GroupError::ClassCount { found: characters.len(), expected: classes.len() });
-        }
-        let mut found = Vec::new();
-        let mut dimension = 0.0;
-        for (at, irrep) in self.irreps().iter().enumerate() {
-            let products =
-                irrep.characters.iter().zip(characters).zip(classes).map(|((a, b), class)| a * b * class.weight);
-            let multiplicity = products.sum::<f64>() / irrep.constituents as f64;
-            let nearest = multiplicity.round().max(0.0);
-            let deviation = (multiplicity - nearest).abs();
-            if deviation.is_nan() || deviation > WHOLE {
-                let irrep = irrep.name.to_string();
-                return Err(GroupError::NotWhole { irrep, multiplicity, deviation, limit: WHOLE });
-            }
-            if nearest > 0.0 {
-                dimension += nearest * irrep.dimension as f64;
-                found.push((at, nearest as usize));
-            }
-        }
-        let expected = characters.first().copied().unwrap_or(0.0);
-        if (dimension - expected).abs() > 0.5 {
-            return Err(GroupError::Incomplete { group: self.name().to_string(), found: dimension, expected });
-        }
-        Ok(found)
+        character_table::decompose(self, characters)
     }
 
     /// The irreps in a ⊗ b with multiplicities.
@@ -56,9 +76,7 @@ impl PointGroup {
     /// # Errors
     /// [`GroupError::BeyondTable`] for continuous groups where the product leaves the irreps kept.
     pub fn product(&self, a: usize, b: usize) -> Result<Decomposition, GroupError> {
-        self.check_reach(a, b)?;
-        let (a, b) = (&self.irreps()[a], &self.irreps()[b]);
-        self.decompose(&a.characters.iter().zip(&b.characters).map(|(x, y)| x * y).collect::<Vec<_>>())
+        character_table::product(self, a, b)
     }
 
     /// The irreps in the symmetric square [a²].
@@ -66,7 +84,7 @@ impl PointGroup {
     /// # Errors
     /// As [`Self::product`].
     pub fn symmetric_square(&self, a: usize) -> Result<Decomposition, GroupError> {
-        self.square(a, 1.0)
+        character_table::square(self, a, 1, 1.0)
     }
 
     /// The irreps in the antisymmetric square {a²}.
@@ -74,45 +92,24 @@ impl PointGroup {
     /// # Errors
     /// As [`Self::product`].
     pub fn antisymmetric_square(&self, a: usize) -> Result<Decomposition, GroupError> {
-        self.square(a, -1.0)
+        character_table::square(self, a, 1, -1.0)
     }
 
-    /// Characters (χ(R)² ± χ(R²))/2.
-    fn square(&self, a: usize, sign: f64) -> Result<Decomposition, GroupError> {
-        self.check_reach(a, a)?;
-        let irrep = &self.irreps()[a];
-        if let IrrepName::Atomic { l, .. } = irrep.name {
-            // L = 2l, 2l − 2, … are symmetric, the others antisymmetric; all even.
-            let wanted = |name: IrrepName| matches!(name, IrrepName::Atomic { parity: Parity::Even, l: total } if total <= 2 * l && (total % 2 == 0) == (sign > 0.0));
-            return Ok((0..self.irreps().len())
-                .filter(|&at| wanted(self.irreps()[at].name))
-                .map(|at| (at, 1))
-                .collect());
-        }
-        let squared = self.classes().iter().zip(&irrep.characters).map(|(class, character)| {
-            let square = class.members.first().map_or(0, |&member| self.multiply(member, member));
-            let of_square = irrep.characters[self.elements()[square].class_idx];
-            f64::midpoint(character * character, sign * of_square)
-        });
-        self.decompose(&squared.collect::<Vec<_>>())
+    /// Characters of the antisymmetrised powers Λ⁰, Λ¹, … of an irrep, as `[power][class]`: of electrons of one spin in its orbitals.
+    ///
+    /// # Holds
+    /// Λ^d has characters ±1 (the determinant); Λ² is [`Self::antisymmetric_square`].
+    #[must_use]
+    pub fn exterior_powers(&self, a: usize) -> Vec<Vec<f64>> {
+        character_table::exterior_powers(self, a)
     }
 
-    fn check_reach(&self, a: usize, b: usize) -> Result<(), GroupError> {
-        let (a, b) = (self.irreps()[a].name, self.irreps()[b].name);
-        let (reach, limit) = match (a, b) {
-            (IrrepName::Linear { m: a, .. }, IrrepName::Linear { m: b, .. }) => {
-                (u32::from(a) + u32::from(b), (LINEAR_AXIS_ORDER - 1) / 2)
-            }
-            (IrrepName::Atomic { l: a, .. }, IrrepName::Atomic { l: b, .. }) => {
-                (u32::from(a) + u32::from(b), u32::from(HIGHEST_L))
-            }
-            _ => return Ok(()),
-        };
-        if reach <= limit {
-            Ok(())
-        } else {
-            Err(GroupError::BeyondTable { a: a.to_string(), b: b.to_string(), reach, limit })
-        }
+    /// How often the totally symmetric irrep occurs in a product: above zero where an integral may differ from zero.
+    ///
+    /// Each factor has one character per class.
+    #[must_use]
+    pub fn mean(&self, factors: &[&[f64]]) -> f64 {
+        character_table::mean(self, factors)
     }
 
     /// Index of the totally symmetric irrep.
@@ -178,5 +175,21 @@ impl PointGroup {
         let irrep = &self.irreps()[a];
         let factor = irrep.dimension as f64 / irrep.constituents as f64 / self.order() as f64;
         self.elements().iter().map(|element| factor * irrep.characters[element.class_idx]).collect()
+    }
+
+    /// The angle (0 to π) by which the rotations of a class turn, improper ones taken times inversion, and whether they are proper.
+    #[must_use]
+    pub(super) fn angle(&self, class: usize) -> (f64, bool) {
+        if let Some(&member) = self.classes()[class].members.first() {
+            let matrix = self.elements()[member].operation.matrix();
+            let proper = matrix.determinant() > 0.0;
+            return (axis_angle(&if proper { *matrix } else { -matrix }).1, proper);
+        }
+        // A class of the quadrature for atoms: (Rx, Ry, Rz) has the trace 1 + 2cos(angle), S_u the sign.
+        let character = |l, parity| {
+            self.irrep_idx(&IrrepName::Atomic { parity, l }).map_or(f64::NAN, |at| self.irreps()[at].characters[class])
+        };
+        let cosine = (character(1, Parity::Even) - 1.0) / 2.0;
+        (cosine.clamp(-1.0, 1.0).acos(), character(0, Parity::Odd) > 0.0)
     }
 }

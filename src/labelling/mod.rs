@@ -5,6 +5,7 @@
 
 mod atom;
 pub mod composition;
+pub mod configuration;
 pub mod d_block;
 pub mod frontier;
 mod sets;

@@ -4,11 +4,13 @@
 //! Not here: the grammar (`grammar`), normalisation and order of functions (`wavefunction::convention`):
 //! coefficients stand exactly as the file gives them.
 
+mod atoms;
 pub mod elements;
 pub mod masses;
 mod molden;
 
-pub use molden::{Reading, looks_like_molden, named_atom, read_molden, read_xyz, write_labels};
+pub use atoms::named_atom;
+pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};
 
 use crate::diagnostic::Span;
 use nalgebra::Point3;

@@ -61,9 +61,34 @@ pub fn setting_entry(description: &str, swaps: &[(IrrepName, IrrepName)]) -> Set
     }
 }
 
+/// More atoms or bonds than this on one axis are counted, not named.
+const NAMED_ON_AXIS: usize = 8;
+
+/// The convention, then the atoms and bonds that each axis passes through by name.
+fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
+    let atom = |i: &usize| format!("{}{}", elements::label(&molecule.atoms[*i]), i + 1);
+    let bond = |(i, j): &(usize, usize)| format!("{}–{}", atom(i), atom(j));
+    let list = |names: Vec<String>, what: &str| match names.len() {
+        0 => None,
+        n if n > NAMED_ON_AXIS => Some(format!("{n} {what}")),
+        _ => Some(names.join(" ")),
+    };
+    let mut text = symmetry.frame.convention.clone();
+    let free = molecule.atoms.len() < 2 || symmetry.group.name() == crate::group::GroupName::C1;
+    for (axis, passage) in ["x", "y", "z"].iter().zip(&symmetry.passages).filter(|_| !free) {
+        let atoms = list(passage.atoms.iter().map(atom).collect(), "atoms");
+        let bonds = list(passage.bonds.iter().map(bond).collect(), "bonds");
+        let parts: Vec<String> = [atoms, bonds].into_iter().flatten().collect();
+        if !parts.is_empty() {
+            text.push_str(&format!("; {axis} passes {}", parts.join(" and ")));
+        }
+    }
+    text
+}
+
 /// The geometry block.
 #[must_use]
-pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
+pub fn geometry(molecule: &Molecule, detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Geometry {
     let group = &symmetry.group;
     let angstrom = |bohr: f64| bohr * ANGSTROM_PER_BOHR;
     let axes = &symmetry.frame.axes;
@@ -77,7 +102,7 @@ pub fn geometry(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64)
         deviation_rms_angstrom: angstrom(symmetry.deviation.rms),
         centre_bohr: symmetry.frame.centre.coords.into(),
         axes: std::array::from_fn(|row| std::array::from_fn(|column| axes[(row, column)])),
-        axes_convention: symmetry.frame.convention.clone(),
+        axes_convention: axes_in_words(molecule, symmetry),
         other_settings: symmetry
             .other_settings
             .iter()
@@ -117,7 +142,7 @@ pub fn label_document(
     Document {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(&labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
+        geometry: geometry(molecule, &labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
         basis: Some(builder.basis()),
         orbitals: Some(builder.orbitals()),
         frontier: Some(builder.frontier()),
@@ -182,7 +207,7 @@ pub fn geometry_document(
     Document {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(detection, symmetry, tolerance_bohr),
+        geometry: geometry(molecule, detection, symmetry, tolerance_bohr),
         basis: None,
         orbitals: None,
         sets: None,

@@ -159,7 +159,7 @@ pub fn modes_document(
     Ok(ModesDocument {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(detection, symmetry, tolerance_bohr),
+        geometry: geometry(molecule, detection, symmetry, tolerance_bohr),
         decomposition: decomposition(atoms, bonds, symmetry, &motion, &operators),
         displacements: assignment.map(|assignment| reading(assignment.weighting)),
         orthogonality_residual: assignment.map(|assignment| assignment.residual),

@@ -2,7 +2,7 @@
 //!
 //! Not here: how any of it is worked out (`group`).
 
-use super::text::{push_table, table, wrap};
+use super::text::{push_table, table};
 use super::unicode::pretty;
 use crate::group::{GroupError, GroupName, PointGroup, exact_character};
 use comfy_table::CellAlignment;
@@ -10,8 +10,10 @@ use serde::Serialize;
 use serde_json::{Map, Value, json};
 use std::fmt::Write as _;
 
-/// Products of more irreps than this fill pages: the text leaves them to JSON.
-const PRODUCTS_IN_TEXT: usize = 10;
+/// Products of this many irreps are printed; of more the text leaves them to JSON.
+const PRODUCTS_IN_TEXT: usize = 7;
+/// Columns of a line.
+const TEXT_WIDTH: usize = 100;
 /// Columns of a text table before its classes go on below.
 const COLUMNS_IN_TEXT: usize = 10;
 
@@ -103,6 +105,8 @@ pub fn build(name: &str) -> Result<TableDocument, GroupError> {
     let name: GroupName = name.parse()?;
     let group = PointGroup::standard(name)?;
     let n = group.irreps().len();
+    // A continuous group holds a class an angle, of which one stands for all.
+    let printed = group.printed_classes();
     let irrep_name = |irrep: usize| group.irreps()[irrep].name.to_string();
     // In a continuous group some products reach irreps that are not kept; those are left out.
     let told = |terms: Result<Vec<(usize, usize)>, GroupError>| terms.ok().map(|terms| json!(sum(&group, &terms)));
@@ -131,16 +135,16 @@ pub fn build(name: &str) -> Result<TableDocument, GroupError> {
         order: name.order(),
         rotational_symmetry_number: name.rotational_symmetry_number(),
         axes_convention: axes_convention(name).to_owned(),
-        classes: group
-            .classes()
+        classes: printed
             .iter()
+            .map(|&class| &group.classes()[class])
             .map(|class| ClassEntry {
                 symbol: class.symbol.clone(),
                 size: (!name.is_continuous()).then_some(class.members.len()),
                 operations: class.members.iter().map(|&member| group.elements()[member].symbol.clone()).collect(),
             })
             .collect(),
-        irreps: (0..n).map(|irrep| irrep_entry(&group, irrep)).collect(),
+        irreps: (0..n).map(|irrep| irrep_entry(&group, &printed, irrep)).collect(),
         products,
         symmetric_squares: per_irrep(&|a| told(group.symmetric_square(a))),
         antisymmetric_squares: per_irrep(&|a| told(group.antisymmetric_square(a))),
@@ -155,19 +159,18 @@ fn setting_entry(group: &PointGroup, setting: &crate::group::Setting) -> super::
     super::build::setting_entry(&setting.description, &swaps)
 }
 
-fn irrep_entry(group: &PointGroup, irrep: usize) -> IrrepEntry {
+fn irrep_entry(group: &PointGroup, printed: &[usize], irrep: usize) -> IrrepEntry {
     let irrep = &group.irreps()[irrep];
+    let characters: Vec<(usize, f64)> = printed.iter().map(|&class| (class, irrep.characters[class])).collect();
     let functions = &irrep.functions;
     IrrepEntry {
         name: irrep.name.to_string(),
         dimension: irrep.dimension,
         conjugate_pair: irrep.constituents > 1,
-        characters: irrep.characters.clone(),
-        exact: irrep
-            .characters
+        characters: characters.iter().map(|entry| entry.1).collect(),
+        exact: characters
             .iter()
-            .zip(group.classes())
-            .map(|(&character, class)| exact_character(group, class, irrep, character))
+            .map(|&(class, character)| exact_character(group, &group.classes()[class], irrep, character))
             .collect(),
         partners: irrep.partners.clone(),
         functions: [&functions.linear, &functions.rotations, &functions.quadratic, &functions.cubic]
@@ -214,37 +217,20 @@ pub fn text(document: &TableDocument) -> String {
     if document.irreps.iter().any(|irrep| irrep.conjugate_pair) {
         out.push_str("\n*  two complex-conjugate irreps taken together as one real representation\n");
     }
-    if document.irreps.len() <= PRODUCTS_IN_TEXT {
-        out.push_str("\nProducts\n");
-        let mut rows = table();
-        let names: Vec<String> = document.irreps.iter().map(|irrep| pretty(&irrep.name)).collect();
-        rows.set_header(std::iter::once(String::new()).chain(names.iter().cloned()));
-        for (a, irrep) in document.irreps.iter().enumerate() {
-            let row = document.products.get(&irrep.name);
-            let cell = |b: usize| {
-                let product = row.and_then(|row| row.get(&document.irreps[b].name)).and_then(Value::as_str);
-                if b < a { String::new() } else { product.map_or("…".to_owned(), pretty) }
-            };
-            rows.add_row(std::iter::once(names[a].clone()).chain((0..document.irreps.len()).map(cell)));
-        }
-        push_table(&mut out, &rows);
-    } else {
-        out.push_str("\nProducts of so many irreps are in the JSON output.\n");
-    }
-    let degenerate: Vec<&IrrepEntry> = document.irreps.iter().filter(|irrep| irrep.dimension > 1).collect();
-    if !degenerate.is_empty() {
-        out.push_str("\nSquares      symmetric; antisymmetric in braces\n");
-        let told =
-            |map: &Map<String, Value>, name: &str| map.get(name).and_then(Value::as_str).map_or("…".to_owned(), pretty);
-        for irrep in degenerate {
-            let _ = writeln!(
-                out,
-                "{:<12} {}   {{{}}}",
-                format!("{}²", pretty(&irrep.name)),
-                told(&document.symmetric_squares, &irrep.name),
-                told(&document.antisymmetric_squares, &irrep.name)
-            );
-        }
+    out.push_str(&products(document));
+    let squares: Vec<String> = document
+        .irreps
+        .iter()
+        .filter(|irrep| irrep.dimension > 1)
+        .filter_map(|irrep| {
+            let told = |map: &Map<String, Value>| map.get(&irrep.name).and_then(Value::as_str).map(pretty);
+            let (symmetric, antisymmetric) =
+                (told(&document.symmetric_squares)?, told(&document.antisymmetric_squares)?);
+            Some(format!("{:<12} {symmetric}   {{{antisymmetric}}}", format!("{}²", pretty(&irrep.name))))
+        })
+        .collect();
+    if !squares.is_empty() {
+        let _ = writeln!(out, "\nSquares      symmetric; antisymmetric in braces\n{}", squares.join("\n"));
     }
     if !document.descent.is_empty() {
         out.push_str("\nDescent\n");
@@ -255,7 +241,7 @@ pub fn text(document: &TableDocument) -> String {
                 .iter()
                 .map(|(irrep, onto)| format!("{} → {}", pretty(irrep), pretty(onto.as_str().unwrap_or_default())))
                 .collect();
-            for line in wrap(&parts.join(",  "), 96) {
+            for line in wrap_terms(&parts, TEXT_WIDTH) {
                 let _ = writeln!(out, "    {line}");
             }
         }
@@ -269,6 +255,53 @@ pub fn text(document: &TableDocument) -> String {
         let _ = writeln!(out, "\nOther choice of axes, {}: {}", setting.description, swaps.join(", "));
     }
     out
+}
+
+/// Products of all irreps but the totally symmetric one; with an inversion centre those of even ones alone, since
+/// parity multiplies by itself.
+fn products(document: &TableDocument) -> String {
+    let even: Vec<&IrrepEntry> = document.irreps.iter().filter(|irrep| irrep.name.contains('g')).collect();
+    let odd = document.irreps.iter().any(|irrep| irrep.name.ends_with('u') || irrep.name.contains("_u"));
+    let listed: Vec<&IrrepEntry> = if odd { even } else { document.irreps.iter().collect() };
+    let more = listed.len() > 1 + PRODUCTS_IN_TEXT;
+    let listed: Vec<&IrrepEntry> = listed.into_iter().skip(1).take(PRODUCTS_IN_TEXT).collect();
+    let mut out = String::new();
+    if listed.is_empty() {
+        return out;
+    }
+    let parity = if odd { "   g × g = u × u = g, g × u = u" } else { "" };
+    let _ = writeln!(out, "\nProducts{parity}");
+    let mut terms = Vec::new();
+    for (at, a) in listed.iter().enumerate() {
+        for b in &listed[at..] {
+            let product = document.products.get(&a.name).and_then(|row| row.get(&b.name)).and_then(Value::as_str);
+            if let Some(product) = product {
+                terms.push(format!("{} × {} = {}", pretty(&a.name), pretty(&b.name), pretty(product)));
+            }
+        }
+    }
+    for line in wrap_terms(&terms, TEXT_WIDTH) {
+        let _ = writeln!(out, "    {line}");
+    }
+    if more {
+        out.push_str("    …   all of them are in the JSON output\n");
+    }
+    out
+}
+
+/// Puts whole terms on lines of at most `width` characters, three blanks apart.
+fn wrap_terms(terms: &[String], width: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for term in terms {
+        match lines.last_mut() {
+            Some(line) if line.chars().count() + 3 + term.chars().count() <= width => {
+                line.push_str("   ");
+                line.push_str(term);
+            }
+            _ => lines.push(term.clone()),
+        }
+    }
+    lines
 }
 
 /// Characters and functions; a wide table goes on below with the next classes.

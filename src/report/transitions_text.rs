@@ -5,7 +5,7 @@
 use super::document::Document;
 use super::rule::{self, listed};
 use super::text::{EV_PER_HARTREE, geometry_head, head, push_table, table, title, wrap};
-use super::transitions::{ModeReference, TransitionEntry};
+use super::transitions::{self, ModeReference, TransitionEntry};
 use super::unicode::pretty;
 use crate::model::Spin;
 use comfy_table::CellAlignment;
@@ -89,8 +89,15 @@ fn answer(entries: &[TransitionEntry]) -> String {
     let allowed = entries.iter().filter(|entry| entry.electric_dipole.allowed == Some(true)).count();
     head(&mut out, "Pairs", &format!("{} listed, {allowed} allowed by electric dipole", entries.len()));
     if let Some(states) = entries.iter().find_map(|entry| entry.states.as_ref()) {
-        let ground: Vec<String> = states.ground.iter().map(|name| pretty(name)).collect();
-        head(&mut out, "Ground", &format!("{} ({})", ground.join(" + "), pretty(&states.ground_from)));
+        let ground: Vec<String> = states.ground.iter().map(|term| term_symbol(term)).collect();
+        let from =
+            if states.ground_from == "closed shell" { "closed shell".to_owned() } else { pretty(&states.ground_from) };
+        let rule = match (states.ground_from == "closed shell", states.ground_decided) {
+            (true, _) => "",
+            (_, true) => ", by highest spin",
+            (_, false) => ", one of these: highest spin leaves several",
+        };
+        head(&mut out, "Ground", &format!("{} ({from}{rule})", ground.join(", ")));
     } else {
         head(
             &mut out,
@@ -99,6 +106,19 @@ fn answer(entries: &[TransitionEntry]) -> String {
         );
     }
     out
+}
+
+/// `4A2g` → `⁴A2g`.
+fn term_symbol(term: &str) -> String {
+    let digits = term.bytes().take_while(u8::is_ascii_digit).count();
+    let raised = term[..digits].chars().map(|digit| match digit {
+        '0' => '⁰',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        digit => char::from_u32('⁰' as u32 + digit as u32 - '0' as u32).unwrap_or(digit),
+    });
+    raised.chain(pretty(&term[digits..]).chars()).collect()
 }
 
 /// Small strengths in powers of ten, zero as such.
@@ -271,9 +291,11 @@ fn jahn_teller(document: &Document) -> String {
         let text = if entry.second_order_only {
             "none in first order; bending acts in second order (Renner–Teller)".to_owned()
         } else {
-            active.join("  ")
+            if active.is_empty() { "none that the molecule has".to_owned() } else { active.join("  ") }
         };
-        paragraph(&mut out, &pretty(&entry.label), &format!("({}) {text}", entry.configuration));
+        let own = entry.configuration == transitions::OWN;
+        let label = if own { term_symbol(&entry.label) } else { pretty(&entry.label) };
+        paragraph(&mut out, &label, &format!("({}) {text}", entry.configuration));
     }
     out
 }

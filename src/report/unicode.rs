@@ -7,7 +7,8 @@
 /// Works on names and labels, not on sentences.
 #[must_use]
 pub fn pretty(name: &str) -> String {
-    const GREEK: [(&str, &str); 12] = [
+    // Longer words first: theta ends in eta.
+    const GREEK: [(&str, &str); 28] = [
         ("Sigma", "Σ"),
         ("sigma", "σ"),
         ("Pi", "Π"),
@@ -18,6 +19,22 @@ pub fn pretty(name: &str) -> String {
         ("phi", "φ"),
         ("Gamma", "Γ"),
         ("gamma", "γ"),
+        ("Theta", "Θ"),
+        ("theta", "θ"),
+        ("Eta", "Η"),
+        ("eta", "η"),
+        ("Iota", "Ι"),
+        ("iota", "ι"),
+        ("Kappa", "Κ"),
+        ("kappa", "κ"),
+        ("Lambda", "Λ"),
+        ("lambda", "λ"),
+        ("Omicron", "Ο"),
+        ("omicron", "ο"),
+        ("Mu", "Μ"),
+        ("mu", "μ"),
+        ("Nu", "Ν"),
+        ("nu", "ν"),
         ("inf", "∞"),
         ("''", "″"),
     ];

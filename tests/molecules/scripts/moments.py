@@ -4,7 +4,7 @@ Per fixture: all fifteen operators (x y z, d/dx d/dy d/dz, r x nabla, xx yy zz x
 orbitals, and for each operator the sum over all pairs (i, j), counted from 0, of the moment times
 cos(i + 2j), which no wrong integral leaves alone.
 
-Usage: python moments.py     (writes reference/moments.json)
+Usage: python moments.py     (writes reference/moments_sums.json)
 """
 import json
 import os
@@ -51,5 +51,5 @@ if __name__ == "__main__":
                       "pairs": [{"bra": i, "ket": j, "moments": [float(m[i, j]) for m in matrices]} for i, j in pairs],
                       "sums": [float((m * weight).sum()) for m in matrices]}
         print(name, n, rows[name]["sums"][:3])
-    with open(OUT + "/reference/moments.json", "w") as out:
+    with open(OUT + "/reference/moments_sums.json", "w") as out:
         json.dump(rows, out, indent=1)

@@ -41,6 +41,12 @@ def moved(atoms, seed):
     return [(s, tuple(map(float, r @ np.asarray(p, float) + t))) for s, p in atoms]
 
 
+def shaken(atoms, size, seed):
+    """Every atom moved by a random vector of at most `size` angstrom in each coordinate."""
+    rng = random.Random(seed)
+    return [(s, tuple(x + rng.uniform(-size, size) for x in p)) for s, p in atoms]
+
+
 def ring(symbol, n, radius, z=0.0, start=0.0):
     """n atoms on a circle; `start` is the angle of the first one in degrees."""
     a = [2 * pi * k / n + radians(start) for k in range(n)]
@@ -407,4 +413,26 @@ def fullerene(edge_short=1.40, edge_long=1.45):
         for q in vertices:
             if 0 < np.linalg.norm(p - q) < 1.1 * a:
                 out.append(("C", tuple(p + edge_long / a * (q - p))))
+    return out
+
+
+def azaacene(rings=3, cc=1.40, xh=1.09):
+    """A flat row of regular six-rings with nitrogen at the four corners next to the ends: D2h, long axis x."""
+    w = sqrt(3) * cc
+    bare, seen = [], []
+    for k in range(rings):
+        x0 = (k - (rings - 1) / 2) * w
+        for a in range(6):
+            p = np.array([x0 + cc * cos(radians(60 * a + 30)), cc * sin(radians(60 * a + 30)), 0])
+            if all(np.linalg.norm(p - q) > 0.1 for q in seen):
+                seen.append(p)
+    top = (rings - 1) / 2 * w
+    for p in seen:
+        outer_corner = abs(abs(p[0]) - top) < 0.1 and abs(abs(p[1]) - cc) < 0.1
+        bare.append(("N" if outer_corner else "C", p))
+    out = [(s, tuple(p)) for s, p in bare]
+    for s, p in bare:
+        near = [q for _, q in bare if 0.1 < np.linalg.norm(p - q) < 1.1 * cc]
+        if s == "C" and len(near) == 2:
+            out.append(("H", tuple(third_arm(p, near[0], near[1], xh))))
     return out
