@@ -2,7 +2,7 @@
 //!
 //! Not here: any number that the document does not hold.
 
-use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, SpinFrontier};
+use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, Source, SpinFrontier};
 use super::unicode::pretty;
 use crate::group::IrrepName;
 use crate::model::Spin;
@@ -67,7 +67,11 @@ fn count(value: f64) -> String {
 }
 
 pub(super) fn title(document: &Document) -> String {
-    let source = &document.source;
+    source_line(&document.source)
+}
+
+/// File, formula, title, atoms, electrons and charge.
+pub(super) fn source_line(source: &Source) -> String {
     let mut parts = vec![source.file.clone(), source.formula.clone()];
     if !source.title.is_empty() {
         parts.push(format!("“{}”", source.title));
