@@ -1,5 +1,7 @@
 //! Laws of terms, levels and double groups, tried on every family of groups; second paths that share no code with the program's.
 
+#![expect(clippy::unwrap_used, reason = "a test that cannot build its input fails")]
+
 use orbsieve::group::irrep_name::{IrrepName, Parity};
 use orbsieve::group::{DoubleGroup, GroupName, Kramers, PointGroup};
 use orbsieve::states::{Configuration, Term, correlation, spin_orbit, terms, transitions};
@@ -16,7 +18,7 @@ fn named(name: &str) -> PointGroup {
 
 /// Every family, axes to n, and the cubic, icosahedral and linear groups.
 fn every_name(n: u32) -> Vec<GroupName> {
-    use GroupName::{C1, Cinfv, Ci, Cn, Cnh, Cnv, Cs, Dinfh, Dn, Dnd, Dnh, I, Ih, O, Oh, Sn, T, Td, Th};
+    use GroupName::{C1, Ci, Cinfv, Cn, Cnh, Cnv, Cs, Dinfh, Dn, Dnd, Dnh, I, Ih, O, Oh, Sn, T, Td, Th};
     let mut names = vec![C1, Cs, Ci, T, Td, Th, O, Oh, I, Ih, Cinfv, Dinfh];
     for n in 2..=n {
         names.extend([Cn(n), Cnv(n), Cnh(n), Dn(n), Dnh(n), Dnd(n), Sn(2 * n)]);
@@ -112,8 +114,7 @@ fn descent_of_levels_goes_through_any_group_between() {
 fn by_counting(shells: &[(u8, u32)]) -> BTreeMap<(u16, u8), usize> {
     let mut counts: BTreeMap<(i32, i32), i64> = BTreeMap::from([((0, 0), 1)]);
     for &(l, electrons) in shells {
-        let places: Vec<(i32, i32)> =
-            (-i32::from(l)..=i32::from(l)).flat_map(|m| [(m, 1), (m, -1)]).collect();
+        let places: Vec<(i32, i32)> = (-i32::from(l)..=i32::from(l)).flat_map(|m| [(m, 1), (m, -1)]).collect();
         // [electrons placed] → (M_L, 2M_S) → ways
         let mut placed = vec![BTreeMap::from([((0, 0), 1_i64)])];
         placed.resize(electrons as usize + 1, BTreeMap::new());
@@ -180,7 +181,9 @@ fn terms_of_atoms_agree_with_counting() {
 
 #[test]
 fn weak_and_strong_field_count_the_same_terms() {
-    for name in ["O", "Oh", "Td", "D4h", "D3", "C3v", "D3d", "D5h", "Ih", "C2v", "C4", "S4", "T", "Cinfv", "Dinfh", "D4d"] {
+    for name in
+        ["O", "Oh", "Td", "D4h", "D3", "C3v", "D3d", "D5h", "Ih", "C2v", "C4", "S4", "T", "Cinfv", "Dinfh", "D4d"]
+    {
         let in_field = named(name);
         let double = DoubleGroup::of(&in_field).unwrap();
         for (l, places) in [(1, 6), (2, 10), (3, 14)] {
@@ -292,7 +295,9 @@ fn electric_dipoles_change_parity_and_rules_are_the_same_both_ways() {
                 assert!(rule.electric_dipole.iter().all(|irrep| rule.borrowed.contains(irrep)), "{name}");
             }
             let parity = |at: usize| group.irreps()[list[at].irrep].name.to_string().contains('u');
-            if group.irreps().iter().any(|irrep| irrep.name.to_string().contains('u')) && parity(rule.from) == parity(rule.to) {
+            if group.irreps().iter().any(|irrep| irrep.name.to_string().contains('u'))
+                && parity(rule.from) == parity(rule.to)
+            {
                 assert!(rule.electric_dipole.is_empty() && rule.borrowed.is_empty(), "{name}: Laporte");
             }
         }
@@ -322,7 +327,7 @@ proptest! {
         let Ok(configuration) = Configuration::new(&group, &shells) else { return Ok(()) };
         let Ok(list) = terms(&group, &configuration) else { return Ok(()) };
         let states: usize = list.iter().map(|term| term.states(&group)).sum();
-        prop_assert_eq!(states as f64, configuration.microstates());
+        prop_assert!((states as f64 - configuration.microstates()).abs() < 0.5);
         // Holes: the same terms.
         let holes: Vec<(usize, Option<u32>, u32)> = configuration
             .shells()

@@ -2,6 +2,8 @@
 //!
 //! "Matrix groups": worked out from explicitly generated matrices by another program, checked by the number of microstates.
 
+#![expect(clippy::unwrap_used, reason = "a test that cannot build its input fails")]
+
 use orbsieve::group::irrep_name::Parity;
 use orbsieve::group::{DoubleGroup, GroupName, PointGroup};
 use orbsieve::states::jahn_teller::{self, JahnTeller};
@@ -31,7 +33,8 @@ impl Setting {
     fn irrep(&self, name: &str) -> usize {
         let irreps = self.double.irreps();
         let found = irreps.iter().position(|irrep| {
-            irrep.name.to_string() == name || irrep.name.gamma().is_some_and(|gamma| gamma.replace("Gamma", "Γ") == name)
+            irrep.name.to_string() == name
+                || irrep.name.gamma().is_some_and(|gamma| gamma.replace("Gamma", "Γ") == name)
         });
         found.unwrap_or_else(|| panic!("{}: no {name}", self.group.name()))
     }
@@ -63,10 +66,8 @@ impl Setting {
 
 /// `3T1 + 2 1E` as sorted text, one entry a kind.
 fn listed(text: &str) -> Vec<String> {
-    let mut kinds: Vec<String> = text
-        .split(" + ")
-        .map(|kind| if kind.contains(' ') { kind.to_owned() } else { format!("1 {kind}") })
-        .collect();
+    let mut kinds: Vec<String> =
+        text.split(" + ").map(|kind| if kind.contains(' ') { kind.to_owned() } else { format!("1 {kind}") }).collect();
     kinds.sort();
     kinds
 }
@@ -153,10 +154,7 @@ fn ground_terms_of_octahedral_complexes() {
 fn half_integer_levels_in_fields() {
     // Of a conjugate pair the two numbers stand together.
     let rows: &[(&str, &[&str])] = &[
-        (
-            "O",
-            &["Γ6", "Γ8", "Γ7+Γ8", "Γ6+Γ7+Γ8", "Γ6+2Γ8", "Γ6+Γ7+2Γ8", "Γ6+2Γ7+2Γ8", "Γ6+Γ7+3Γ8"],
-        ),
+        ("O", &["Γ6", "Γ8", "Γ7+Γ8", "Γ6+Γ7+Γ8", "Γ6+2Γ8", "Γ6+Γ7+2Γ8", "Γ6+2Γ7+2Γ8", "Γ6+Γ7+3Γ8"]),
         ("D4", &["Γ6", "Γ6+Γ7", "Γ6+2Γ7", "2Γ6+2Γ7", "3Γ6+2Γ7"]),
         ("D3", &["E1/2", "E1/2+E3/2", "2E1/2+E3/2", "3E1/2+E3/2", "3E1/2+2E3/2"]),
     ];
@@ -383,7 +381,8 @@ fn jahn_teller_active_modes() {
         let found = jahn_teller::of_level(&setting.group, &setting.double, setting.irrep(irrep)).unwrap();
         assert_eq!(found, JahnTeller::Active(setting.sum(modes)), "{group} {irrep}");
     }
-    for (group, level) in [("O", "Γ6"), ("D3", "E1/2"), ("D3", "E3/2"), ("C1", "A1/2"), ("Oh", "A2g"), ("C3", "A3/2")] {
+    for (group, level) in [("O", "Γ6"), ("D3", "E1/2"), ("D3", "E3/2"), ("C1", "A1/2"), ("Oh", "A2g"), ("C3", "A3/2")]
+    {
         let setting = Setting::of(group);
         let found = jahn_teller::of_level(&setting.group, &setting.double, setting.irrep(level)).unwrap();
         assert_eq!(found, JahnTeller::Stable, "{group} {level}");

@@ -35,9 +35,7 @@ pub fn states(arguments: &States, out: &mut dyn Write, errors: &mut dyn Write) -
         (None, _) => of_file(arguments, errors)?,
     };
     let printed = match arguments.common.format {
-        Format::Text => {
-            states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes()
-        }
+        Format::Text => states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => return Err(CliError::Usage("states prints text or json, not csv".to_owned())),
     };
@@ -68,15 +66,12 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     let stage = Stage { group: &group, double: &double, vibrations: None };
     let mut document = StatesDocument::new(&group, None);
     if let Some(text) = text {
-        match ionic_shell(&group, text) {
-            Some((l, electrons)) => {
-                let found = correlation(&group, &double, l, electrons).map_err(usage)?;
-                document.correlation = Some(stage.correlation(&found));
-            }
-            None => {
-                let configuration = Configuration::parse(&group, text).map_err(usage)?;
-                fill(&mut document, arguments, &stage, &configuration)?;
-            }
+        if let Some((l, electrons)) = ionic_shell(&group, text) {
+            let found = correlation(&group, &double, l, electrons).map_err(usage)?;
+            document.correlation = Some(stage.correlation(&found));
+        } else {
+            let configuration = Configuration::parse(&group, text).map_err(usage)?;
+            fill(&mut document, arguments, &stage, &configuration)?;
         }
     }
     levels(&mut document, arguments, &stage)?;
@@ -85,7 +80,8 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
 
 /// l and n of one shell of a free ion, `d^3`, in a group whose irreps have no such name.
 fn ionic_shell(group: &PointGroup, text: &str) -> Option<(u8, u32)> {
-    let first = text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
+    let first =
+        text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
     if group.name() == GroupName::K || !matches!(first, 's' | 'p' | 'd' | 'f') {
         return None;
     }
@@ -167,7 +163,9 @@ fn free_term(text: &str) -> Result<(String, u16, Parity), CliError> {
     let multiplicity = &stem[..stem.len() - letter.len()];
     let l = TERM_LETTERS.find(letter).filter(|_| letter.len() == 1).and_then(|l| u16::try_from(l).ok());
     match l {
-        Some(l) if !multiplicity.is_empty() && multiplicity.len() < 3 => Ok((format!("{multiplicity}{letter}"), l, parity)),
+        Some(l) if !multiplicity.is_empty() && multiplicity.len() < 3 => {
+            Ok((format!("{multiplicity}{letter}"), l, parity))
+        }
         _ => Err(CliError::Usage(format!(
             "`{text}` is no term of a free ion: expected a multiplicity and a letter of {TERM_LETTERS}, such as 4F, with u at its end for odd terms"
         ))),
@@ -207,27 +205,33 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
 }
 
 fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
-    let orbitals = |spin: Spin, orbitals: &[usize]| {
-        let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
-        let plural = if numbers.len() == 1 { "" } else { "s" };
-        let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
-        format!("{spin} orbital{plural} {}", numbers.join(", "))
-    };
     let set = |irrep: usize, number: usize| format!("{number}{}", group.irreps()[irrep].name.symbol());
     match obstacle {
         Obstacle::NoOccupations => "the file gives no occupations".to_owned(),
-        Obstacle::Unlabelled { spin, orbitals: list } => {
-            format!("{} hold electrons and belong to no irrep: the symmetry is broken", orbitals(*spin, list))
+        Obstacle::Unlabelled { spin, orbitals } => {
+            let holds = if orbitals.len() == 1 { "holds electrons and belongs" } else { "hold electrons and belong" };
+            format!("{} {holds} to no irrep: the symmetry is broken", orbital_numbers(*spin, orbitals))
         }
-        Obstacle::Incomplete { spin, irrep, number, orbitals: list, wanted } => format!(
-            "{} make {} of {wanted} partners of {}: the others are filled differently, missing or at another energy",
-            orbitals(*spin, list),
-            list.len(),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, wanted, .. } if orbitals.len() < *wanted => format!(
+            "{}, of {}, stands for {} of {wanted} partners: the others are filled differently, missing or at another energy",
+            orbital_numbers(*spin, orbitals),
+            set(*irrep, *number),
+            orbitals.len()
+        ),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, spread_hartree, .. } => format!(
+            "{}, the partners of {}, do not keep together: their energies are spread over {spread_hartree:.4} hartree",
+            orbital_numbers(*spin, orbitals),
             set(*irrep, *number)
         ),
-        Obstacle::Fractional { irrep, number, electrons, limit } => format!(
-            "{} holds {electrons:.3} electrons, further than {limit} from a whole number",
-            set(*irrep, *number)
-        ),
+        Obstacle::Fractional { irrep, number, electrons, limit } => {
+            format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
+        }
     }
+}
+
+fn orbital_numbers(spin: Spin, orbitals: &[usize]) -> String {
+    let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
+    let plural = if numbers.len() == 1 { "" } else { "s" };
+    let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
+    format!("{spin} orbital{plural} {}", numbers.join(", "))
 }

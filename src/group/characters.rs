@@ -179,11 +179,8 @@ impl Cyclic {
         let period = self.powers.len();
         let mut eigenvalues = Vec::new();
         for k in 0..period {
-            let terms = self
-                .powers
-                .iter()
-                .enumerate()
-                .map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
+            let terms =
+                self.powers.iter().enumerate().map(|(j, &class)| (rough[class] * self.roots[j * k % period].conj()).re);
             let count = whole(terms.sum::<f64>() / period as f64, "whole multiplicities of eigenvalues")?;
             if count > 0 {
                 eigenvalues.push((k, count as f64));

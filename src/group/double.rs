@@ -168,8 +168,15 @@ impl DoubleGroup {
         }
         let classes = entries.into_iter().map(|entry| entry.class).collect();
         let (irreps, n_single) = (Vec::new(), 0);
-        let mut double =
-            Self { name: group.name(), elements, class_of, multiplication: Some(multiplication), classes, irreps, n_single };
+        let mut double = Self {
+            name: group.name(),
+            elements,
+            class_of,
+            multiplication: Some(multiplication),
+            classes,
+            irreps,
+            n_single,
+        };
         double.irreps = double.named(group, &rows);
         Ok(double)
     }
@@ -188,9 +195,8 @@ impl DoubleGroup {
                 .enumerate()
                 .filter(|(at, row)| row.characters[rotated].re < 0.0 && row.conjugate >= *at)
                 .filter(|(_, row)| {
-                    inversion.is_none_or(|at| {
-                        (row.characters[self.class_of[at]].re > 0.0) == (parity == Some(Parity::Even))
-                    })
+                    inversion
+                        .is_none_or(|at| (row.characters[self.class_of[at]].re > 0.0) == (parity == Some(Parity::Even)))
                 })
                 .map(|(at, row)| self.described(group, row, row.conjugate != at, parity))
                 .collect();
@@ -242,12 +248,8 @@ impl DoubleGroup {
         };
         // Complex conjugates in a pair count with half their dimension each, levels with the whole.
         let level = dimension * if kramers == Kramers::Twice { 2 } else { 1 };
-        let name = DoubleName::Spinor {
-            dimension: u8::try_from(dimension).unwrap_or(u8::MAX),
-            twice_j,
-            parity,
-            gamma: None,
-        };
+        let name =
+            DoubleName::Spinor { dimension: u8::try_from(dimension).unwrap_or(u8::MAX), twice_j, parity, gamma: None };
         ((rank, level, twice_j), DoubleIrrep { name, dimension, constituents, characters, kramers: Some(kramers) })
     }
 
@@ -463,7 +465,7 @@ impl CharacterTable for DoubleGroup {
                 return of.characters[self.class_of[power]];
             }
         };
-        let sign = if self.classes[class].proper || parity == Parity::Even || k % 2 == 0 { 1.0 } else { -1.0 };
+        let sign = if self.classes[class].proper || parity == Parity::Even || k.is_multiple_of(2) { 1.0 } else { -1.0 };
         sign * spin_character(twice_j, self.classes[class].half_angle * k as f64)
     }
 

@@ -33,9 +33,9 @@ pub mod subgroups;
 pub mod symbols;
 pub mod symmetry;
 
+pub use detect::{DetectError, DetectSettings, Detection, Rung, detect};
 pub use double::{DoubleClass, DoubleGroup, DoubleIrrep, Kramers};
 pub use double_name::DoubleName;
-pub use detect::{DetectError, DetectSettings, Detection, Rung, detect};
 pub use error::GroupError;
 pub use exact::exact_character;
 pub use identify::{identify, standard_frames};

@@ -157,7 +157,9 @@ pub fn text(document: &DoubleTableDocument) -> String {
         out.push('\n');
     }
     if document.irreps.iter().any(|irrep| irrep.conjugate_pair) {
-        out.push_str("*  two complex-conjugate irreps taken together; of half-integer spin they make one Kramers level\n");
+        out.push_str(
+            "*  two complex-conjugate irreps taken together; of half-integer spin they make one Kramers level\n",
+        );
     }
     let twice: Vec<String> = document
         .irreps

@@ -127,7 +127,7 @@ pub struct ModeEntry {
 pub struct GroundEntry {
     /// One term, or those that Hund's rules leave.
     pub terms: Vec<String>,
-    /// `closed`, `rules`, `several_shells` or `undecided`.
+    /// `closed`, `only`, `rules`, `several_shells` or `undecided`.
     pub certainty: &'static str,
     /// Of an atom, J of the lowest level.
     pub j: Option<String>,
@@ -339,18 +339,21 @@ impl Stage<'_> {
     fn ground(&self, terms: &[Term], ground: &Ground) -> GroundEntry {
         let (certainty, caution) = match ground.certainty {
             Certainty::Closed => ("closed", "every shell is full or empty"),
+            Certainty::Only => ("only", "the only term of this configuration"),
+            Certainty::Rules if self.group.is_continuous() => {
+                ("rules", "lowest of this configuration by Hund's rules, which can fail")
+            }
             Certainty::Rules => (
                 "rules",
-                "lowest of this configuration by Hund's rules; another configuration may lie lower (low spin), and the rules can fail",
+                "lowest of this configuration by Hund's rules, which can fail; another configuration, such as that of low spin, may lie lower",
             ),
             Certainty::SeveralShells => (
                 "several_shells",
-                "highest spin; Hund's rules were found for one open shell and decide less surely between several",
+                "highest spin; Hund's rules were found for one open shell and decide less surely where there are several",
             ),
-            Certainty::Undecided => (
-                "undecided",
-                "Hund's rules stop at highest spin: which of these lies lowest takes a calculation",
-            ),
+            Certainty::Undecided => {
+                ("undecided", "Hund's rules stop at highest spin: which of these lies lowest takes a calculation")
+            }
         };
         GroundEntry {
             terms: ground.terms.iter().map(|&at| terms[at].symbol(self.group)).collect(),
@@ -375,10 +378,11 @@ impl Stage<'_> {
         let right = right.as_ref().unwrap_or(&left);
         let irreps = self.group.irreps();
         let entry = |rule: &states::Transition| {
-            let operator = |which: &[usize], of: fn(&crate::group::functions::Functions) -> &Vec<String>| OperatorEntry {
-                allowed: rule.spin_allowed && !which.is_empty(),
-                components: single_names(which.iter().flat_map(|&irrep| of(&irreps[irrep].functions))),
-            };
+            let operator =
+                |which: &[usize], of: fn(&crate::group::functions::Functions) -> &Vec<String>| OperatorEntry {
+                    allowed: rule.spin_allowed && !which.is_empty(),
+                    components: single_names(which.iter().flat_map(|&irrep| of(&irreps[irrep].functions))),
+                };
             let borrowed = single_names(rule.borrowed.iter().flat_map(|&irrep| &irreps[irrep].functions.linear));
             TransitionEntry {
                 from: left[rule.from].symbol(self.group),
@@ -451,9 +455,8 @@ fn quantum_number(name: DoubleName) -> Option<String> {
         DoubleName::Level { twice_j, .. } | DoubleName::Spinor { twice_j, gamma: None, .. } => Some(half(twice_j)),
         DoubleName::Single(IrrepName::Atomic { l, .. }) => Some(l.to_string()),
         DoubleName::Single(IrrepName::Linear { m, reflection, .. }) => {
-            let sign = reflection.map_or("", |sign| {
-                if sign == crate::group::irrep_name::Reflection::Plus { "+" } else { "-" }
-            });
+            let sign = reflection
+                .map_or("", |sign| if sign == crate::group::irrep_name::Reflection::Plus { "+" } else { "-" });
             Some(format!("{m}{sign}"))
         }
         _ => None,

@@ -3,8 +3,8 @@
 //! Not here: which terms they give (`states::terms`).
 
 use super::error::StatesError;
-use crate::group::{GroupName, IrrepName, PointGroup};
 use crate::group::irrep_name::Parity;
+use crate::group::{GroupName, IrrepName, PointGroup};
 use std::fmt;
 
 /// Most microstates: characters stay whole to 1e-6 in double precision up to here.
@@ -188,7 +188,8 @@ fn example(group: &PointGroup) -> String {
     if group.name() == GroupName::K {
         return "d^2".to_owned();
     }
-    let largest = group.irreps().iter().max_by_key(|irrep| irrep.dimension);
+    // The first of the largest.
+    let largest = group.irreps().iter().rev().max_by_key(|irrep| irrep.dimension);
     largest.map_or(String::new(), |irrep| format!("{}^2", irrep.name.symbol()))
 }
 

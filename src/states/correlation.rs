@@ -4,8 +4,8 @@
 
 use super::configuration::Configuration;
 use super::error::StatesError;
-use super::terms::{Term, terms};
 use super::spin_orbit::level_in_field;
+use super::terms::{Term, terms};
 use crate::group::irrep_name::Parity;
 use crate::group::products::Decomposition;
 use crate::group::{DoubleGroup, GroupName, IrrepName, PointGroup};
@@ -29,7 +29,12 @@ pub struct Correlation {
 ///
 /// # Errors
 /// [`StatesError::Overfull`] for more than 2(2l + 1) electrons, [`StatesError::BeyondTable`] for shells beyond f.
-pub fn correlation(group: &PointGroup, double: &DoubleGroup, l: u8, electrons: u32) -> Result<Correlation, StatesError> {
+pub fn correlation(
+    group: &PointGroup,
+    double: &DoubleGroup,
+    l: u8,
+    electrons: u32,
+) -> Result<Correlation, StatesError> {
     let atom = PointGroup::standard(GroupName::K)?;
     let shell = atom.orbital_irrep(usize::from(l)).unwrap_or(atom.irreps().len() - 1);
     let free = Configuration::new(&atom, &[(shell, None, electrons)])?;
@@ -39,7 +44,10 @@ pub fn correlation(group: &PointGroup, double: &DoubleGroup, l: u8, electrons: u
     }
     let orbitals = group.decompose(&group.shell_characters(usize::from(l)))?;
     let mut shells: Vec<(usize, Option<u32>)> = Vec::new();
-    for &(irrep, count) in &orbitals {
+    // Largest sets first: t2g before eg.
+    let mut by_size = orbitals.clone();
+    by_size.sort_by_key(|&(irrep, _)| std::cmp::Reverse(group.irreps()[irrep].dimension));
+    for &(irrep, count) in &by_size {
         let count = u32::try_from(count).unwrap_or(1);
         shells.extend((1..=count).map(|number| (irrep, (count > 1).then_some(number))));
     }
@@ -49,8 +57,12 @@ pub fn correlation(group: &PointGroup, double: &DoubleGroup, l: u8, electrons: u
         .collect();
     let mut strong_field = Vec::new();
     for filling in fillings(&places, electrons) {
-        let occupied: Vec<(usize, Option<u32>, u32)> =
-            shells.iter().zip(filling).map(|(&(irrep, number), electrons)| (irrep, number, electrons)).collect();
+        let occupied: Vec<(usize, Option<u32>, u32)> = shells
+            .iter()
+            .zip(filling)
+            .map(|(&(irrep, number), electrons)| (irrep, number, electrons))
+            .filter(|(_, _, electrons)| *electrons > 0)
+            .collect();
         let configuration = Configuration::new(group, &occupied)?;
         let list = terms(group, &configuration)?;
         strong_field.push((configuration, list));
@@ -94,7 +106,10 @@ fn collected(terms: impl Iterator<Item = Term>) -> Vec<Term> {
     for term in terms {
         *counts.entry((std::cmp::Reverse(term.multiplicity), term.irrep)).or_insert(0) += term.count;
     }
-    counts.into_iter().map(|((multiplicity, irrep), count)| Term { multiplicity: multiplicity.0, irrep, count }).collect()
+    counts
+        .into_iter()
+        .map(|((multiplicity, irrep), count)| Term { multiplicity: multiplicity.0, irrep, count })
+        .collect()
 }
 
 /// Every way to put n electrons into shells with so many places, the first shells fullest first.

@@ -30,9 +30,7 @@ pub fn of_irrep(group: &PointGroup, irrep: usize) -> Result<JahnTeller, StatesEr
         IrrepName::Atomic { .. } => Ok(JahnTeller::Atom),
         _ if group.irreps()[irrep].dimension == 1 => Ok(JahnTeller::Stable),
         IrrepName::Linear { .. } => Ok(JahnTeller::Linear),
-        IrrepName::Mulliken { .. } => {
-            Ok(without_symmetric(group.symmetric_square(irrep)?, group.totally_symmetric()))
-        }
+        IrrepName::Mulliken { .. } => Ok(without_symmetric(group.symmetric_square(irrep)?, group.totally_symmetric())),
     }
 }
 
