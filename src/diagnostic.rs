@@ -73,7 +73,7 @@ pub fn draw(finding: &Diagnostic, file: &str, bytes: &[u8]) -> String {
         "^".repeat(carets)
     );
     if let Some(help) = &finding.help {
-        text.push_str(&format!("\n{margin} = help: {help}"));
+        text.extend(["\n", &margin, " = help: ", help]);
     }
     text
 }

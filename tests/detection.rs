@@ -1,10 +1,12 @@
 //! Groups found in sets of sites, against geometries built from formulas: every family to n = 30, molecules named in common practice, noise.
 
+#![expect(clippy::unwrap_used, reason = "helpers of tests may fail loudly")]
+
 #[path = "support/geometries.rs"]
 mod geometries;
 
-use geometries::{ANGSTROM, Random, disturbed, generic, molecule, molecules, scrambled, sites_of_group};
-use nalgebra::{Matrix3, Point3, Vector3};
+use geometries::{ANGSTROM, Random, disturbed, generic, molecule, molecules, sandwich, scrambled, sites_of_group};
+use nalgebra::{Matrix3, Point3, Rotation3, Vector3};
 use orbsieve::group::{DetectError, DetectSettings, Detection, GroupName, Site, Symmetry, detect};
 use proptest::prelude::{ProptestConfig, prop_assert, prop_assert_eq, proptest};
 
@@ -63,8 +65,9 @@ fn every_family_is_found_exactly_in_any_position() {
         let detection = found(&sites);
         assert_eq!(detection.ladder[0].name, name, "{name}");
         assert!(detection.ladder[0].deviation.max < 1e-9, "{name}: {:e}", detection.ladder[0].deviation.max);
-        let symmetry = placed(&sites, 0.01 * ANGSTROM);
-        assert_eq!(symmetry.group.name(), name, "{name} within the default tolerance");
+        let rung = detection.at(0.01 * ANGSTROM);
+        assert_eq!(rung.name, name, "{name} within the default tolerance");
+        let symmetry = detection.place(rung, &sites, None).unwrap();
         assert_consistent(&sites, &symmetry, &name.to_string());
     }
 }
@@ -103,7 +106,7 @@ fn rotational_symmetry_numbers() {
 #[test]
 fn noise_is_reported_as_deviation_and_hides_the_group_below_it() {
     let mut random = Random::new(3);
-    for text in ["water", "benzene", "six ligands", "tetrahedron MX4", "sandwich staggered", "ethane staggered"] {
+    for text in ["naphthalene", "benzene", "six ligands", "tetrahedron MX4", "sandwich staggered", "ethane staggered"] {
         let exact = molecule(text);
         let group = found(&exact).ladder[0].name;
         for epsilon in [1e-8, 1e-6, 1e-4, 1e-2, 0.1 * ANGSTROM, 0.2 * ANGSTROM] {
@@ -125,6 +128,41 @@ fn noise_is_reported_as_deviation_and_hides_the_group_below_it() {
             }
             let symmetry = detection.place(rung, &sites, None).unwrap();
             assert_consistent(&sites, &symmetry, text);
+        }
+    }
+}
+
+/// Mean square distance of the sites from their mean over the operations, all turned by a small rotation.
+fn mean_square(sites: &[Site], symmetry: &Symmetry, turn: &Matrix3<f64>) -> f64 {
+    let about = |at: usize| sites[at].position - symmetry.frame.centre;
+    let order = symmetry.group.order();
+    let mut sum = 0.0;
+    for at in 0..sites.len() {
+        let images = (0..order).map(|element| {
+            let matrix = turn * symmetry.matrix(element) * turn.transpose();
+            matrix.transpose() * about(symmetry.permutations[element][at])
+        });
+        sum += (images.sum::<Vector3<f64>>() / order as f64 - about(at)).norm_squared();
+    }
+    sum / sites.len() as f64
+}
+
+#[test]
+fn deviation_is_from_the_nearest_symmetric_arrangement() {
+    let mut random = Random::new(12);
+    for text in ["benzene", "six ligands", "ethane skew", "water"] {
+        let sites = scrambled(&disturbed(&molecule(text), 0.2, &mut random), &mut random);
+        let group = found(&molecule(text)).ladder[0].name;
+        let detection = found(&sites);
+        let rung = detection.ladder.iter().find(|rung| rung.name == group).unwrap();
+        let symmetry = detection.place(rung, &sites, None).unwrap();
+        let here = mean_square(&sites, &symmetry, &Matrix3::identity());
+        assert!((here.sqrt() - symmetry.deviation.rms).abs() < 1e-12, "{text}");
+        for axis in [Vector3::x_axis(), Vector3::y_axis(), Vector3::z_axis()] {
+            let turned = |angle| mean_square(&sites, &symmetry, Rotation3::from_axis_angle(&axis, angle).matrix());
+            let slope = (turned(1e-4) - turned(-1e-4)) / 2e-4;
+            assert!(slope.abs() < 1e-8, "{text}: turning about {axis:?} changes the mean square by {slope:e} a radian");
+            assert!(turned(0.01) > here && turned(-0.01) > here, "{text}: a minimum");
         }
     }
 }
@@ -161,6 +199,18 @@ fn stretched_octahedron_is_d4h_then_oh() {
         let rms = (delta * delta * (2.0 * 4.0 / 9.0 + 4.0 / 9.0) / 7.0).sqrt();
         assert!((detection.ladder[1].deviation.rms - rms).abs() < 1e-9);
     }
+}
+
+#[test]
+fn slightly_twisted_sandwich_is_d5_then_eclipsed() {
+    let degrees: f64 = 1.0;
+    let sites = scrambled(&sandwich(degrees), &mut Random::new(9));
+    let detection = found(&sites);
+    let names: Vec<String> = detection.ladder.iter().take(2).map(|rung| rung.name.to_string()).collect();
+    assert_eq!(names, ["D5", "D5h"]);
+    // Both rings meet half way: the outermost sites, 4.33 from the axis, lie off the mean by the sine of half the twist.
+    let expected = 4.33 * (degrees.to_radians() / 2.0).sin();
+    assert!((detection.ladder[1].deviation.max - expected).abs() < 1e-9);
 }
 
 #[test]
@@ -231,9 +281,11 @@ fn axes_follow_the_convention() {
         let atoms = seen(&turned("planar XY3"), 1);
         assert_eq!(atoms.iter().filter(|x| x.z.abs() < ON).count(), 3, "z of XY3 across the plane");
         assert_eq!(atoms.iter().filter(|x| on(x, 0) && x.x > 0.0).count(), 1, "x of XY3 along a bond");
-        // Not planar: two of the four hydrogens on silicon-like tops lie in yz, the plane with more atoms.
         let heavy = seen(&turned("bent XY2 with two Z across"), 1);
         assert!(heavy.iter().all(|x| x.x.abs() < ON), "the plane with most atoms is yz");
+        let centres = seen(&turned("two bridges"), 0);
+        // Two axes pass through two atoms each and no bond: the one through atoms of the first kind is taken.
+        assert!(centres.iter().all(|x| on(x, 2)), "z of two bridged centres through these");
     }
 }
 
@@ -248,6 +300,9 @@ fn convention_tells_the_other_choice() {
     let swaps: Vec<String> =
         symmetry.other_settings[0].swaps.iter().map(|(here, there)| format!("{here} {there}")).collect();
     assert_eq!(swaps, ["B1g B2g", "B2g B1g", "B1u B2u", "B2u B1u"]);
+    let tied = placed(&molecule("tetrahedral MX2Y2"), 1e-3);
+    assert!(tied.frame.convention.contains("do not tell"), "{}", tied.frame.convention);
+    assert!(!symmetry.frame.convention.contains("do not tell"));
     assert!(placed(&molecule("planar XY3"), 1e-3).other_settings.is_empty());
     assert_eq!(placed(&molecule("water"), 1e-3).other_settings.len(), 1);
 }
@@ -277,8 +332,101 @@ fn many_sites_take_little_time() {
         assert_eq!(found(&sites).ladder[0].name, GroupName::C1);
         eprintln!("{n} sites without symmetry: {:?}", start.elapsed());
     }
+    // Thousands of like sites on a sphere: searched as far as that is feasible, and it is said how far.
+    let n = 8000;
+    let places = (0..n).map(|k| {
+        let (height, angle) = (1.0 - f64::from(2 * k + 1) / f64::from(n), 2.399_963 * f64::from(k));
+        let across = (1.0 - height * height).sqrt();
+        Point3::from(Vector3::new(across * angle.cos(), across * angle.sin(), height) * 65.0)
+    });
+    let sphere: Vec<Site> = places.map(|position| Site { kind: 0, position }).collect();
+    let detection = found(&sphere);
+    // The spiral has one half turn that exchanges its ends.
+    assert_eq!(detection.ladder[0].name, GroupName::Cn(2));
+    assert!(detection.searched_bohr < 0.3 * ANGSTROM);
     // Orders of magnitude only: debug builds on a loaded machine.
     assert!(start.elapsed().as_secs() < 60);
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(400))]
+
+    /// Sites on a coarse grid (many coincidences, lines, planes, equal distances), some shifted a little: every rung holds what it says.
+    #[test]
+    fn any_sites_give_true_groups(
+        places in proptest::collection::vec((0_u32..2, -2_i8..3, -2_i8..3, -2_i8..3), 1..14),
+        scale in 0.4_f64..4.0,
+        shift in 0_usize..4,
+    ) {
+        let mut sites: Vec<Site> = places
+            .iter()
+            .map(|&(kind, x, y, z)| Site { kind, position: Point3::from(Vector3::new(x, y, z).map(f64::from) * scale) })
+            .collect();
+        sites[0].position.x += [0.0, 1e-7, 1e-4, 0.1][shift];
+        match detect(&sites, &DetectSettings::default()) {
+            Ok(detection) => for rung in &detection.ladder {
+                let symmetry = detection.place(rung, &sites, None).unwrap();
+                assert_consistent(&sites, &symmetry, &rung.name.to_string());
+            },
+            Err(error) => prop_assert!(matches!(error, DetectError::SamePlace { .. }), "{}", error),
+        }
+    }
+}
+
+/// The number of permutations that keep kinds and all distances: found by trying all, for a few sites.
+fn n_isometries(sites: &[Site]) -> usize {
+    fn extended(sites: &[Site], images: &mut Vec<usize>) -> usize {
+        let next = images.len();
+        if next == sites.len() {
+            return 1;
+        }
+        let mut count = 0;
+        for image in 0..sites.len() {
+            let apart = |a: usize, b: usize| (sites[a].position - sites[b].position).norm();
+            let fits = !images.contains(&image)
+                && sites[image].kind == sites[next].kind
+                && images.iter().enumerate().all(|(at, &other)| (apart(at, next) - apart(other, image)).abs() < 1e-6);
+            if fits {
+                images.push(image);
+                count += extended(sites, images);
+                images.pop();
+            }
+        }
+        count
+    }
+    extended(sites, &mut Vec::new())
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(400))]
+
+    /// The exact group of a few sites has as many operations as there are permutations that keep all distances, and twice as many in
+    /// a plane, where the reflection in it moves nothing.
+    #[test]
+    fn no_operation_is_missed(
+        places in proptest::collection::vec((0_u32..2, -1_i8..2, -1_i8..2, -1_i8..2), 3..9),
+        seed in 0_u64..1000,
+    ) {
+        let sites: Vec<Site> = places
+            .iter()
+            .map(|&(kind, x, y, z)| Site { kind, position: Point3::from(Vector3::new(x, y, z).map(f64::from) * 2.5) })
+            .collect();
+        let sites = scrambled(&sites, &mut Random::new(seed));
+        if let Ok(detection) = detect(&sites, &DetectSettings::default()) {
+            let centre = detection.centre;
+            let moments: Matrix3<f64> = sites
+                .iter()
+                .map(|site| (site.position - centre) * (site.position - centre).transpose())
+                .sum();
+            let rank = moments.rank(1e-6);
+            let expected = match rank {
+                3 => Some(n_isometries(&sites)),
+                2 => Some(2 * n_isometries(&sites)),
+                _ => None,
+            };
+            prop_assert_eq!(detection.ladder[0].order(), expected, "{}", detection.ladder[0].name);
+        }
+    }
 }
 
 proptest! {
@@ -297,7 +445,8 @@ proptest! {
         prop_assert!((before.deviation.max - after.deviation.max).abs() < 1e-9);
         prop_assert!((before.deviation.rms - after.deviation.rms).abs() < 1e-9);
         prop_assert_eq!(&before.frame.convention, &after.frame.convention);
-        // x across a linear molecule is free.
+        // Frames that the group itself connects show the sites alike to within what they deviate; x across a linear molecule is free.
+        let limit = 2.0 * before.deviation.max + 1e-6;
         let linear = before.group.is_continuous();
         for site in &sites {
             let place = before.standard_coordinates(&site.position);
@@ -307,7 +456,7 @@ proptest! {
                     apart.x = 0.0;
                     apart.y = 0.0;
                 }
-                other.kind == site.kind && apart.norm() < 1e-6
+                other.kind == site.kind && apart.norm() < limit
             });
             prop_assert!(again, "{}: {:?} is nowhere", text, place);
         }

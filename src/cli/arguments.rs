@@ -105,6 +105,9 @@ pub struct Table {
     /// The double group instead: irreps of half-integer spin in both notations, splitting of J levels
     #[arg(long)]
     pub double: bool,
+    /// Only the selection rules between two irreps, such as --transition t2g eg
+    #[arg(long, num_args = 2, value_names = ["FROM", "TO"])]
+    pub transition: Option<Vec<String>>,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

@@ -8,7 +8,7 @@ use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
 use crate::report::text::{self, TextOptions};
-use crate::report::{csv, table};
+use crate::report::{csv, rule, table};
 use crate::wavefunction;
 use std::io::Write;
 use std::path::Path;
@@ -85,6 +85,16 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
     use_threads(&arguments.common)?;
     if arguments.double {
         return super::states::double_table(arguments, out);
+    }
+    if let Some([from, to]) = arguments.transition.as_deref() {
+        let document = rule::build(&arguments.group, from, to).map_err(|error| CliError::Usage(error.to_string()))?;
+        let printed = match arguments.common.format {
+            Format::Text => rule::text(&document).into_bytes(),
+            Format::Json => json(&document)?,
+            Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        };
+        output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+        return Ok(Status::Done);
     }
     let document = table::build(&arguments.group).map_err(|error| CliError::Usage(error.to_string()))?;
     let printed = match arguments.common.format {

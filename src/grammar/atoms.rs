@@ -1,4 +1,4 @@
-//! `[Atoms]`, `[CORE]`, `[PSEUDO]`, `[NVAL]` and the like: one atom a line.
+//! `[Atoms]`: one atom a line.
 //!
 //! Not here: which element a name means (`model::elements`).
 
@@ -23,10 +23,10 @@ pub struct RawAtom {
     pub line: Span,
     /// First word.
     pub name: Span,
-    /// Running number, second word.
-    pub number: usize,
-    /// Third word: atomic number, or an effective charge.
-    pub charge: f64,
+    /// Running number, where the line has one.
+    pub number: Option<usize>,
+    /// Atomic number or effective charge, where the line has one.
+    pub charge: Option<f64>,
     /// In the unit of the section.
     pub position: [f64; 3],
 }
@@ -53,59 +53,58 @@ pub fn length_unit(bytes: &[u8], section: &Section, findings: &mut Findings) -> 
 }
 
 /// ```text
-/// atom = name number atomic-number x y z
+/// atom = name [ number atomic-number ] x y z
 /// ```
+/// A line of four words has no number columns. Words behind z are left alone.
 pub fn atoms(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec<RawAtom> {
-    let mut atoms = Vec::new();
-    for line in lines(bytes, section.body.clone()) {
-        let words = words(bytes, line.clone());
-        if words.is_empty() {
-            continue;
-        }
-        if words.len() < 6 {
+    let found = lines(bytes, section.body.clone()).map(|line| words(bytes, line)).filter(|words| !words.is_empty());
+    found.filter_map(|words| atom(bytes, &words, findings)).collect()
+}
+
+fn atom(bytes: &[u8], words: &[Span], findings: &mut Findings) -> Option<RawAtom> {
+    let line = trimmed(words);
+    let (columns, coordinates) = match words {
+        [_, coordinates @ ..] if coordinates.len() == 3 => (None, coordinates),
+        [_, number, charge, coordinates @ ..] if coordinates.len() >= 3 => (Some((number, charge)), coordinates),
+        _ => {
             findings.error(
-                trimmed(&words),
+                line,
                 format!("expected name, number, atomic number, x, y, z; found {} words", words.len()),
-                "each line of [Atoms] has six entries",
+                "each line of [Atoms] has six entries, or four where both numbers are left out",
             );
-            continue;
+            return None;
         }
-        let number = whole(&bytes[words[1].clone()]);
-        if number.is_none() {
-            findings.expected(bytes, words[1].clone(), "the atom's running number");
+    };
+    let mut value = |word: &Span, what: &str| {
+        let found = real(&bytes[word.clone()]);
+        if found.is_none() {
+            findings.expected(bytes, word.clone(), what);
         }
-        let mut value = |at: usize, what: &str| {
-            let found = real(&bytes[words[at].clone()]);
-            if found.is_none() {
-                findings.expected(bytes, words[at].clone(), what);
-            }
-            found
-        };
-        let charge = value(2, "an atomic number");
-        let position = [value(3, "x, a real number"), value(4, "y, a real number"), value(5, "z, a real number")];
-        if let (Some(number), Some(charge), [Some(x), Some(y), Some(z)]) = (number, charge, position) {
-            atoms.push(RawAtom { line, name: words[0].clone(), number, charge, position: [x, y, z] });
-        }
+        found
+    };
+    let charge = columns.map(|(_, word)| value(word, "an atomic number"));
+    let position = [
+        value(&coordinates[0], "x, a real number"),
+        value(&coordinates[1], "y, a real number"),
+        value(&coordinates[2], "z, a real number"),
+    ];
+    let number = columns.map(|(word, _)| (word, whole(&bytes[word.clone()])));
+    if let Some((word, None)) = number {
+        findings.expected(bytes, word.clone(), "the atom's running number");
+        return None;
     }
-    atoms
+    let [Some(x), Some(y), Some(z)] = position else { return None };
+    let charge = match charge {
+        Some(None) => return None,
+        Some(charge) => charge,
+        None => None,
+    };
+    let number = number.and_then(|(_, number)| number);
+    Some(RawAtom { line, name: words[0].clone(), number, charge, position: [x, y, z] })
 }
 
 /// The words' extent.
+#[must_use]
 pub fn trimmed(words: &[Span]) -> Span {
     words.first().map_or(0, |word| word.start)..words.last().map_or(0, |word| word.end)
-}
-
-/// ```text
-/// core = atom-number ":" electrons | element ":" electrons
-/// ```
-/// Returns (first word, electrons); lines of another form are passed over.
-pub fn cores(bytes: &[u8], section: &Section) -> Vec<(Span, usize)> {
-    lines(bytes, section.body.clone())
-        .filter_map(|line| {
-            let colon = memchr::memchr(b':', &bytes[line.clone()])? + line.start;
-            let who = words(bytes, line.start..colon).into_iter().next()?;
-            let count = words(bytes, colon + 1..line.end).into_iter().next()?;
-            Some((who, whole(&bytes[count])?))
-        })
-        .collect()
 }

@@ -58,6 +58,8 @@ pub fn shells(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec<R
     let mut shells = Vec::new();
     let mut atom: Option<(usize, Span)> = None;
     let mut open: Option<Open> = None;
+    // Below a shell line that cannot be read its primitives are no mistakes of their own.
+    let mut passing_over = false;
     for line in lines(bytes, section.body.clone()) {
         let words = words(bytes, line.clone());
         let Some(first) = words.first().cloned() else { continue };
@@ -83,11 +85,14 @@ pub fn shells(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec<R
                 atom = Some((0, line.clone()));
             }
             open = header(bytes, &words, l, sp, findings);
+            passing_over = open.is_none();
         } else if let Some(number) = whole(&bytes[first.clone()]).filter(|_| words.len() <= 2) {
             atom = Some((number, first));
+            passing_over = false;
         } else if bytes[first.clone()].iter().all(u8::is_ascii_alphabetic) {
             findings.expected(bytes, first, "a shell label: s, p, d, f, g, h, i or sp");
-        } else {
+            passing_over = true;
+        } else if !passing_over {
             findings.expected(bytes, trimmed(&words), "an atom number or a shell label");
         }
     }
@@ -148,12 +153,11 @@ fn primitive(bytes: &[u8], words: &[Span], shell: &mut Open, findings: &mut Find
         shell.sound = false;
     }
     for (number, word) in numbers.iter_mut().zip(words.iter().take(wanted)) {
-        match real(&bytes[word.clone()]) {
-            Some(value) => *number = value,
-            None => {
-                findings.expected(bytes, word.clone(), "a real number");
-                shell.sound = false;
-            }
+        if let Some(value) = real(&bytes[word.clone()]) {
+            *number = value;
+        } else {
+            findings.expected(bytes, word.clone(), "a real number");
+            shell.sound = false;
         }
     }
     if shell.sound && numbers[0] <= 0.0 {

@@ -5,6 +5,7 @@
 
 pub mod atoms;
 pub mod basis;
+pub mod cores;
 pub mod numbers;
 pub mod orbitals;
 pub mod sections;
@@ -14,15 +15,20 @@ pub mod xyz;
 use crate::diagnostic::{Diagnostic, Severity, Span};
 use atoms::{LengthUnit, RawAtom};
 use basis::RawShell;
+use cores::RawCore;
 use orbitals::RawOrbital;
 use sections::Section;
 
 /// Findings in the order in which they are met.
 #[derive(Debug, Clone, Default)]
-pub struct Findings(pub Vec<Diagnostic>);
+pub struct Findings {
+    kept: Vec<Diagnostic>,
+    /// Errors, warnings met so far, kept or not.
+    met: [usize; 2],
+}
 
-/// More errors than this help nobody; the rest is counted.
-const ERROR_LIMIT: usize = 20;
+/// More findings of one severity than this help nobody; the rest is counted.
+const KEPT_LIMIT: usize = 20;
 /// Longest piece of the input that a message repeats.
 const SHOWN: usize = 40;
 
@@ -45,6 +51,8 @@ impl Findings {
             Some("Molden files write a decimal point, not a comma".to_owned())
         } else if text.contains("**") {
             Some("a number was too wide for its field; ask the engine for another format".to_owned())
+        } else if ["nan", "inf"].iter().any(|word| text.to_lowercase().contains(word)) && what.contains("number") {
+            Some("only finite numbers have a meaning here; the calculation may have failed".to_owned())
         } else {
             None
         };
@@ -53,26 +61,63 @@ impl Findings {
 
     /// Notes a finding unless there are too many of its kind already.
     pub fn push(&mut self, severity: Severity, span: Span, message: String, help: Option<String>) {
-        let errors = self.0.iter().filter(|finding| finding.severity == severity).count();
-        if errors < ERROR_LIMIT {
-            self.0.push(Diagnostic { severity, span, message, help });
+        let met = &mut self.met[usize::from(severity == Severity::Warning)];
+        *met += 1;
+        if *met <= KEPT_LIMIT {
+            self.kept.push(Diagnostic { severity, span, message, help });
+        }
+    }
+
+    /// Takes over all findings of another collection.
+    pub fn append(&mut self, other: Self) {
+        let kept = |severity| other.kept.iter().filter(|finding| finding.severity == severity).count();
+        let (errors, warnings) = (kept(Severity::Error), kept(Severity::Warning));
+        self.met[0] += other.met[0] - errors;
+        self.met[1] += other.met[1] - warnings;
+        for finding in other.kept {
+            self.push(finding.severity, finding.span, finding.message, finding.help);
         }
     }
 
     /// Whether any finding is an error.
     #[must_use]
     pub fn any_error(&self) -> bool {
-        self.0.iter().any(|finding| finding.severity == Severity::Error)
+        self.met[0] > 0
+    }
+
+    /// Whether there is nothing to tell.
+    #[must_use]
+    pub fn is_empty(&self) -> bool {
+        self.met == [0, 0]
+    }
+
+    /// The findings in the order of the file; the last ones tell how many were not kept.
+    #[must_use]
+    pub fn into_sorted(mut self) -> Vec<Diagnostic> {
+        self.kept.sort_by_key(|finding| (finding.span.start, finding.severity));
+        let end = self.kept.last().map_or(0, |finding| finding.span.end);
+        for (severity, word, met) in
+            [(Severity::Error, "errors", self.met[0]), (Severity::Warning, "warnings", self.met[1])]
+        {
+            let shown = self.kept.iter().filter(|finding| finding.severity == severity).count();
+            if met > shown {
+                let message = format!("{} more {word} are not shown", met - shown);
+                self.kept.push(Diagnostic { severity, span: end..end, message, help: None });
+            }
+        }
+        self.kept
     }
 }
 
-/// A tag such as `[5D7F]`: for each degree from d up whether it says pure.
+/// A tag such as `[5D7F]`: pure (true) or Cartesian by degree.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Tag {
     /// Where it stands.
     pub span: Span,
-    /// (degree, pure).
-    pub says: Vec<(usize, bool)>,
+    /// What the tag says outright.
+    pub says: &'static [(usize, bool)],
+    /// What it says of higher degrees that have no tag of their own.
+    pub implies: &'static [(usize, bool)],
 }
 
 /// What a Molden file says, section by section.
@@ -94,8 +139,10 @@ pub struct RawMolden {
     pub orbitals: Vec<RawOrbital>,
     /// Where `[MO]` stands.
     pub orbitals_header: Option<Span>,
-    /// `[CORE]`: atom number or element, core electrons.
-    pub cores: Vec<(Span, usize)>,
+    /// `[CORE]`, `[PSEUDO]`, `[NVAL]`.
+    pub cores: Vec<RawCore>,
+    /// Where the first section on normal modes stands.
+    pub modes_header: Option<Span>,
     /// `[FREQ]`.
     pub frequencies: Vec<f64>,
     /// `[INT]`.
@@ -107,10 +154,9 @@ pub struct RawMolden {
 }
 
 /// Sections that carry nothing for this program.
-const SILENT: [&str; 17] = [
+const SILENT: [&str; 15] = [
     "N_ATOMS",
     "CHARGE",
-    "NVAL",
     "CELL",
     "MOLPRO VARIABLES",
     "PROGRAM",
@@ -122,27 +168,30 @@ const SILENT: [&str; 17] = [
     "N_FREQ",
     "NATOM",
     "RMASS",
-    "PSEUDO",
     "FR-MASS",
     "OPERATORS",
 ];
 
-/// What a tag says, None when the name is no tag.
-fn tag(name: &str) -> Option<Vec<(usize, bool)>> {
+/// Degree, and whether it is pure.
+type Kinds = &'static [(usize, bool)];
+
+/// What a tag says and what it implies; None when the name is no tag.
+fn tag(name: &str) -> Option<(Kinds, Kinds)> {
     Some(match name {
-        "5D" | "5D7F" => vec![(2, true), (3, true)],
-        "5D10F" => vec![(2, true), (3, false)],
-        "7F" => vec![(3, true)],
-        "6D7F" => vec![(2, false), (3, true)],
-        "6D" => vec![(2, false)],
-        "6D10F" => vec![(2, false), (3, false)],
-        "10F" => vec![(3, false)],
-        "9G" => vec![(4, true), (5, true), (6, true)],
-        "15G" => vec![(4, false)],
-        "11H" => vec![(5, true)],
-        "21H" => vec![(5, false)],
-        "13I" => vec![(6, true)],
-        "28I" => vec![(6, false)],
+        "5D" => (&[(2, true)], &[(3, true)]),
+        "5D7F" => (&[(2, true), (3, true)], &[]),
+        "5D10F" => (&[(2, true), (3, false)], &[]),
+        "7F" => (&[(3, true)], &[]),
+        "6D" => (&[(2, false)], &[]),
+        "6D7F" => (&[(2, false), (3, true)], &[]),
+        "6D10F" => (&[(2, false), (3, false)], &[]),
+        "10F" => (&[(3, false)], &[]),
+        "9G" => (&[(4, true)], &[(5, true), (6, true)]),
+        "15G" => (&[(4, false)], &[]),
+        "11H" => (&[(5, true)], &[]),
+        "21H" => (&[(5, false)], &[]),
+        "13I" => (&[(6, true)], &[]),
+        "28I" => (&[(6, false)], &[]),
         _ => return None,
     })
 }
@@ -183,6 +232,9 @@ pub fn read(bytes: &[u8]) -> (RawMolden, Findings) {
 
 fn read_section(bytes: &[u8], section: &Section, raw: &mut RawMolden, findings: &mut Findings) {
     let name = section.name.as_str();
+    if matches!(name, "FREQ" | "FR-COORD" | "FR-NORM-COORD") && raw.modes_header.is_none() {
+        raw.modes_header = Some(section.header.clone());
+    }
     match name {
         "MOLDEN FORMAT" | "TITLE" => {
             // The title may also stand without its section, right below the first line.
@@ -207,14 +259,14 @@ fn read_section(bytes: &[u8], section: &Section, raw: &mut RawMolden, findings: 
             raw.orbitals = orbitals::orbitals(bytes, section, findings);
             raw.orbitals_header = Some(section.header.clone());
         }
-        "CORE" => raw.cores = atoms::cores(bytes, section),
+        "CORE" | "PSEUDO" | "NVAL" => raw.cores.extend(cores::cores(bytes, section, findings)),
         "FREQ" => raw.frequencies = vibrations::column(bytes, section, findings),
         "INT" => raw.intensities = vibrations::column(bytes, section, findings),
         "FR-COORD" => raw.mode_atoms = vibrations::coordinates(bytes, section, findings),
         "FR-NORM-COORD" => raw.displacements = vibrations::displacements(bytes, section, findings),
         name if SILENT.contains(&name) => {}
         name => match tag(name) {
-            Some(says) => raw.tags.push(Tag { span: section.header.clone(), says }),
+            Some((says, implies)) => raw.tags.push(Tag { span: section.header.clone(), says, implies }),
             None => findings.warning(
                 section.header.clone(),
                 format!("section [{name}] is not known and is passed over"),

@@ -5,7 +5,7 @@
 use nom::branch::alt;
 use nom::bytes::complete::{take_while, take_while1};
 use nom::character::complete::{digit1, one_of};
-use nom::combinator::{opt, recognize};
+use nom::combinator::{opt, recognize, verify};
 use nom::{IResult, Parser};
 use std::ops::Range;
 
@@ -52,27 +52,41 @@ pub fn words(bytes: &[u8], line: Range<usize>) -> Vec<Range<usize>> {
 }
 
 /// ```text
-/// real = [ sign ] ( digits [ "." [ digits ] ] | "." digits ) [ ( "e" | "E" | "d" | "D" ) [ sign ] digits ]
+/// real     = [ sign ] mantissa [ exponent ]
+/// mantissa = digits [ "." [ digits ] ] | "." digits
+/// exponent = ( "e" | "E" | "d" | "D" ) [ sign ] digits | sign digits
 /// ```
+/// The exponent without a letter is Fortran's way to fit three digits in: `0.25-101`. It needs a point before it.
 fn real_text(input: &[u8]) -> IResult<&[u8], &[u8]> {
     let sign = || opt(one_of("+-"));
     let mantissa = alt((
         recognize((digit1, opt((nom::character::complete::char('.'), take_while(|byte: u8| byte.is_ascii_digit()))))),
         recognize((nom::character::complete::char('.'), take_while1(|byte: u8| byte.is_ascii_digit()))),
     ));
-    let exponent = opt((one_of("eEdD"), sign(), digit1));
-    recognize((sign(), mantissa, exponent)).parse(input)
+    let (rest, text) = recognize((sign(), mantissa)).parse(input)?;
+    let lettered = recognize((one_of("eEdD"), sign(), digit1));
+    let bare = verify(recognize((one_of("+-"), digit1)), |_: &[u8]| text.contains(&b'.'));
+    let (rest, _) = opt(alt((lettered, bare))).parse(rest)?;
+    Ok((rest, &input[..input.len() - rest.len()]))
+}
+
+/// The text with `e` before its exponent, whatever stands there; None where it is plain already.
+fn with_letter(text: &[u8]) -> Option<Vec<u8>> {
+    if text.iter().any(|byte| matches!(byte, b'e' | b'E')) {
+        return None;
+    }
+    let at = text.iter().skip(1).position(|byte| matches!(byte, b'd' | b'D' | b'+' | b'-'))? + 1;
+    let exponent = text[at..].strip_prefix(b"d").or_else(|| text[at..].strip_prefix(b"D")).unwrap_or(&text[at..]);
+    Some([&text[..at], b"e", exponent].concat())
 }
 
 /// A finite real number and what follows it; None when none stands here.
 #[must_use]
 pub fn leading_real(input: &[u8]) -> Option<(f64, &[u8])> {
     let (rest, text) = real_text(input).ok()?;
-    let value: f64 = if text.iter().any(|byte| matches!(byte, b'd' | b'D')) {
-        let plain: Vec<u8> = text.iter().map(|byte| if matches!(byte, b'd' | b'D') { b'e' } else { *byte }).collect();
-        fast_float2::parse(&plain).ok()?
-    } else {
-        fast_float2::parse(text).ok()?
+    let value: f64 = match with_letter(text) {
+        Some(plain) => fast_float2::parse(&plain).ok()?,
+        None => fast_float2::parse(text).ok()?,
     };
     value.is_finite().then_some((value, rest))
 }
@@ -102,10 +116,12 @@ mod tests {
             ("+3.", 3.0),
             ("1.0d0", 1.0),
             ("-0.5e+1", -5.0),
+            ("0.25-101", 0.25e-101),
+            ("-1.5+10", -1.5e10),
         ] {
             assert_eq!(real(text.as_bytes()), Some(value), "{text}");
         }
-        for text in ["", "0.12,5", "nan", "inf", "1e999", "***", "1.0.0", "--1", "e5", "."] {
+        for text in ["", "0.12,5", "nan", "inf", "1e999", "***", "1.0.0", "--1", "e5", ".", "12-3", "1.0e", "1.0-"] {
             assert_eq!(real(text.as_bytes()), None, "{text}");
         }
     }

@@ -32,7 +32,13 @@ pub struct RawOrbital {
     seen: [bool; 4],
 }
 
-/// Whether anything but blanks stands in the span.
+/// The keys as far as they tell each other apart, and the places of the first three.
+const KEYS: [&[u8]; 4] = [b"sym", b"ene", b"spin", b"occ"];
+const SYM: usize = 0;
+const ENE: usize = 1;
+const SPIN: usize = 2;
+
+/// Whether nothing but blanks stands in the span.
 fn is_empty(bytes: &[u8], span: Span) -> bool {
     bytes[span].iter().all(|&byte| is_blank(byte) || byte == b'\n')
 }
@@ -61,11 +67,15 @@ pub fn orbitals(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec
         let end = memchr(b'\n', &bytes[at..body.end]).map_or(body.end, |step| at + step);
         let key_span = trim(bytes, start..at);
         let key = bytes[key_span.clone()].to_ascii_lowercase();
-        let Some(place) = [&b"sym"[..], b"ene", b"spin", b"occ"].iter().position(|name| key.starts_with(name)) else {
-            findings.expected(bytes, key_span, "one of Sym=, Ene=, Spin=, Occup=");
-            end_of_last = end;
-            continue;
-        };
+        let place = KEYS.iter().position(|name| key.starts_with(name));
+        if place.is_none() {
+            let shown = String::from_utf8_lossy(&key[..key.len().min(40)]).into_owned();
+            findings.warning(
+                key_span,
+                format!("expected one of Sym=, Ene=, Spin=, Occup=; `{shown}=` is passed over"),
+                "the value of a misspelt key is lost",
+            );
+        }
         let numbers_between = !is_empty(bytes, end_of_last..start);
         if found.is_empty() && numbers_between {
             findings.error(
@@ -74,7 +84,7 @@ pub fn orbitals(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec
                 "each orbital opens with its keys",
             );
         }
-        let new = found.last().is_none_or(|last| numbers_between || last.seen[place]);
+        let new = found.last().is_none_or(|last| numbers_between || place.is_some_and(|place| last.seen[place]));
         if new {
             if let Some(last) = found.last_mut() {
                 last.numbers.end = start;
@@ -90,23 +100,32 @@ pub fn orbitals(bytes: &[u8], section: &Section, findings: &mut Findings) -> Vec
             });
         }
         let Some(orbital) = found.last_mut() else { continue };
-        orbital.seen[place] = true;
         orbital.header.end = end;
         orbital.numbers = (end + 1).min(body.end)..body.end;
+        end_of_last = end;
+        let Some(place) = place else { continue };
+        orbital.seen[place] = true;
         let value = trim(bytes, at + 1..end);
         let text = &bytes[value.clone()];
         match place {
-            0 => orbital.symmetry = Some(value),
-            2 if text.eq_ignore_ascii_case(b"alpha") => {}
-            2 if text.eq_ignore_ascii_case(b"beta") => orbital.beta = true,
-            2 => findings.expected(bytes, value, "Alpha or Beta"),
-            place => match real(text) {
-                Some(number) if place == 1 => orbital.energy = Some(number),
+            SYM => orbital.symmetry = Some(value),
+            SPIN if text.eq_ignore_ascii_case(b"alpha") => {}
+            SPIN if text.eq_ignore_ascii_case(b"beta") => orbital.beta = true,
+            SPIN => findings.expected(bytes, value, "Alpha or Beta"),
+            ENE => match real(text) {
+                Some(number) => orbital.energy = Some(number),
+                None if text.starts_with(b"**") => findings.warning(
+                    value,
+                    "the energy was too wide for its field and is lost",
+                    "the orbital is labelled without its energy",
+                ),
+                None => findings.expected(bytes, value, "a real number"),
+            },
+            _ => match real(text) {
                 Some(number) => orbital.occupation = Some(number),
                 None => findings.expected(bytes, value, "a real number"),
             },
         }
-        end_of_last = end;
     }
     if found.is_empty() && !is_empty(bytes, body.clone()) {
         findings.error(
@@ -122,31 +141,37 @@ fn first_line(bytes: &[u8], span: Span) -> Span {
     lines(bytes, span.clone()).find(|line| !is_empty(bytes, line.clone())).unwrap_or(span)
 }
 
+/// An index above the number of functions.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Beyond {
+    /// The first line with one.
+    pub line: Span,
+    /// The largest of the orbital.
+    pub largest: usize,
+}
+
 /// Reads the numbers of one orbital into its row; functions not listed are left at zero.
 ///
-/// The plain form `index value` goes past nom: these lines are nearly all of a file.
-pub fn fill_row(bytes: &[u8], numbers: Span, row: &mut [f64], findings: &mut Findings) {
+/// The plain form `index value` goes past nom: these lines are nearly all of a file. What indices beyond
+/// the row may mean is for the caller to tell, who sees all orbitals.
+pub fn fill_row(bytes: &[u8], numbers: Span, row: &mut [f64], findings: &mut Findings) -> Option<Beyond> {
+    let mut beyond: Option<Beyond> = None;
     let mut seen = vec![0_u64; row.len().div_ceil(64)];
     for line in lines(bytes, numbers) {
         let text = &bytes[line.clone()];
-        let (index, value) = match plain_line(text) {
-            Some(Some(entry)) => entry,
-            Some(None) => continue,
-            None => match odd_line(text) {
-                Some(entry) => entry,
-                None => {
-                    findings.expected(bytes, trim(bytes, line), "a function's index and its coefficient");
-                    continue;
-                }
-            },
+        let Some((index, value)) = plain_line(text).or_else(|| odd_line(text)) else {
+            if !text.iter().all(|&byte| is_blank(byte)) {
+                bad_line(bytes, line, findings);
+            }
+            continue;
         };
+        if index > row.len() {
+            let first = beyond.get_or_insert_with(|| Beyond { line: trim(bytes, line), largest: index });
+            first.largest = first.largest.max(index);
+            continue;
+        }
         let Some(cell) = index.checked_sub(1).and_then(|index| row.get_mut(index)) else {
-            let n = row.len();
-            findings.error(
-                trim(bytes, line),
-                format!("expected an index from 1 to {n}, the number of functions in [GTO]; found {index}"),
-                "shells may be missing from [GTO]: some engines leave out h and higher ones",
-            );
+            findings.expected(bytes, trim(bytes, line), "an index from 1 up and a coefficient");
             continue;
         };
         let (word, bit) = ((index - 1) / 64, 1_u64 << ((index - 1) % 64));
@@ -161,16 +186,29 @@ pub fn fill_row(bytes: &[u8], numbers: Span, row: &mut [f64], findings: &mut Fin
         seen[word] |= bit;
         *cell = value;
     }
+    beyond
 }
 
-/// `Some(None)` for a blank line, None when the line has another form.
-fn plain_line(text: &[u8]) -> Option<Option<(usize, f64)>> {
+/// Points to the coefficient where only that is wrong, else to the whole line.
+fn bad_line(bytes: &[u8], line: Span, findings: &mut Findings) {
+    let line = trim(bytes, line);
+    let number = memchr::memchr2(b' ', b'\t', &bytes[line.clone()])
+        .filter(|&blank| bytes[line.start..line.start + blank].iter().all(u8::is_ascii_digit))
+        .map(|blank| trim(bytes, line.start + blank..line.end))
+        .filter(|number| {
+            !bytes[number.clone()].iter().any(|&byte| is_blank(byte)) && real(&bytes[number.clone()]).is_none()
+        });
+    match number {
+        Some(number) => findings.expected(bytes, number, "a real number"),
+        None => findings.expected(bytes, line, "a function's index and its coefficient"),
+    }
+}
+
+/// None when the line is blank or has another form.
+fn plain_line(text: &[u8]) -> Option<(usize, f64)> {
     let mut at = 0;
     while at < text.len() && is_blank(text[at]) {
         at += 1;
-    }
-    if at == text.len() {
-        return Some(None);
     }
     let digits = at;
     let mut index = 0_usize;
@@ -186,7 +224,7 @@ fn plain_line(text: &[u8]) -> Option<Option<(usize, f64)>> {
     }
     let (value, used) = fast_float2::parse_partial::<f64, _>(&text[at..]).ok()?;
     let plain = value.is_finite() && text[at + used..].iter().all(|&byte| is_blank(byte));
-    plain.then_some(Some((index, value)))
+    plain.then_some((index, value))
 }
 
 /// Fortran exponents, and an index glued to a signed coefficient.
@@ -215,11 +253,11 @@ mod tests {
             ("3 1.0D-02\r", (3, 0.01)),
             ("7\t-.25", (7, -0.25)),
         ] {
-            let read = plain_line(text.as_bytes()).flatten().or_else(|| odd_line(text.as_bytes()));
+            let read = plain_line(text.as_bytes()).or_else(|| odd_line(text.as_bytes()));
             assert_eq!(read, Some(entry), "{text}");
         }
         for text in ["1 ***", "1", "x 1.0", "1 nan", "1 1.0 2.0", "1 1e999"] {
-            assert_eq!(plain_line(text.as_bytes()).flatten().or_else(|| odd_line(text.as_bytes())), None, "{text}");
+            assert_eq!(plain_line(text.as_bytes()).or_else(|| odd_line(text.as_bytes())), None, "{text}");
         }
     }
 }

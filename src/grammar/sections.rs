@@ -44,6 +44,11 @@ pub fn sections(bytes: &[u8]) -> Vec<Section> {
         let Some(close) = memchr::memchr(b']', &bytes[at..reach]).map(|step| at + step) else { continue };
         let name = String::from_utf8_lossy(&bytes[at + 1..close]).trim().to_uppercase();
         if let Some(last) = found.last_mut() {
+            // Behind [Title] a line such as `[Fe(CN)6]4-` is the title, not a section.
+            let untitled = last.name == "TITLE" && bytes[last.body.start..line_start].trim_ascii().is_empty();
+            if untitled && !name.chars().all(|sign| sign.is_ascii_alphanumeric() || " -_".contains(sign)) {
+                continue;
+            }
             last.body.end = line_start;
         }
         found.push(Section {

@@ -12,6 +12,7 @@ use super::numbers::{lines, real, whole, words};
 use crate::diagnostic::Span;
 
 /// The comment line and the atoms of the first frame, positions in ångström.
+#[must_use]
 pub fn read(bytes: &[u8]) -> (Span, Vec<(Span, [f64; 3])>, Findings) {
     let mut findings = Findings::default();
     let mut all = lines(bytes, 0..bytes.len());

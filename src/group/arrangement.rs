@@ -61,7 +61,8 @@ impl Arrangement {
         /// Nearer sites are one place, a ghost on an atom.
         const APART: f64 = 0.5;
         const FACTOR: f64 = 1.45;
-        let nearest: Vec<f64> = self.positions.iter().map(|x| self.distance_to_nearest(x, APART)).collect();
+        let farthest = 2.0 * self.extent();
+        let nearest: Vec<f64> = self.positions.iter().map(|x| self.distance_to_nearest(x, APART, farthest)).collect();
         let mut pairs = Vec::new();
         for (a, x) in self.positions.iter().enumerate() {
             self.cells.visit(x, FACTOR * nearest[a], |b| {
@@ -78,8 +79,7 @@ impl Arrangement {
     }
 
     /// Distance to the nearest site farther away than `apart`; 0 when there is none.
-    fn distance_to_nearest(&self, place: &Vector3<f64>, apart: f64) -> f64 {
-        let farthest = 2.0 * self.extent();
+    fn distance_to_nearest(&self, place: &Vector3<f64>, apart: f64, farthest: f64) -> f64 {
         let mut radius = 2.5;
         loop {
             let mut best = f64::INFINITY;
@@ -181,4 +181,55 @@ impl Cells {
 #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "a few times the number of sites at most")]
 fn numbers_of_cubes(size: &Vector3<f64>, edge: f64) -> [usize; 3] {
     [0, 1, 2].map(|k| (size[k] / edge) as usize + 1)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Places without order, in a box much longer than wide.
+    fn sites(n: u32) -> Vec<Site> {
+        let place = |k: f64| Point3::new(40.0 * (1.3 * k).sin(), 7.0 * (2.9 * k * k).cos(), 3.0 * (0.7 * k).sin());
+        (0..n).map(|k| Site { kind: k % 3, position: place(f64::from(k)) }).collect()
+    }
+
+    #[test]
+    fn cells_find_what_a_search_through_all_finds() {
+        for n in [1, 2, 7, 200] {
+            let arrangement = Arrangement::of(&sites(n));
+            for k in 0..300_u32 {
+                let k = f64::from(k);
+                let place = Vector3::new(50.0 * k.cos(), 10.0 * (1.7 * k).sin(), 5.0 * (0.3 * k).cos());
+                let radius = 0.2 + 0.05 * k;
+                let all = arrangement.positions.iter().zip(&arrangement.kinds).enumerate();
+                let best = all
+                    .filter(|(_, (_, kind))| **kind == 1)
+                    .map(|(at, (x, _))| (at, (x - place).norm()))
+                    .filter(|(_, distance)| *distance <= radius)
+                    .min_by(|a, b| a.1.total_cmp(&b.1));
+                let found = arrangement.nearest(1, &place, radius, None);
+                assert_eq!(found.map(|(at, _)| at), best.map(|(at, _)| at), "{n} sites, place {k}");
+            }
+        }
+    }
+
+    #[test]
+    fn neighbours_are_pairs_that_either_reaches() {
+        let arrangement = Arrangement::of(&sites(150));
+        let positions = &arrangement.positions;
+        let apart = |a: usize, b: usize| (positions[a] - positions[b]).norm();
+        let reach = |a: usize| {
+            let others = (0..150).map(|b| apart(a, b)).filter(|distance| *distance > 0.5);
+            1.45 * others.fold(f64::INFINITY, f64::min)
+        };
+        let mut expected = Vec::new();
+        for a in 0..150 {
+            for b in a + 1..150 {
+                if apart(a, b) > 0.5 && apart(a, b) <= reach(a).max(reach(b)) {
+                    expected.push((a, b));
+                }
+            }
+        }
+        assert_eq!(arrangement.neighbours(), expected);
+    }
 }

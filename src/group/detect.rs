@@ -24,7 +24,7 @@ pub struct DetectSettings {
 }
 
 impl Default for DetectSettings {
-    /// 0.3 Å, about a sixth of the shortest bonds between atoms other than hydrogen.
+    /// 0.3 Å: farther from symmetric than a fifth of a bond, likeness says little.
     fn default() -> Self {
         Self { limit_bohr: 0.3 / 0.529_177_210_903 }
     }
@@ -79,6 +79,7 @@ pub enum DetectError {
 
 /// A group that the sites have to within a deviation.
 #[derive(Debug, Clone, PartialEq)]
+#[non_exhaustive]
 pub struct Rung {
     /// Its name.
     pub name: GroupName,
@@ -161,7 +162,7 @@ fn checked(sites: &[Site]) -> Result<Arrangement, DetectError> {
         return Err(DetectError::NoSites);
     }
     for (site, place) in sites.iter().enumerate() {
-        if let Some(&value) = place.position.iter().find(|value| !(value.abs() <= FARTHEST)) {
+        if let Some(&value) = place.position.iter().find(|value| !(-FARTHEST..=FARTHEST).contains(*value)) {
             return Err(DetectError::Coordinate { site, value, limit: FARTHEST });
         }
     }

@@ -7,6 +7,7 @@
 use super::arrangement::Arrangement;
 use super::detect::Rung;
 use super::error::GroupError;
+use super::fit::intertwiner;
 use super::identify::standard_frames;
 use super::ladder::nearest;
 use super::linear::axes_along;
@@ -32,29 +33,29 @@ pub(super) fn place(
     let group = PointGroup::standard(rung.name)?;
     let matrices: Vec<Matrix3<f64>> = rung.operations.iter().map(|operation| operation.matrix).collect();
     let neighbours;
-    let bonds = match bonds {
-        Some(bonds) => bonds,
-        None => {
-            let places = rung.positions.iter().map(|x| Site { kind: 0, position: Point3::from(*x) });
-            neighbours = Arrangement::of(&places.collect::<Vec<_>>()).neighbours();
-            &neighbours
-        }
+    let bonds = if let Some(bonds) = bonds {
+        bonds
+    } else {
+        let places = rung.positions.iter().map(|x| Site { kind: 0, position: Point3::from(*x) });
+        neighbours = Arrangement::of(&places.collect::<Vec<_>>()).neighbours();
+        &neighbours
     };
     let scene = Scene { name: rung.name, matrices: &matrices, sites, positions: &rung.positions, bonds };
     let axes = scene.chosen(scene.candidates()?);
-    let permutations = group
-        .elements()
-        .iter()
-        .map(|element| {
-            let sought = axes.transpose() * element.operation.matrix() * axes;
-            let found = rung.operations.get(nearest(&matrices, &sought));
-            found.map_or_else(Vec::new, |found| found.permutation.iter().map(|&image| image as usize).collect())
-        })
-        .collect();
+    // Which operation each element is, and the axes made exact for all of them.
+    let standard: Vec<Matrix3<f64>> = group.elements().iter().map(|element| *element.operation.matrix()).collect();
+    let order: Vec<usize> = standard.iter().map(|s| nearest(&matrices, &(axes.transpose() * s * axes))).collect();
+    let ordered: Vec<Matrix3<f64>> = order.iter().map(|&at| matrices[at]).collect();
+    let axes = intertwiner(&axes, &ordered, &standard).unwrap_or(axes);
+    let permutations =
+        order.iter().map(|&at| rung.operations[at].permutation.iter().map(|&image| image as usize).collect()).collect();
     let passages = [0, 1, 2].map(|axis| scene.passage(&axes, axis));
-    let convention = scene.convention(&axes, &passages);
-    let other_settings = group
-        .settings()
+    let settings = group.settings();
+    let mut convention = scene.convention(&axes, &passages);
+    if settings.iter().any(|setting| scene.ties(&axes, &(setting.rotation * axes))) {
+        convention.push_str("; atoms and bonds do not tell it from the other choice, so their kinds and distances do");
+    }
+    let other_settings = settings
         .into_iter()
         .map(|setting| OtherSetting {
             description: setting.description,
@@ -159,6 +160,11 @@ impl Scene<'_> {
         pool.first().copied().unwrap_or_else(Matrix3::identity)
     }
 
+    /// Whether the rules cannot tell two frames apart.
+    fn ties(&self, a: &Matrix3<f64>, b: &Matrix3<f64>) -> bool {
+        self.rules().iter().all(|rule| rule(self, a) == rule(self, b))
+    }
+
     /// What is to be greatest, in this order.
     fn rules(&self) -> Vec<fn(&Self, &Matrix3<f64>) -> usize> {
         match self.name {
@@ -190,7 +196,11 @@ impl Scene<'_> {
         let on = |x: &Vector3<f64>| x.cross(&direction).norm() < ON;
         Passage {
             atoms: (0..self.positions.len()).filter(|&at| on(&self.positions[at])).collect(),
-            bonds: self.middles().filter(|(_, middle)| on(middle)).map(|(bond, _)| bond).collect(),
+            bonds: self
+                .middles()
+                .filter(|((a, _), middle)| on(middle) && !on(&self.positions[*a]))
+                .map(|(bond, _)| bond)
+                .collect(),
         }
     }
 

@@ -38,8 +38,10 @@ pub(super) fn distance_from_line(positions: &[Vector3<f64>], line: &Vector3<f64>
 /// All sites at one place: the group of an atom.
 pub(super) fn atom(arrangement: &Arrangement) -> FittedGroup {
     let unchanged: Vec<u32> = (0_u32..).take(arrangement.n_sites()).collect();
-    let operations =
-        standard_operations(GroupName::K).into_iter().map(|matrix| operation(matrix, unchanged.clone())).collect();
+    let operations = standard_operations(GroupName::K)
+        .into_iter()
+        .map(|matrix| SiteOperation::measured(arrangement, unchanged.clone(), matrix))
+        .collect();
     let positions = vec![Vector3::zeros(); arrangement.n_sites()];
     let deviation = arrangement.deviation_from(&positions);
     FittedGroup { name: GroupName::K, operations, positions, deviation }
@@ -75,14 +77,10 @@ fn fitted(
         .map(|s| {
             let unchanged = || (0_u32..).take(heights.len()).collect();
             let permutation = if s[(2, 2)] > 0.0 { unchanged() } else { reversed.to_vec() };
-            operation(axes.transpose() * s * axes, permutation)
+            SiteOperation::measured(arrangement, permutation, axes.transpose() * s * axes)
         })
         .collect();
     FittedGroup { name, operations, positions, deviation }
-}
-
-fn operation(matrix: Matrix3<f64>, permutation: Vec<u32>) -> SiteOperation {
-    SiteOperation { permutation, proper: matrix.determinant() > 0.0, matrix, displacement: 0.0 }
 }
 
 /// Right-handed axes with z along `z`; x is the file axis that lies most across, made perpendicular.

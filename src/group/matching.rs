@@ -27,10 +27,17 @@ impl SiteOperation {
     pub(super) fn fitted(arrangement: &Arrangement, permutation: Vec<u32>, proper: bool) -> Option<Self> {
         let positions = &arrangement.positions;
         let images = permutation.iter().map(|&image| &positions[image as usize]);
-        let matrix = best_turn(positions.iter().zip(images.clone()), proper)?;
+        let matrix = best_turn(positions.iter().zip(images), proper)?;
+        Some(Self::measured(arrangement, permutation, matrix))
+    }
+
+    /// A permutation with the matrix that belongs to it.
+    pub(super) fn measured(arrangement: &Arrangement, permutation: Vec<u32>, matrix: Matrix3<f64>) -> Self {
+        let positions = &arrangement.positions;
+        let images = permutation.iter().map(|&image| &positions[image as usize]);
         let displacement =
             positions.iter().zip(images).map(|(x, image)| (matrix * x - image).norm()).fold(0.0, f64::max);
-        Some(Self { permutation, proper, matrix, displacement })
+        Self { proper: matrix.determinant() > 0.0, permutation, matrix, displacement }
     }
 
     /// Nothing moves.
@@ -41,6 +48,11 @@ impl SiteOperation {
             matrix: Matrix3::identity(),
             displacement: 0.0,
         }
+    }
+
+    /// What tells it from other operations on the same sites.
+    pub(super) fn key(&self) -> (bool, Vec<u32>) {
+        (self.proper, self.permutation.clone())
     }
 
     /// The permutation of first `other`, then `self`.
@@ -62,8 +74,10 @@ pub(super) struct Search {
 const MAX_PAIRS: usize = 20_000_000;
 /// Operations tried on a handful of sites, at most.
 const MAX_TRIALS: usize = 400_000;
-/// Operations tried on all sites times number of sites, at most, before the search is narrowed.
-const MAX_WORK: usize = 20_000_000;
+/// Operations tried on all sites times number of sites, at most, before the search is narrowed …
+const MAX_WORK: usize = 8_000_000;
+/// … but at least so many operations, more than any group has.
+const ENOUGH: usize = 300;
 /// Below this limit (bohr) narrowing further is of no use.
 const NARROWEST: f64 = 1e-6;
 
@@ -127,7 +141,7 @@ impl<'a> Trial<'a> {
                     continue;
                 }
                 work += n_sites;
-                if work > MAX_WORK {
+                if work > MAX_WORK.max(ENOUGH * n_sites) {
                     return None;
                 }
                 let Some(found) = self.refined(rough, proper) else { continue };

@@ -10,7 +10,8 @@ use nalgebra::{Matrix3, Point3, Vector3};
 /// A place of one kind: kinds are alike when element, shells and ghost status are alike.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Site {
-    /// Equal for sites that an operation may carry onto each other.
+    /// Equal for sites that an operation may carry onto each other. Lower kinds go first where an axis could lie among either, so
+    /// kinds should be numbered by what the sites are, not by the order of the file.
     pub kind: u32,
     /// Position in bohr.
     pub position: Point3<f64>,
@@ -41,7 +42,7 @@ pub struct Frame {
 pub struct Passage {
     /// Indices of the sites on the axis, ascending.
     pub atoms: Vec<usize>,
-    /// Bonds whose middle is on the axis.
+    /// Bonds whose middle is on the axis, without those along it.
     pub bonds: Vec<(usize, usize)>,
 }
 

@@ -4,42 +4,32 @@
 
 use super::LabelError;
 use crate::group::{self, DetectSettings, Detection, Site, Symmetry};
-use crate::model::{Atom, Molecule, Shell, elements};
+use crate::model::{Molecule, elements};
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Two atoms are bonded when they are nearer than this times the sum of their covalent radii (common practice).
 const BOND_FACTOR: f64 = 1.3;
 
-/// Atoms as sites: of one kind when element, ghost status, core and shells are alike.
+/// Atoms as sites: of one kind when element, charge, ghost status, core and shells are alike.
+///
+/// Kinds are numbered by what the atoms are (element first), whatever their order in the file.
 #[must_use]
 pub fn sites(molecule: &Molecule) -> Vec<Site> {
-    let mut shells_of: Vec<Vec<&Shell>> = vec![Vec::new(); molecule.atoms.len()];
-    for shell in &molecule.shells {
-        shells_of[shell.atom_idx].push(shell);
-    }
-    let alike = |a: usize, b: usize| {
-        let (first, second): (&Atom, &Atom) = (&molecule.atoms[a], &molecule.atoms[b]);
-        (first.element, first.ghost, first.core_electrons) == (second.element, second.ghost, second.core_electrons)
-            && first.charge.to_bits() == second.charge.to_bits()
-            && shells_of[a].len() == shells_of[b].len()
-            && shells_of[a].iter().zip(&shells_of[b]).all(|(s, t)| {
-                (s.l, s.pure, &s.exponents, &s.coefficients) == (t.l, t.pure, &t.exponents, &t.coefficients)
-            })
-    };
-    // A kind is named by its element and the running number of its variety, so the numbers do not depend on the order of atoms of one sort.
-    let mut examples: Vec<usize> = Vec::new();
-    (0..molecule.atoms.len())
+    let mut keys: Vec<Vec<u64>> = molecule
+        .atoms
+        .iter()
         .map(|atom| {
-            let variety = examples.iter().position(|&example| alike(example, atom)).unwrap_or_else(|| {
-                examples.push(atom);
-                examples.len() - 1
-            });
-            let element = u32::from(molecule.atoms[examples[variety]].element);
-            Site {
-                kind: element << 16 | u32::try_from(variety).unwrap_or(u32::MAX),
-                position: molecule.atoms[atom].position,
-            }
+            vec![u64::from(atom.element), u64::from(atom.ghost), u64::from(atom.core_electrons), atom.charge.to_bits()]
         })
-        .collect()
+        .collect();
+    for shell in &molecule.shells {
+        let key = &mut keys[shell.atom_idx];
+        key.extend([shell.l as u64, u64::from(shell.pure), shell.exponents.len() as u64]);
+        key.extend(shell.exponents.iter().chain(&shell.coefficients).map(|value| value.to_bits()));
+    }
+    let kinds: BTreeSet<&Vec<u64>> = keys.iter().collect();
+    let numbers: BTreeMap<&Vec<u64>, u32> = kinds.into_iter().zip(0..).collect();
+    molecule.atoms.iter().zip(&keys).map(|(atom, key)| Site { kind: numbers[key], position: atom.position }).collect()
 }
 
 /// Pairs of atoms nearer than 1.3 times the sum of their covalent radii, each pair once, first index smaller.

@@ -153,6 +153,15 @@ pub fn atomic_number(name: &str) -> u8 {
         .unwrap_or(0)
 }
 
+/// Whether a pseudopotential may stand for this many electrons of the element: closed shells of a lighter
+/// noble gas, with filled d and f shells above it or, in the f block, some of the f electrons.
+#[must_use]
+pub fn is_core_size(element: u8, electrons: f64) -> bool {
+    const CLOSED: [f64; 12] = [2.0, 10.0, 18.0, 28.0, 36.0, 46.0, 54.0, 60.0, 68.0, 78.0, 86.0, 92.0];
+    let f_in_core = (57..=103).contains(&element) && (46.0..=92.0).contains(&electrons);
+    electrons < f64::from(element) && (CLOSED.contains(&electrons) || f_in_core)
+}
+
 /// Symbol of an atomic number; `X` for 0 and what lies beyond the table.
 #[must_use]
 pub fn symbol(element: u8) -> &'static str {

@@ -5,6 +5,7 @@
 //! coefficients stand exactly as the file gives them.
 
 pub mod elements;
+mod atoms;
 mod molden;
 
 pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};

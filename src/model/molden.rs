@@ -2,11 +2,11 @@
 //!
 //! Not here: the grammar; normalisation, order and sign of functions.
 
-use super::elements;
+use super::atoms::{AtomsByNumber, mean_atom, named_atom, set_cores};
 use super::{ANGSTROM_PER_BOHR, Atom, Mode, Molecule, Orbital, OrbitalSet, Shell, Spin, Vibrations};
-use crate::diagnostic::{Diagnostic, Severity, Span};
-use crate::grammar::atoms::{LengthUnit, RawAtom};
-use crate::grammar::orbitals::{RawOrbital, fill_row};
+use crate::diagnostic::{Diagnostic, Span};
+use crate::grammar::atoms::LengthUnit;
+use crate::grammar::orbitals::{Beyond, RawOrbital, fill_row};
 use crate::grammar::{self, Findings, RawMolden, numbers};
 use nalgebra::Point3;
 use ndarray::{Array2, Axis, parallel::prelude::*};
@@ -18,8 +18,8 @@ pub type Reading = Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>;
 /// coefficient takes at least 4 bytes, but zeros may be left out.
 const SPARSE_RATIO: usize = 64;
 const SPARSE_FLOOR: usize = 64 << 20;
-/// An atomic-number column may name no more than this.
-const CHARGE_LIMIT: f64 = 200.0;
+/// Letters of the shells by angular momentum.
+const SHELL_LETTERS: [char; 7] = ['s', 'p', 'd', 'f', 'g', 'h', 'i'];
 
 /// Reads a Molden file.
 ///
@@ -28,11 +28,9 @@ const CHARGE_LIMIT: f64 = 200.0;
 pub fn read_molden(bytes: &[u8]) -> Reading {
     let (raw, mut findings) = grammar::read(bytes);
     let molecule = mean(bytes, &raw, &mut findings);
-    let mut list = findings.0;
-    list.sort_by_key(|finding| (finding.span.start, finding.severity));
-    match molecule {
-        Some(molecule) if list.iter().all(|finding| finding.severity == Severity::Warning) => Ok((molecule, list)),
-        _ => Err(list),
+    match molecule.filter(|_| !findings.any_error()) {
+        Some(molecule) => Ok((molecule, findings.into_sorted())),
+        None => Err(findings.into_sorted()),
     }
 }
 
@@ -50,24 +48,9 @@ fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecu
         // A file of normal modes alone: its coordinates are the nuclei, in bohr.
         atoms = raw.mode_atoms.iter().map(|(name, position)| named_atom(&text(name), *position)).collect();
     }
-    for (who, electrons) in &raw.cores {
-        let name = text(who);
-        let electrons = u32::try_from(*electrons).unwrap_or(0);
-        match name.parse::<usize>() {
-            Ok(number) => {
-                if let Some(at) = raw.atoms.iter().position(|atom| atom.number == number) {
-                    atoms[at].core_electrons = electrons;
-                }
-            }
-            Err(_) => {
-                let element = elements::atomic_number(&name);
-                for atom in atoms.iter_mut().filter(|atom| atom.element == element) {
-                    atom.core_electrons = electrons;
-                }
-            }
-        }
-    }
-    let shells = mean_shells(raw, findings);
+    let by_number = AtomsByNumber::new(&raw.atoms);
+    set_cores(bytes, raw, &by_number, &mut atoms, findings);
+    let shells = mean_shells(raw, &by_number, findings);
     if findings.any_error() {
         return None;
     }
@@ -78,93 +61,57 @@ fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecu
         orbital_sets: Vec::new(),
         vibrations: mean_vibrations(bytes, raw, findings),
     };
-    molecule.orbital_sets = mean_orbitals(bytes, raw, molecule.n_functions(), findings);
+    molecule.orbital_sets = mean_orbitals(bytes, raw, &molecule.shells, findings);
     (!findings.any_error()).then_some(molecule)
 }
 
-fn named_atom(name: &str, position: [f64; 3]) -> Atom {
-    let element = elements::atomic_number(name);
-    Atom {
-        name: name.to_owned(),
-        element,
-        charge: f64::from(element),
-        ghost: element == 0,
-        core_electrons: 0,
-        position: Point3::from(position),
-    }
-}
-
-/// The name wins over the number, which may be an effective charge; a ghost is named so or has charge 0.
-fn mean_atom(name: &str, raw: &RawAtom, scale: f64, bytes: &[u8], findings: &mut Findings) -> Atom {
-    let lower = name.to_lowercase();
-    let ghost_word = ["ghost", "gh", "bq"]
-        .iter()
-        .find(|word| lower.starts_with(**word))
-        .filter(|_| elements::atomic_number(name) == 0);
-    let inner: &str = ghost_word.map_or(name, |word| name[word.len()..].trim_start_matches(['(', '-', '_', ':']));
-    let mut element = elements::atomic_number(inner);
-    if !(0.0..=CHARGE_LIMIT).contains(&raw.charge) {
-        findings.expected(bytes, raw.line.clone(), "an atomic number from 0 up in the third column");
-    }
-    let ghost = ghost_word.is_some() || raw.charge == 0.0 || (element == 0 && lower.starts_with('x'));
-    if element == 0 && !ghost {
-        // No element by name: the number decides, where it is one.
-        element = if raw.charge.fract() == 0.0 && (1.0..=118.0).contains(&raw.charge) { raw.charge as u8 } else { 0 };
-        findings.warning(
-            raw.name.clone(),
-            format!("`{name}` names no element; the atomic number {} is used", raw.charge),
-            "name atoms by their symbols",
-        );
-    }
-    let below = f64::from(element) - raw.charge;
-    if !ghost && below < 0.0 {
-        findings.error(
-            raw.line.clone(),
-            format!("{} has atomic number {element}, found {}", elements::symbol(element), raw.charge),
-            "name and atomic number of an atom must agree, unless the number is an effective charge below it",
-        );
-    }
-    let core_electrons = if ghost || below <= 0.0 || below.fract() != 0.0 { 0 } else { below as u32 };
-    Atom {
-        name: name.to_owned(),
-        element,
-        charge: raw.charge,
-        ghost,
-        core_electrons,
-        position: Point3::from(raw.position.map(|x| x * scale)),
-    }
-}
-
-fn mean_shells(raw: &RawMolden, findings: &mut Findings) -> Vec<Shell> {
-    // Cartesian unless a tag says otherwise; [9G] speaks for h and i too, unless they have their own.
-    let mut pure = [false; 7];
-    let mut said: [Option<(bool, usize)>; 7] = [None; 7];
-    for (place, tag) in raw.tags.iter().enumerate() {
-        for &(l, says) in &tag.says {
-            let implied = l > 4 && tag.says.len() > 2;
-            if let Some((before, _)) = said[l].filter(|(before, _)| *before != says && !implied) {
+/// Pure or Cartesian by degree: Cartesian unless a tag says otherwise; what a tag says outright wins over
+/// what another implies.
+fn kinds(raw: &RawMolden, findings: &mut Findings) -> [bool; 7] {
+    let mut said: [Option<bool>; 7] = [None; 7];
+    for tag in &raw.tags {
+        for &(l, says) in tag.says {
+            if let Some(before) = said[l].filter(|before| *before != says) {
                 let word = |pure: bool| if pure { "pure" } else { "Cartesian" };
                 findings.error(
                     tag.span.clone(),
-                    format!("this tag says {} for a degree that an earlier one says {} for", word(says), word(before)),
+                    format!(
+                        "this tag says that {} shells are {}, an earlier one that they are {}",
+                        SHELL_LETTERS[l],
+                        word(says),
+                        word(before)
+                    ),
                     "keep one of the tags",
                 );
             }
-            if said[l].is_none() || !implied {
-                said[l] = Some((says, place));
-                pure[l] = says;
-            }
+            said[l] = Some(says);
         }
     }
+    let mut pure = [false; 7];
+    for &(l, says) in raw.tags.iter().flat_map(|tag| tag.implies) {
+        pure[l] = says;
+    }
+    for (pure, says) in pure.iter_mut().zip(said) {
+        *pure = says.unwrap_or(*pure);
+    }
+    pure
+}
+
+fn mean_shells(raw: &RawMolden, by_number: &AtomsByNumber, findings: &mut Findings) -> Vec<Shell> {
+    let pure = kinds(raw, findings);
+    // Where an atom's line could not be read, its shells are no mistake of their own.
+    let atoms_are_sound = !findings.any_error();
     raw.shells
         .iter()
         .filter_map(|shell| {
-            let Some(atom_idx) = raw.atoms.iter().position(|atom| atom.number == shell.atom) else {
-                findings.error(
-                    shell.atom_line.clone(),
-                    format!("expected an atom of [Atoms], found number {}", shell.atom),
-                    "atoms are counted by the second column of [Atoms]",
-                );
+            let Some(atom_idx) = by_number.place(shell.atom) else {
+                if atoms_are_sound {
+                    findings.error(
+                        shell.atom_line.clone(),
+                        format!("expected an atom of [Atoms], found number {}", shell.atom),
+                        "atoms are counted by the second column of [Atoms]",
+                    );
+                }
                 return None;
             };
             if shell.coefficients.iter().all(|value| *value == 0.0) {
@@ -186,7 +133,31 @@ fn mean_shells(raw: &RawMolden, findings: &mut Findings) -> Vec<Shell> {
         .collect()
 }
 
-fn mean_orbitals(bytes: &[u8], raw: &RawMolden, n_functions: usize, findings: &mut Findings) -> Vec<OrbitalSet> {
+/// What may be wrong when the orbitals use more functions than the shells have.
+fn missing_functions(shells: &[Shell], used: usize) -> String {
+    let n_functions: usize = shells.iter().map(Shell::n_functions).sum();
+    let all_cartesian: usize = shells.iter().map(|shell| (shell.l + 1) * (shell.l + 2) / 2).sum();
+    if all_cartesian == used {
+        return "all shells Cartesian would make up that number: a tag such as [5D] may be wrong".to_owned();
+    }
+    let missing = used - n_functions;
+    let dropped = [(11, "pure h"), (21, "Cartesian h"), (13, "pure i")]
+        .iter()
+        .find(|(size, _)| missing.is_multiple_of(*size))
+        .map(|(size, name)| (missing / size, name));
+    match dropped {
+        Some((1, name)) => {
+            format!("{missing} functions are missing, one shell {name}: some engines drop h and higher shells")
+        }
+        Some((n, name)) => {
+            format!("{missing} functions are missing, {n} shells {name}: some engines drop h and higher shells")
+        }
+        None => format!("{missing} functions are missing: shells may have been lost, or a tag such as [5D] is wrong"),
+    }
+}
+
+fn mean_orbitals(bytes: &[u8], raw: &RawMolden, shells: &[Shell], findings: &mut Findings) -> Vec<OrbitalSet> {
+    let n_functions: usize = shells.iter().map(Shell::n_functions).sum();
     let Some(header) = raw.orbitals_header.clone() else { return Vec::new() };
     if raw.orbitals.is_empty() {
         return Vec::new();
@@ -219,27 +190,38 @@ fn mean_orbitals(bytes: &[u8], raw: &RawMolden, n_functions: usize, findings: &m
             continue;
         }
         let mut coefficients = Array2::zeros((of_spin.len(), n_functions));
-        let mistakes: Vec<Findings> = coefficients
+        let mistakes: Vec<(Findings, Option<Beyond>)> = coefficients
             .axis_iter_mut(Axis(0))
             .into_par_iter()
             .zip(&of_spin)
             .map(|(mut row, orbital)| {
                 let mut findings = Findings::default();
-                if let Some(row) = row.as_slice_mut() {
-                    fill_row(bytes, orbital.numbers.clone(), row, &mut findings);
-                }
-                if findings.0.is_empty() && row.iter().all(|value| *value == 0.0) {
+                let filled = row.as_slice_mut();
+                let beyond = filled.and_then(|row| fill_row(bytes, orbital.numbers.clone(), row, &mut findings));
+                if findings.is_empty() && beyond.is_none() && row.iter().all(|value| *value == 0.0) {
                     findings.error(
                         orbital.header.clone(),
                         "expected coefficients of this orbital, found none but zeros",
                         "the file may be cut short",
                     );
                 }
-                findings
+                (findings, beyond)
             })
             .collect();
-        for finding in mistakes.into_iter().flat_map(|mistakes| mistakes.0) {
-            findings.push(finding.severity, finding.span, finding.message, finding.help);
+        let mut beyond: Option<Beyond> = None;
+        for (mistakes, far) in mistakes {
+            findings.append(mistakes);
+            if let Some(far) = far {
+                let first = beyond.get_or_insert_with(|| far.clone());
+                first.largest = first.largest.max(far.largest);
+            }
+        }
+        if let Some(beyond) = beyond {
+            findings.error(
+                beyond.line,
+                format!("the orbitals use {} functions, [GTO] has {n_functions}", beyond.largest),
+                missing_functions(shells, beyond.largest),
+            );
         }
         let orbitals = of_spin
             .iter()
@@ -264,6 +246,7 @@ fn mean_vibrations(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Op
     if n_modes == 0 {
         return None;
     }
+    let header = raw.modes_header.clone().unwrap_or(0..0);
     let atoms: Vec<(String, Point3<f64>)> = raw
         .mode_atoms
         .iter()
@@ -272,7 +255,7 @@ fn mean_vibrations(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Op
     if !raw.displacements.is_empty() && !raw.frequencies.is_empty() && raw.displacements.len() != raw.frequencies.len()
     {
         findings.warning(
-            0..0,
+            header.clone(),
             format!(
                 "[FREQ] lists {} wavenumbers, [FR-NORM-COORD] {} modes",
                 raw.frequencies.len(),
@@ -283,7 +266,7 @@ fn mean_vibrations(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Op
     }
     if let Some(mode) = raw.displacements.iter().position(|mode| mode.len() != 3 * atoms.len()) {
         findings.error(
-            0..0,
+            header,
             format!(
                 "vibration {} has {} displacements, expected three for each of {} atoms of [FR-COORD]",
                 mode + 1,
@@ -323,10 +306,13 @@ pub fn read_xyz(bytes: &[u8]) -> Reading {
         atoms.push(atom);
     }
     if findings.any_error() {
-        return Err(findings.0);
+        return Err(findings.into_sorted());
     }
     let title = String::from_utf8_lossy(&bytes[comment]).trim().to_owned();
-    Ok((Molecule { title, atoms, shells: Vec::new(), orbital_sets: Vec::new(), vibrations: None }, findings.0))
+    Ok((
+        Molecule { title, atoms, shells: Vec::new(), orbital_sets: Vec::new(), vibrations: None },
+        findings.into_sorted(),
+    ))
 }
 
 /// Whether a file opens like one in Molden format: its first line with anything on it starts with a bracket.
@@ -343,6 +329,8 @@ pub fn looks_like_molden(bytes: &[u8]) -> bool {
 /// before its other keys.
 #[must_use]
 pub fn write_labels(bytes: &[u8], molecule: &Molecule, labels: &[Vec<String>]) -> Vec<u8> {
+    let crlf = memchr::memchr(b'\n', bytes).is_some_and(|at| at > 0 && bytes[at - 1] == b'\r');
+    let line_end = if crlf { "\r\n" } else { "\n" };
     let mut edits: Vec<(Span, String)> = Vec::new();
     for (orbital, label) in
         molecule.orbital_sets.iter().zip(labels).flat_map(|(set, labels)| set.orbitals.iter().zip(labels))
@@ -350,7 +338,7 @@ pub fn write_labels(bytes: &[u8], molecule: &Molecule, labels: &[Vec<String>]) -
         match &orbital.symmetry_value {
             Some(value) if value.is_empty() => edits.push((value.clone(), format!(" {label}"))),
             Some(value) => edits.push((value.clone(), label.clone())),
-            None => edits.push((orbital.header.start..orbital.header.start, format!(" Sym= {label}\n"))),
+            None => edits.push((orbital.header.start..orbital.header.start, format!(" Sym= {label}{line_end}"))),
         }
     }
     edits.sort_by_key(|edit| edit.0.start);

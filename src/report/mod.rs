@@ -8,6 +8,7 @@ pub mod document;
 pub mod double_table;
 pub mod states;
 pub mod states_text;
+pub mod rule;
 pub mod table;
 pub mod text;
 pub mod unicode;

@@ -31,7 +31,7 @@ pub struct TextOptions {
 }
 
 /// One line of the head: a name, then text wrapped beside it.
-fn head(out: &mut String, name: &str, text: &str) {
+pub(super) fn head(out: &mut String, name: &str, text: &str) {
     for (line_idx, line) in wrap(text, PROSE_WIDTH - HEAD_WIDTH).into_iter().enumerate() {
         let _ = writeln!(out, "{:<HEAD_WIDTH$} {line}", if line_idx == 0 { name } else { "" });
     }

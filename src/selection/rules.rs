@@ -2,7 +2,7 @@
 //!
 //! Here: rules by name, no molecule needed. Not here: how strong anything is (`selection::moments`).
 
-use crate::group::{GroupError, PointGroup};
+use crate::group::{GroupError, GroupName, PointGroup};
 use nalgebra::{Matrix3, Matrix6};
 
 /// Names of the six quadratic functions in the order used here.
@@ -22,7 +22,7 @@ pub struct Operators {
     quadratic: [Vec<usize>; 6],
     /// The same with the trace taken out (quadrupole).
     quadrupole: [Vec<usize>; 6],
-    /// Irreps even and odd under inversion; empty without a centre.
+    /// Which irreps are even under inversion; empty without a centre.
     even: Vec<bool>,
 }
 
@@ -78,20 +78,42 @@ fn quadrupole_diagonal(matrix: &Matrix3<f64>, q: usize) -> f64 {
     if q < 3 { full[(q, q)] - 1.0 / 3.0 } else { full[(q, q)] }
 }
 
+/// For each irrep whether it is even under inversion; empty without a centre.
+fn even(group: &PointGroup) -> Vec<bool> {
+    let inversion =
+        group.elements().iter().find(|element| (element.operation.matrix() + Matrix3::identity()).amax() < 1e-9);
+    inversion.map_or(Vec::new(), |inversion| {
+        group.irreps().iter().map(|irrep| irrep.characters[inversion.class_idx] > 0.0).collect()
+    })
+}
+
 impl Operators {
     /// Projects the functions of each operator onto the irreps.
     #[must_use]
     pub fn new(group: &PointGroup) -> Self {
-        let inversion =
-            group.elements().iter().find(|element| (element.operation.matrix() + Matrix3::identity()).amax() < 1e-9);
+        if group.name() == GroupName::K {
+            return Self::of_atom(group);
+        }
         Self {
             dipole: std::array::from_fn(|a| parts(group, |matrix| matrix[(a, a)])),
             rotation: std::array::from_fn(|a| parts(group, |matrix| matrix.determinant() * matrix[(a, a)])),
             quadratic: std::array::from_fn(|q| parts(group, |matrix| quadratic_matrix(matrix)[(q, q)])),
             quadrupole: std::array::from_fn(|q| parts(group, |matrix| quadrupole_diagonal(matrix, q))),
-            even: inversion.map_or(Vec::new(), |inversion| {
-                group.irreps().iter().map(|irrep| irrep.characters[inversion.class_idx] > 0.0).collect()
-            }),
+            even: even(group),
+        }
+    }
+
+    /// The elements held of all rotations are a sample, too few to project with: the operators are known by their angular momentum.
+    fn of_atom(group: &PointGroup) -> Self {
+        let of = |l: usize| group.orbital_irrep(l).into_iter().collect::<Vec<_>>();
+        let rotation: Vec<usize> = group.rotation_irreps().into_iter().map(|(irrep, _)| irrep).collect();
+        let with_trace = [of(0), of(2)].concat();
+        Self {
+            dipole: std::array::from_fn(|_| of(1)),
+            rotation: std::array::from_fn(|_| rotation.clone()),
+            quadratic: std::array::from_fn(|q| if q < 3 { with_trace.clone() } else { of(2) }),
+            quadrupole: std::array::from_fn(|_| of(2)),
+            even: even(group),
         }
     }
 
@@ -115,21 +137,45 @@ impl Operators {
         })
     }
 
+    /// Which of x, y, z reach a state of irrep `state` from the totally symmetric one.
+    #[must_use]
+    pub fn polarisation(&self, state: usize) -> Vec<usize> {
+        (0..3).filter(|&axis| self.dipole[axis].contains(&state)).collect()
+    }
+
+    /// Whether a vibration of this irrep changes the second power of a coordinate: Raman activity.
+    #[must_use]
+    pub fn is_raman_active(&self, irrep: usize) -> bool {
+        self.quadratic.iter().any(|parts| parts.contains(&irrep))
+    }
+
+    /// Whether an irrep is even under inversion; false without a centre.
+    #[must_use]
+    pub fn is_even(&self, irrep: usize) -> bool {
+        self.even.get(irrep).copied().unwrap_or(false)
+    }
+
+    /// The irreps of Rx, Ry, Rz, each once.
+    #[must_use]
+    pub fn rotations(&self) -> Vec<usize> {
+        let mut irreps = self.rotation.concat();
+        irreps.sort_unstable();
+        irreps.dedup();
+        irreps
+    }
+
     /// Vibrations that make a state of irrep `state` reachable by an electric dipole from the totally symmetric one.
     ///
-    /// # Errors
-    /// As [`Self::between`].
-    pub fn helpers(&self, group: &PointGroup, state: usize) -> Result<Vec<Helper>, GroupError> {
-        let mut helpers = Vec::new();
-        for irrep in 0..group.irreps().len() {
-            let Ok(product) = group.product(irrep, state) else { continue };
-            let polarisation: Vec<usize> = (0..3)
-                .filter(|&axis| self.dipole[axis].iter().any(|part| product.iter().any(|term| term.0 == *part)))
-                .collect();
-            if !polarisation.is_empty() {
-                helpers.push(Helper { irrep, polarisation });
-            }
-        }
-        Ok(helpers)
+    /// Irreps whose product leaves those kept of a continuous group are left out: no vibration has them.
+    #[must_use]
+    pub fn helpers(&self, group: &PointGroup, state: usize) -> Vec<Helper> {
+        let opened = |irrep: usize| {
+            let product = group.product(irrep, state).ok()?;
+            let within =
+                |axis: &usize| self.dipole[*axis].iter().any(|part| product.iter().any(|term| term.0 == *part));
+            let polarisation: Vec<usize> = (0..3).filter(within).collect();
+            (!polarisation.is_empty()).then_some(Helper { irrep, polarisation })
+        };
+        (0..group.irreps().len()).filter_map(opened).collect()
     }
 }

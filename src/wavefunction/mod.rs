@@ -1,10 +1,11 @@
 //! Basis functions, their overlap, the conventions of files, and operations on orbitals.
 //!
-//! Reading order: `cartesian` (functions of one shell), `basis`, `overlap`, `convention`, `turn`, `population`.
+//! Reading order: `cartesian` (functions of one shell), `basis`, `overlap`, `moments`, `convention`, `turn`, `population`.
 
 pub mod basis;
 pub mod cartesian;
 pub mod convention;
+pub mod moments;
 pub mod overlap;
 pub mod population;
 mod product;
@@ -13,6 +14,7 @@ pub mod turn;
 pub use basis::Basis;
 pub use cartesian::angular_projector;
 pub use convention::{ConventionError, Settled, settle};
+pub use moments::{Moments, moments};
 pub use overlap::{overlap, overlap_between};
 pub use population::lowdin;
 pub use product::product;

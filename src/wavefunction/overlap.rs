@@ -1,13 +1,14 @@
 //! Overlap of contracted Gaussians on any centres.
 //!
-//! Not here: normalisation (`wavefunction::basis`), other operators.
+//! Also the parts that other one-electron integrals share (`wavefunction::moments`): pairs of primitives, tables of one
+//! direction, and the way from Cartesian components to functions. Not here: normalisation (`wavefunction::basis`).
 
 use super::basis::{Basis, BasisShell};
 use super::cartesian::{self, L_MAX, Powers};
 use ndarray::{Array2, Axis, parallel::prelude::*, s};
 
-/// Largest degree in one direction.
-const N: usize = L_MAX + 1;
+/// Degrees in one direction, 0 to [`L_MAX`].
+pub(super) const N: usize = L_MAX + 1;
 /// Primitive pairs whose Gaussian factor is below e^−SCREEN are left out: 2e-18.
 const SCREEN: f64 = 41.0;
 
@@ -57,43 +58,69 @@ fn rectangle(bra: &Basis, ket: &Basis, upper: bool) -> Array2<f64> {
     matrix
 }
 
-/// Overlaps of one pair of shells over Cartesian components.
+/// A product of two primitives that is not negligible.
+pub(super) struct PrimitivePair {
+    /// Both factors, the Gaussian of the distance and (π/p)^{3/2}.
+    pub(super) scale: f64,
+    /// Exponent of the second.
+    pub(super) beta: f64,
+    /// 1/2p.
+    pub(super) half: f64,
+    /// From the first centre to the centre of the product.
+    pub(super) from_a: [f64; 3],
+    /// From the second.
+    pub(super) from_b: [f64; 3],
+}
+
+/// All pairs of primitives of two shells whose Gaussian factor counts.
+pub(super) fn primitive_pairs<'a>(a: &'a BasisShell, b: &'a BasisShell) -> impl Iterator<Item = PrimitivePair> + 'a {
+    let apart = b.centre - a.centre;
+    let distance_squared = apart.norm_squared();
+    let first = a.exponents.iter().zip(&a.factors);
+    first
+        .flat_map(move |(alpha, f)| b.exponents.iter().zip(&b.factors).map(move |(beta, g)| (alpha, f, beta, g)))
+        .filter_map(move |(alpha, f, beta, g)| {
+            let p = alpha + beta;
+            let gaussian = alpha * beta / p * distance_squared;
+            (gaussian <= SCREEN).then(|| PrimitivePair {
+                scale: f * g * (-gaussian).exp() * (std::f64::consts::PI / p).powf(1.5),
+                beta: *beta,
+                half: 0.5 / p,
+                from_a: std::array::from_fn(|axis| beta / p * apart[axis]),
+                from_b: std::array::from_fn(|axis| -alpha / p * apart[axis]),
+            })
+        })
+}
+
+/// Integrals of one pair of shells over Cartesian components.
 #[derive(Default)]
-struct Block {
-    values: Vec<f64>,
+pub(super) struct Block {
+    /// Rows of the first shell's components, one entry a component of the second.
+    pub(super) values: Vec<f64>,
     half: Vec<f64>,
 }
 
 impl Block {
-    /// Sums over pairs of primitives; false when all are negligible.
+    /// Room for one pair of shells, all zero.
+    pub(super) fn clear(&mut self, a: &BasisShell, b: &BasisShell) {
+        self.values.clear();
+        self.values.resize(components(a.l).len() * components(b.l).len(), 0.0);
+    }
+
+    /// Overlaps summed over pairs of primitives; false when all are negligible.
     fn fill(&mut self, a: &BasisShell, b: &BasisShell) -> bool {
         let (bras, kets) = (components(a.l), components(b.l));
-        self.values.clear();
-        self.values.resize(bras.len() * kets.len(), 0.0);
-        let apart = b.centre - a.centre;
-        let distance_squared = apart.norm_squared();
+        self.clear(a, b);
         let mut any = false;
-        for (alpha, f) in a.exponents.iter().zip(&a.factors) {
-            for (beta, g) in b.exponents.iter().zip(&b.factors) {
-                let p = alpha + beta;
-                let gaussian = alpha * beta / p * distance_squared;
-                if gaussian > SCREEN {
-                    continue;
-                }
-                any = true;
-                let scale = f * g * (-gaussian).exp() * (std::f64::consts::PI / p).powf(1.5);
-                let half = 0.5 / p;
-                // From each centre to the centre of the product.
-                let tables: [[[f64; N]; N]; 3] = std::array::from_fn(|axis| {
-                    let (from_a, from_b) = (beta / p * apart[axis], -alpha / p * apart[axis]);
-                    one_axis(a.l, b.l, from_a, from_b, half)
-                });
-                let mut at = 0;
-                for &[ax, ay, az] in bras {
-                    for &[bx, by, bz] in kets {
-                        self.values[at] += scale * tables[0][ax][bx] * tables[1][ay][by] * tables[2][az][bz];
-                        at += 1;
-                    }
+        for pair in primitive_pairs(a, b) {
+            any = true;
+            let tables: [[[f64; N]; N]; 3] =
+                std::array::from_fn(|axis| one_axis(a.l, b.l, pair.from_a[axis], pair.from_b[axis], pair.half));
+            let mut at = 0;
+            for &[ax, ay, az] in bras {
+                for &[bx, by, bz] in kets {
+                    self.values[at] += pair.scale * tables[0][ax][bx] * tables[1][ay][by] * tables[2][az][bz];
+                    at += 1;
                 }
             }
         }
@@ -101,7 +128,7 @@ impl Block {
     }
 
     /// Normalises the components, makes pure functions where the shells are pure, writes the block.
-    fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ndarray::ArrayViewMut2<'_, f64>) {
+    pub(super) fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ndarray::ArrayViewMut2<'_, f64>) {
         let (bras, kets) = (components(a.l), components(b.l));
         let (left, right) = (scales(a.l), scales(b.l));
         for (row, scale) in left.iter().enumerate() {
@@ -139,8 +166,10 @@ impl Block {
 }
 
 /// ∫ (x − A)^i (x − B)^j exp(−p(x − P)²) over √(π/p), for i ≤ `la`, j ≤ `lb`.
-fn one_axis(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> [[f64; N]; N] {
-    let mut table = [[0.0; N]; N];
+///
+/// `W` is above `lb`.
+pub(super) fn one_axis<const W: usize>(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> [[f64; W]; N] {
+    let mut table = [[0.0; W]; N];
     table[0][0] = 1.0;
     for j in 0..lb {
         let below = if j > 0 { table[0][j - 1] } else { 0.0 };
@@ -166,7 +195,7 @@ static SCALES: std::sync::LazyLock<Vec<Vec<f64>>> = std::sync::LazyLock::new(|| 
     (0..=L_MAX).map(of).collect()
 });
 
-fn components(l: usize) -> &'static [Powers] {
+pub(super) fn components(l: usize) -> &'static [Powers] {
     &COMPONENTS[l]
 }
 

@@ -12,7 +12,9 @@ pub struct Random(u64);
 impl Random {
     pub fn new(seed: u64) -> Self {
         let mut random = Self(seed.wrapping_mul(0x9E37_79B9_7F4A_7C15) | 1);
-        (0..8).for_each(|_| drop(random.unit()));
+        for _ in 0..8 {
+            random.unit();
+        }
         random
     }
 
@@ -57,9 +59,10 @@ pub fn disturbed(sites: &[Site], epsilon: f64, random: &mut Random) -> Vec<Site>
 }
 
 /// Sites of three kinds on a shaken lattice inside a ball.
-pub fn generic(n: usize, seed: u64) -> Vec<Site> {
+pub fn generic(n: u16, seed: u64) -> Vec<Site> {
     let mut random = Random::new(seed);
-    let half = (n as f64).cbrt().ceil() as i32;
+    // A ball of radius `half` holds 4.19 half³ lattice points.
+    let half = (1..40).find(|half: &i32| 4 * half.pow(3) > i32::from(n)).unwrap();
     let mut places: Vec<Vector3<f64>> = Vec::new();
     for i in -half..=half {
         for j in -half..=half {
@@ -69,8 +72,8 @@ pub fn generic(n: usize, seed: u64) -> Vec<Site> {
         }
     }
     places.sort_by(|a, b| a.norm().total_cmp(&b.norm()));
-    places.truncate(n);
-    places.iter().map(|x| site(if random.unit() < 0.5 { 0 } else { 1 }, *x)).collect()
+    places.truncate(usize::from(n));
+    places.iter().map(|x| site(u32::from(random.unit() < 0.5), *x)).collect()
 }
 
 /// Orbits of points of no symmetry under the group, each of its own kind.
@@ -139,7 +142,8 @@ fn ethane(twist: f64, other_end: u32) -> Vec<Site> {
     sites
 }
 
-fn sandwich(twist: f64) -> Vec<Site> {
+/// Two five-rings with hydrogens above and below an atom, one of them twisted by so many degrees.
+pub fn sandwich(twist: f64) -> Vec<Site> {
     let mut sites = vec![at(0, 0.0, 0.0, 0.0)];
     for (height, degrees) in [(3.1, 0.0), (-3.1, twist)] {
         sites.extend(ring(1, 5, 2.3, height, degrees));
@@ -208,7 +212,7 @@ fn icosahedron(kind: u32, radius: f64) -> Vec<Site> {
 fn even_orders_and_signs(kind: u32, [a, b, c]: [f64; 3], scale: f64) -> Vec<Site> {
     let mut sites: Vec<Site> = Vec::new();
     for signs in 0..8_u32 {
-        let sign = |bit: u32| if signs >> bit & 1 == 0 { scale } else { -scale };
+        let sign = |bit: u32| if (signs >> bit) & 1 == 0 { scale } else { -scale };
         let (x, y, z) = (a * sign(0), b * sign(1), c * sign(2));
         for place in [[x, y, z], [y, z, x], [z, x, y]] {
             let place = Vector3::from(place);
@@ -280,6 +284,32 @@ pub fn molecules() -> Vec<(&'static str, &'static str, Vec<Site>)> {
         ("six twisted rings", "T", six_rings(20.0)),
         ("square pyramid", "C4v", with_centre([ring(1, 4, 3.6, -0.6, 0.0), vec![at(1, 0.0, 0.0, 3.3)]].concat())),
         ("square MX4", "D4h", with_centre(ring(1, 4, 4.2, 0.0, 20.0))),
+        ("two squares", "D4h", [ring(0, 4, 3.0, 0.0, 0.0), ring(1, 4, 5.0, 0.0, 45.0)].concat()),
+        (
+            "tetrahedral MX2Y2",
+            "C2v",
+            vec![
+                at(0, 0.0, 0.0, 0.0),
+                at(1, 3.2, 0.0, 2.3),
+                at(1, -3.2, 0.0, 2.3),
+                at(2, 0.0, 3.2, -2.3),
+                at(2, 0.0, -3.2, -2.3),
+            ],
+        ),
+        (
+            "two bridges",
+            "D2h",
+            vec![
+                at(0, 1.7, 0.0, 0.0),
+                at(0, -1.7, 0.0, 0.0),
+                at(1, 0.0, 1.9, 0.0),
+                at(1, 0.0, -1.9, 0.0),
+                at(1, 2.8, 0.0, 1.95),
+                at(1, 2.8, 0.0, -1.95),
+                at(1, -2.8, 0.0, 1.95),
+                at(1, -2.8, 0.0, -1.95),
+            ],
+        ),
         ("linear XYZ", "Cinfv", vec![at(0, 0.0, 0.0, 0.0), at(1, 0.0, 0.0, 2.2), at(2, 0.0, 0.0, -2.0)]),
         ("linear XYX", "Dinfh", vec![at(0, 0.0, 0.0, 0.0), at(1, 2.2, 0.0, 0.0), at(1, -2.2, 0.0, 0.0)]),
         ("tetrahedron MX4", "Td", with_centre(tetra(1, 1.9))),

@@ -43,13 +43,12 @@ def job(name, molecule, basis, cart=False, virtuals=None, modes=False):
 JOBS = {name: job(name, *rest) for name, *rest in [
     ("bagel_water_svp_pure", "water", "svp"),
     ("bagel_water_svp_cart", "water", "svp", True),
-    ("bagel_water_i_pure", "water", tall(6)),
-    ("bagel_water_g_cart", "water", tall(4), True),
-    ("bagel_formaldehyde_ccpvdz_pure", "formaldehyde", "cc-pvdz"),
+    ("bagel_water_i_pure", "water", tall(6), False, 28),
+    ("bagel_water_g_cart", "water", tall(4), True, 22),
+    ("bagel_formaldehyde_ccpvdz_pure", "formaldehyde", "cc-pvdz", False, 16),
     ("bagel_formaldehyde_svp_cart", "formaldehyde", "svp", True, 16),
     ("bagel_ammonia_ccpvdz_pure", "ammonia", "cc-pvdz"),
     ("bagel_ethene_svp_pure", "ethene", "svp", False, 16),
-    ("bagel_benzene_631g_pure", "benzene", "6-31g", False, 8),
     ("bagel_amidogen_uhf_pure", "amidogen", "svp"),
     ("bagel_modes_water", "water", "svp", False, None, True),
 ]}

@@ -24,9 +24,18 @@ MOLECULES = {
     # NH2 radical, 2B1: water's shape with other numbers
     "amidogen": ([("N", p) if s == "O" else (s, p) for s, p in g.water(1.024, 103.4)], 506, 2),
     "sulfur_hexafluoride": (g.octahedral("S", "F", 1.56), 507, 1),
+    # for an engine that finds no cubic group in the turned ones
+    "methane_upright": (g.tetrahedral("C", "H", 1.09), None, 1),
+    "sulfur_hexafluoride_upright": (g.octahedral("S", "F", 1.56), None, 1),
     "methane": (g.tetrahedral("C", "H", 1.09), 508, 1),
+    "allene": (g.allene(), 510, 1),
+    "ethane": (g.ethane(60), 511, 1),
+    "boron_trifluoride": (g.planar_xy3("B", "F", 1.31), 512, 1),
+    "cyclopentadienide": (g.annulene(5, 1.41, 1.085), 513, 1),
     "carbon_dioxide": ([("C", (0, 0, 0)), ("O", (0, 0, 1.16)), ("O", (0, 0, -1.16))], 509, 1),
 }
+
+CHARGES = {"cyclopentadienide": -1}
 
 # one shell of each l on oxygen, made by hand; hydrogen s and p
 TALL_O = ([("S", [(130.70932, 0.154329), (23.808861, 0.535328), (6.4436083, 0.444635)]), ("S", [(0.9, 1.0)]),

@@ -89,7 +89,7 @@ JOBS = {name: job(name, *rest) for name, *rest in [
     ("cp2k_water_631gs_default_digits", "water", "6-31Gx", "SPHERICAL", 3),
     ("cp2k_formaldehyde_631gs_pure", "formaldehyde", "6-31Gx"),
     ("cp2k_ammonia_631gs_pure", "ammonia", "6-31Gx"),
-    ("cp2k_ethene_631gs_pure", "ethene", "6-31Gx"),
+    ("cp2k_ethene_631gs_pure", "ethene", "6-31Gx", "SPHERICAL", 10, False, 16),
     ("cp2k_amidogen_uks_pure", "amidogen", "6-31Gx"),
 ]}
 

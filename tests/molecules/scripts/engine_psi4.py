@@ -53,15 +53,15 @@ JOBS = {name: job(name, *rest) for name, *rest in [
     ("psi4_water_631gs_pure", "water", "6-31g*", True),
     ("psi4_water_631gs_cart", "water", "6-31g*", False),
     ("psi4_water_ccpvdz_pure", "water", "cc-pvdz", True),
-    ("psi4_water_ccpvtz_cart", "water", "cc-pvtz", False, 20),
+    ("psi4_water_ccpvtz_cart", "water", "cc-pvtz", False, 12),
     ("psi4_water_i_pure", "water", tall(6), True),
     ("psi4_water_h_cart", "water", tall(5), False, 25),
     ("psi4_formaldehyde_ccpvdz_pure", "formaldehyde", "cc-pvdz", True, 16),
-    ("psi4_formaldehyde_631gs_cart", "formaldehyde", "6-31g*", False),
+    ("psi4_formaldehyde_631gs_cart", "formaldehyde", "6-31g*", False, 18),
     ("psi4_ammonia_def2svp_pure", "ammonia", "def2-svp", True),
     ("psi4_ethene_631gs_cart", "ethene", "6-31g*", False, 16),
     ("psi4_benzene_sto3g_pure", "benzene", "sto-3g", True),
-    ("psi4_amidogen_uhf_pure", "amidogen", "cc-pvdz", True),
+    ("psi4_amidogen_uhf_pure", "amidogen", "cc-pvdz", True, 14),
 ]}
 JOBS |= {f"psi4_modes_{m}": modes(f"psi4_modes_{m}", m, "sto-3g" if m == "benzene" else "6-31g*")
          for m in ("water", "ammonia", "methane", "carbon_dioxide", "benzene", "sulfur_hexafluoride")}

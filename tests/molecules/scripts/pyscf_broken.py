@@ -1,4 +1,4 @@
-"""Wavefunctions that keep, hide or break the symmetry of their nuclei. Engine: PySCF 2.x.
+"""Wavefunctions that keep, hide or break the symmetry of their nuclei. Engine: PySCF 2.14.0.
 
 Also writes reference/spin.json with the engine's own <S^2>.
 Usage: python pyscf_broken.py [name ...]
@@ -44,7 +44,7 @@ def methane_cation():
 
 def benzene_cation():
     mol = molecule(g.annulene(6, 1.395, 1.085), "sto-3g", charge=1, spin=1, seed=304)
-    return solve(mol, "U"), {}
+    return solve(mol, "U"), dict(virtuals=6)
 
 
 def chromium_d1():

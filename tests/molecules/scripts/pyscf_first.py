@@ -1,4 +1,4 @@
-"""The everyday molecules. Engine: PySCF 2.x; symmetry off; each file has its own seed.
+"""The everyday molecules. Engine: PySCF 2.14.0; symmetry off; each file has its own seed.
 
 Usage: python pyscf_first.py [name ...]
 """
@@ -22,11 +22,11 @@ FILES = {
     "water_631gs": (g.water(), "6-31g*", dict(seed=102), {}, {}),
     "water_631gs_cart": (g.water(), "6-31g*", dict(seed=103, cart=True), {}, {}),
     "water_g": (g.water(), TALL, dict(seed=104), {}, {}),
-    "water_g_cart": (g.water(), TALL, dict(seed=105, cart=True), {}, dict(virtuals=30)),
+    "water_g_cart": (g.water(), TALL, dict(seed=105, cart=True), {}, dict(virtuals=20)),
     "ammonia_631gs": (g.ammonia(), "6-31g*", dict(seed=106), {}, dict(degenerate=[2])),
     "methane_631gs": (g.tetrahedral("C", "H", 1.09), "6-31g*", dict(seed=107), {}, dict(degenerate=[3, 2])),
     "benzene_sto3g": (g.annulene(6, 1.395, 1.085), "sto-3g", dict(seed=108), {}, dict(degenerate=[2])),
-    "benzene_631g": (g.annulene(6, 1.395, 1.085), "6-31g", dict(seed=109), {}, dict(virtuals=18, degenerate=[2])),
+    "benzene_631g": (g.annulene(6, 1.395, 1.085), "6-31g", dict(seed=109), {}, dict(virtuals=10, degenerate=[2])),
     "ethene_631gs": (g.ethene(), "6-31g*", dict(seed=110), {}, {}),
     "formaldehyde_631gs": (g.formaldehyde(), "6-31g*", dict(seed=111), {}, {}),
     "formaldehyde_631gs_cart": (g.formaldehyde(), "6-31g*", dict(seed=112, cart=True), {}, {}),
@@ -34,10 +34,10 @@ FILES = {
     "sf6_631gs": (g.octahedral("S", "F", 1.56), "6-31g*", dict(seed=114), {}, dict(virtuals=7, degenerate=[2, 3])),
     "ferrocene_d5d_sto3g": (g.sandwich("Fe", 36), "sto-3g", dict(seed=115),
                             dict(shift=0.8, guess="atom", group=g.dihedral(5, "d"), seed=115),
-                            dict(virtuals=14, degenerate=[2])),
+                            dict(virtuals=8, degenerate=[2])),
     "ferrocene_d5h_sto3g": (g.sandwich("Fe", 0), "sto-3g", dict(seed=116),
                             dict(shift=0.8, guess="atom", group=g.dihedral(5, "h"), seed=116),
-                            dict(virtuals=6, degenerate=[2])),
+                            dict(virtuals=4, degenerate=[2])),
     "nitrogen_631gs": (g.diatomic("N", "N", 1.098), "6-31g*", dict(seed=117), {}, dict(degenerate=[2])),
     "carbon_dioxide_631gs": ([("C", (0, 0, 0)), ("O", (0, 0, 1.16)), ("O", (0, 0, -1.16))], "6-31g*",
                              dict(seed=118), {}, dict(degenerate=[2])),

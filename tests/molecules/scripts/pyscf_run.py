@@ -1,6 +1,6 @@
 """Runs a self-consistent field without symmetry and writes a small Molden file.
 
-Shared by the PySCF scripts of this folder. Engine: PySCF (version in the README).
+Shared by the PySCF scripts of this folder. Engine: PySCF 2.14.0.
 """
 import os
 
@@ -43,7 +43,7 @@ def harmonic_turns(mol, matrix, lmax):
     return out
 
 
-def operation_matrix(mol, matrix, centre):
+def operation_matrix(mol, matrix, centre, tolerance=1e-8):
     """The operation on the basis: column k is the image of function k."""
     xyz = mol.atom_coords() - centre
     turns = harmonic_turns(mol, matrix, max(mol.bas_angular(i) for i in range(mol.nbas)))
@@ -52,7 +52,7 @@ def operation_matrix(mol, matrix, centre):
     out = np.zeros((mol.nao, mol.nao))
     for a in range(mol.natm):
         b = int(np.argmin(np.linalg.norm(xyz - matrix @ xyz[a], axis=1)))
-        assert np.linalg.norm(xyz[b] - matrix @ xyz[a]) < 1e-8
+        assert np.linalg.norm(xyz[b] - matrix @ xyz[a]) < tolerance
         for i, j in zip(shells[a], shells[b]):
             d = turns[mol.bas_angular(i)]
             n = d.shape[0]

@@ -1,4 +1,4 @@
-"""The invented project of the README: three compounds with code names. Engine: PySCF 2.x, PBE0.
+"""The invented project of the README: three compounds with code names. Engine: PySCF 2.14.0, PBE0.
 
 The Fock matrix is averaged over the group, because an integration grid has no fivefold axis.
 Usage: python pyscf_scenario.py [name ...]
@@ -12,18 +12,17 @@ import shapes as g
 from pyscf_run import OUT, molecule, solve, write
 
 FOLDER = os.path.join(OUT, "scenario")
-METAL = {"Co": "def2-svp", "Fe": "def2-svp", "C": "sto-3g", "N": "sto-3g", "H": "sto-3g"}
 D2H = g.generated([np.diag([-1.0, 1, 1]), np.diag([1, -1.0, 1]), np.diag([1, 1, -1.0])])
 
 FILES = {
     # a ligand-field complex: low-spin d6 between six linear ligands
-    "lantern-3": (g.octahedral("Co", "C", 1.90, [("N", 3.06)]), {k: METAL[k] for k in ("Co", "C", "N")},
-                  dict(charge=-3, seed=401), g.GROUP_OH, dict(virtuals=11, degenerate=[2, 3])),
+    "lantern-3": (g.octahedral("Co", "C", 1.90, [("N", 3.06)]), {"Co": "def2-svp", "C": "6-31g", "N": "6-31g"},
+                  dict(charge=-3, seed=401), g.GROUP_OH, dict(virtuals=6, degenerate=[2, 3])),
     # a sandwich complex, staggered
-    "bellows-5": (g.sandwich("Fe", 36), {k: METAL[k] for k in ("Fe", "C", "H")}, dict(seed=402),
-                  g.dihedral(5, "d"), dict(virtuals=12, degenerate=[2])),
+    "bellows-5": (g.sandwich("Fe", 36), {"Fe": "def2-svp", "C": "sto-3g", "H": "sto-3g"}, dict(seed=402),
+                  g.dihedral(5, "d"), dict(virtuals=9, degenerate=[2])),
     # a flat organic chromophore
-    "ribbon-2": (g.azaacene(), "6-31g", dict(seed=403), D2H, dict(virtuals=10)),
+    "ribbon-2": (g.azaacene(), "6-31g", dict(seed=403), D2H, dict(virtuals=7)),
 }
 
 if __name__ == "__main__":

@@ -63,7 +63,7 @@ def overlap():
         pairs = [(i, j) for i in range(len(s)) for j in range(i) if abs(s[i, j]) > 1e-10]
         rng.shuffle(pairs)
         out[name] = {"functions": len(s), "frobenius": digits(float(np.linalg.norm(s))),
-                     "elements": [[i, j, digits(float(s[i, j]))] for i, j in sorted(pairs[:200])]}
+                     "elements": [[i, j, digits(float(s[i, j]))] for i, j in sorted(pairs[:120])]}
     save("overlap", out)
 
 
@@ -92,7 +92,7 @@ def moments():
         pairs = [(i, j) for i in range(low, high) for j in range(low, high) if i != j]
         rng.shuffle(pairs)
         rows = []
-        for i, j in sorted(pairs[:60]):
+        for i, j in sorted(pairs[:40]):
             rows.append({"i": i, "j": j, "r": [digits(float(r[k, i, j])) for k in range(3)],
                          "nabla": [digits(float(nabla[k, i, j])) for k in range(3)],
                          "r_cross_nabla": [digits(float(cross[k, i, j])) for k in range(3)],

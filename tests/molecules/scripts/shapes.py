@@ -41,6 +41,12 @@ def moved(atoms, seed):
     return [(s, tuple(map(float, r @ np.asarray(p, float) + t))) for s, p in atoms]
 
 
+def shaken(atoms, size, seed):
+    """Every atom moved by a random vector of at most `size` angstrom in each coordinate."""
+    rng = random.Random(seed)
+    return [(s, tuple(x + rng.uniform(-size, size) for x in p)) for s, p in atoms]
+
+
 def ring(symbol, n, radius, z=0.0, start=0.0):
     """n atoms on a circle; `start` is the angle of the first one in degrees."""
     a = [2 * pi * k / n + radians(start) for k in range(n)]

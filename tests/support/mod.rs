@@ -1,0 +1,4 @@
+//! What several tests share.
+#![allow(dead_code, reason = "each test program uses some of it")]
+
+pub mod files;
