@@ -174,7 +174,7 @@ fn terms_of_atoms_agree_with_counting() {
             assert_eq!(of_atom(&atom, &[(l, electrons)]), by_counting(&[(l, electrons)]), "l = {l}, n = {electrons}");
         }
     }
-    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 3)], &[(4, 2)]] {
+    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 7)], &[(2, 2), (3, 6)], &[(4, 3)]] {
         assert_eq!(of_atom(&atom, shells), by_counting(shells), "{shells:?}");
     }
 }
