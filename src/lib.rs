@@ -13,5 +13,6 @@ pub mod states;
 pub mod wavefunction;
 pub mod labelling;
 pub mod selection;
+pub mod modes;
 pub mod report;
 pub mod cli;

@@ -4,8 +4,19 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// Lowest first; each may use those before it.
-const LAYERS: [&str; 10] =
-    ["diagnostic", "grammar", "model", "group", "states", "wavefunction", "labelling", "selection", "report", "cli"];
+const LAYERS: [&str; 11] = [
+    "diagnostic",
+    "grammar",
+    "model",
+    "group",
+    "states",
+    "wavefunction",
+    "labelling",
+    "selection",
+    "modes",
+    "report",
+    "cli",
+];
 
 /// `group` and `states` stand on their own: they know no file and no molecule.
 const STRANGERS: [(&str, &str); 7] = [

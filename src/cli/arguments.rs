@@ -1,5 +1,6 @@
 //! What a person types, as types.
 
+use crate::selection::Selector;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
 
@@ -23,6 +24,8 @@ pub enum Verb {
     Table(Table),
     /// Terms of an electron configuration, spin–orbit components, rules between states, Jahn–Teller modes
     States(States),
+    /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
+    Transitions(Transitions),
 }
 
 /// Options of every verb.
@@ -143,6 +146,34 @@ pub struct States {
     /// Of a file: energies this near count as one, hartree
     #[arg(long, value_name = "HARTREE", default_value_t = 1e-3, value_parser = positive)]
     pub degeneracy: f64,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `transitions`.
+#[derive(Debug, Args)]
+pub struct Transitions {
+    /// Molden-format file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Sets to leave: labels (3e2g), orbital numbers, homo, homo-1; by default those of the window
+    #[arg(long, value_name = "SETS", value_delimiter = ',', allow_hyphen_values = true)]
+    pub from: Vec<Selector>,
+    /// Sets to enter: labels, orbital numbers, lumo, lumo+1
+    #[arg(long, value_name = "SETS", value_delimiter = ',')]
+    pub to: Vec<Selector>,
+    /// Pair the K highest sets with electrons and the L lowest with room
+    #[arg(long, value_name = "K,L", value_parser = window, default_value = "4,4")]
+    pub window: (usize, usize),
+    /// Leave out pairs farther apart than this in orbital energy, eV
+    #[arg(long, value_name = "EV", value_parser = positive)]
+    pub max_ev: Option<f64>,
+    /// Only pairs that an electric dipole connects
+    #[arg(long)]
+    pub allowed_only: bool,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

@@ -6,6 +6,7 @@ pub mod arguments;
 mod input;
 mod output;
 mod states;
+mod transitions;
 mod verbs;
 
 use crate::diagnostic::{self, Diagnostic};
@@ -104,6 +105,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Geometry(geometry) => verbs::geometry(geometry, out, errors),
         Verb::Table(table) => verbs::table(table, out),
         Verb::States(arguments) => states::states(arguments, out, errors),
+        Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }
 

@@ -4,11 +4,13 @@ use super::document::{
     BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA,
     SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
+use super::transitions::{self, Context, TransitionEntry};
 use crate::group::{Detection, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
 use crate::labelling::frontier::{self, Configuration};
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
 use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
+use crate::selection::{self, Choice, SelectError};
 use ndarray::{Array2, Axis};
 use serde_json::{Map, json};
 
@@ -147,6 +149,8 @@ pub fn label_document(
         d_block: builder.d_block(),
         active_window: wanted.window.map(|(below, above)| builder.window(below, above)).unwrap_or_default(),
         sets: Some(sets),
+        transitions: frontier_transitions(molecule, labelled),
+        jahn_teller: Vec::new(),
         thresholds: Some(ThresholdEntry {
             purity: thresholds.purity,
             partner: thresholds.partner,
@@ -156,6 +160,39 @@ pub fn label_document(
         }),
         cautions,
     }
+}
+
+/// Transitions among the two highest occupied and two lowest empty sets; None where the file gives no occupations.
+fn frontier_transitions(molecule: &Molecule, labelled: &Labelled) -> Option<Vec<TransitionEntry>> {
+    let choice = Choice { from: Vec::new(), to: Vec::new(), window: (2, 2), largest_gap: None };
+    let pairs = selection::choose(&labelled.spins, &labelled.symmetry.group, &choice).ok()?;
+    Some(Context::new(molecule, labelled).entries(&pairs))
+}
+
+/// The document of `transitions`: nuclei, sets and the pairs asked for.
+///
+/// # Errors
+/// [`SelectError`] when a name fits no set.
+pub fn transitions_document(
+    file: &str,
+    molecule: &Molecule,
+    labelled: &Labelled,
+    thresholds: &Thresholds,
+    choice: &Choice,
+    allowed_only: bool,
+) -> Result<Document, SelectError> {
+    let pairs = selection::choose(&labelled.spins, &labelled.symmetry.group, choice)?;
+    let context = Context::new(molecule, labelled);
+    let mut entries = context.entries(&pairs);
+    if allowed_only {
+        entries.retain(|entry| entry.electric_dipole.allowed == Some(true));
+    }
+    let mut document = label_document(file, molecule, labelled, None, thresholds, Wanted::default());
+    document.orbitals = None;
+    document.transitions = Some(entries);
+    document.jahn_teller = context.jahn_teller();
+    document.cautions = transitions::CAUTIONS.map(str::to_owned).to_vec();
+    Ok(document)
 }
 
 /// The document of `geometry`: nuclei only.
@@ -177,6 +214,8 @@ pub fn geometry_document(
         frontier: None,
         d_block: Vec::new(),
         active_window: Vec::new(),
+        transitions: None,
+        jahn_teller: Vec::new(),
         thresholds: None,
         cautions: Vec::new(),
     }

@@ -35,6 +35,12 @@ pub struct Document {
     /// Sets around the frontier, where a window was asked for.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub active_window: Vec<WindowEntry>,
+    /// Pairs of sets with rules and strengths: those at the frontier, or those asked for.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub transitions: Option<Vec<super::transitions::TransitionEntry>>,
+    /// Degenerate sets and the vibrations that split them when part-filled.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub jahn_teller: Vec<super::transitions::JahnTellerEntry>,
     /// Limits that decided the labels.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub thresholds: Option<ThresholdEntry>,

@@ -11,4 +11,6 @@ pub mod states_text;
 pub mod rule;
 pub mod table;
 pub mod text;
+pub mod transitions;
+pub mod transitions_text;
 pub mod unicode;

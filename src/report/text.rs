@@ -59,7 +59,7 @@ fn count(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
-fn title(document: &Document) -> String {
+pub(super) fn title(document: &Document) -> String {
     let source = &document.source;
     let mut parts = vec![source.file.clone(), source.formula.clone()];
     if !source.title.is_empty() {
@@ -144,6 +144,7 @@ pub fn label_text(document: &Document, options: TextOptions) -> String {
     }
     out.push_str(&d_block(document));
     out.push_str(&active_window(document));
+    out.push_str(&super::transitions_text::frontier_text(document.transitions.as_deref().unwrap_or_default()));
     if !document.cautions.is_empty() {
         out.push('\n');
         for caution in &document.cautions {

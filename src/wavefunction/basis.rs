@@ -4,7 +4,7 @@
 
 use super::cartesian::squared_norm;
 use crate::model::{Atom, Shell};
-use nalgebra::Point3;
+use nalgebra::{Matrix3, Point3};
 
 /// How a file's contraction coefficients are meant. The contraction is scaled to norm one in either case.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -90,6 +90,16 @@ impl Basis {
     #[must_use]
     pub fn n_functions(&self) -> usize {
         self.n_functions
+    }
+
+    /// The same functions, unturned, on centres turned by `matrix` about `centre`.
+    #[must_use]
+    pub fn with_turned_centres(&self, matrix: &Matrix3<f64>, centre: &Point3<f64>) -> Self {
+        let mut turned = self.clone();
+        for shell in &mut turned.shells {
+            shell.centre = centre + matrix * (shell.centre - centre);
+        }
+        turned
     }
 }
 

@@ -96,7 +96,7 @@ impl Convention {
     }
 
     /// Where the canonical functions of one shell stand in the file, and what their coefficients are multiplied with.
-    fn of_shell(&self, l: usize, pure: bool) -> Vec<(usize, f64)> {
+    fn of_shell(self, l: usize, pure: bool) -> Vec<(usize, f64)> {
         if l < 2 {
             return (0..=2 * l).map(|k| (k, 1.0)).collect();
         }
@@ -115,10 +115,9 @@ impl Convention {
             CartesianNorm::ShellFactor => squared_norm([l, 0, 0]).sqrt(),
         };
         let in_file: Vec<Powers> = match self.order {
-            CartesianOrder::Published => cartesian::monomials(l),
             CartesianOrder::Lexicographic => cartesian::lexicographic(l),
             CartesianOrder::ReversedAboveG if l > 4 => cartesian::lexicographic(l).into_iter().rev().collect(),
-            CartesianOrder::ReversedAboveG => cartesian::monomials(l),
+            CartesianOrder::Published | CartesianOrder::ReversedAboveG => cartesian::monomials(l),
         };
         cartesian::monomials(l)
             .into_iter()
@@ -127,7 +126,7 @@ impl Convention {
     }
 
     /// For every canonical function its place in the file and the factor of its coefficient.
-    fn components(&self, basis: &Basis) -> Vec<(usize, f64)> {
+    fn components(self, basis: &Basis) -> Vec<(usize, f64)> {
         basis
             .shells()
             .iter()
@@ -173,6 +172,8 @@ pub struct Trial {
     pub convention: Convention,
     /// Largest |CᵀSC − 1| over the sample of orbitals.
     pub residual: f64,
+    /// Root of the mean square of CᵀSC − 1 over the sample: what readings are compared by.
+    pub rms: f64,
 }
 
 /// A file whose convention is settled.
@@ -190,6 +191,21 @@ pub struct Settled {
     pub residual: f64,
     /// All readings tried, in the order of likelihood.
     pub trials: Vec<Trial>,
+}
+
+impl Settled {
+    /// Rows over canonical functions as the file would write them: the inverse of what [`settle`] did.
+    #[must_use]
+    pub fn to_file(&self, rows: ArrayView2<'_, f64>) -> Array2<f64> {
+        let components = self.convention.components(&self.basis);
+        let mut result = Array2::zeros(rows.dim());
+        for (source, mut target) in rows.axis_iter(Axis(0)).zip(result.axis_iter_mut(Axis(0))) {
+            for (value, &(place, factor)) in source.iter().zip(&components) {
+                target[place] = value / factor;
+            }
+        }
+        result
+    }
 }
 
 /// No reading makes the orbitals orthonormal.
@@ -231,11 +247,17 @@ fn failure(limit: f64, trials: &[Trial]) -> String {
 const SAMPLE: usize = 96;
 /// Up to this many orbitals every pair is checked, beyond by norms and probes.
 const ALL_PAIRS: usize = 512;
-/// Readings this near to the best one, or below this residual, count as equal: the likelier is taken.
-const TIE_FACTOR: f64 = 2.0;
-const TIE_FLOOR: f64 = 1e-9;
+/// Readings whose root mean square is this near to the best one, or below this value, count as equal: the likelier is taken.
+///
+/// Readings that a file cannot tell apart (signs on a free atom) agree to rounding, so the margin is narrow: digits
+/// cut off in the file make noise in every pair, and a wrong sign of an h function adds to it by a few per cent only.
+const TIE_FACTOR: f64 = 1.01;
+const TIE_FLOOR: f64 = 1e-10;
 
-/// Tries the readings, takes the one with the smallest |CᵀSC − 1|, and rewrites the coefficients to canonical functions.
+/// Tries the readings, takes the one with the smallest CᵀSC − 1, and rewrites the coefficients to canonical functions.
+///
+/// Smallest in the root mean square over all pairs: the largest entry alone is one pair's noise where the file has few
+/// digits. The limit is on the largest entry.
 ///
 /// Readings are compared on a sample of orbitals of both spins; the one taken is confirmed on all: every pair up to
 /// 512 orbitals, beyond that every norm and (CᵀSC − 1)v for fixed vectors v of ±1.
@@ -264,19 +286,21 @@ pub fn settle(molecule: &mut Molecule, limit: f64) -> Result<Settled, Convention
         }
         let Some((_, basis, matrix)) = radial.iter().find(|entry| entry.0 == convention.primitives) else { continue };
         let components = convention.components(basis);
-        let residual = samples
-            .iter()
-            .map(|sample| {
-                let canonical = canonical(sample.view(), &components);
-                all_pairs(canonical.view(), product(canonical.view(), matrix.view()).view())
-            })
-            .fold(0.0, worse);
-        trials.push(Trial { convention, residual });
+        let (mut residual, mut squares, mut n_pairs) = (0.0, 0.0, 0);
+        for sample in &samples {
+            let canonical = canonical(sample.view(), &components);
+            let deviation = deviation(canonical.view(), product(canonical.view(), matrix.view()).view());
+            residual = worse(residual, largest(&deviation));
+            squares += deviation.iter().map(|value| value * value).sum::<f64>();
+            n_pairs += deviation.len();
+        }
+        trials.push(Trial { convention, residual, rms: (squares / n_pairs.max(1) as f64).sqrt() });
     }
-    let best = trials.iter().map(|trial| trial.residual).fold(f64::INFINITY, f64::min);
+    let best = trials.iter().map(|trial| trial.rms).fold(f64::INFINITY, f64::min);
     let tie = (TIE_FACTOR * best).max(TIE_FLOOR);
     let none_fits = |trials: Vec<Trial>| ConventionError::NoneFits { limit, trials };
-    let Some(chosen) = trials.iter().position(|trial| trial.residual <= tie).filter(|_| best <= limit) else {
+    let fits = |trial: &Trial| trial.rms <= tie && trial.residual <= limit;
+    let Some(chosen) = trials.iter().position(fits) else {
         return Err(none_fits(trials));
     };
     let convention = trials[chosen].convention;
@@ -295,7 +319,8 @@ pub fn settle(molecule: &mut Molecule, limit: f64) -> Result<Settled, Convention
         all.push(coefficients);
         products.push(sc);
     }
-    if !(residual <= limit) {
+    // NaN is no fit either.
+    if residual.is_nan() || residual > limit {
         trials[chosen].residual = residual;
         return Err(none_fits(trials));
     }
@@ -331,17 +356,22 @@ fn sample(rows: ArrayView2<'_, f64>) -> Array2<f64> {
     rows.select(Axis(0), &chosen)
 }
 
-fn all_pairs(coefficients: ArrayView2<'_, f64>, products: ArrayView2<'_, f64>) -> f64 {
+/// CᵀSC − 1 for all pairs.
+fn deviation(coefficients: ArrayView2<'_, f64>, products: ArrayView2<'_, f64>) -> Array2<f64> {
     let mut gram = product(coefficients, products.t());
     gram.diag_mut().map_inplace(|value| *value -= 1.0);
-    gram.iter().fold(0.0, |worst, value| worse(worst, value.abs()))
+    gram
+}
+
+fn largest(deviation: &Array2<f64>) -> f64 {
+    deviation.iter().fold(0.0, |worst, value| worse(worst, value.abs()))
 }
 
 /// Largest deviation from orthonormality over all orbitals.
 fn confirm(coefficients: ArrayView2<'_, f64>, products: ArrayView2<'_, f64>) -> f64 {
     let n = coefficients.nrows();
     if n <= ALL_PAIRS {
-        return all_pairs(coefficients, products);
+        return largest(&deviation(coefficients, products));
     }
     let norms = coefficients.outer_iter().zip(products.outer_iter()).map(|(c, sc)| (c.dot(&sc) - 1.0).abs());
     let mut worst = norms.fold(0.0, worse);

@@ -18,4 +18,4 @@ pub use moments::{Moments, moments};
 pub use overlap::{overlap, overlap_between};
 pub use population::lowdin;
 pub use product::product;
-pub use turn::{Turning, TurningError};
+pub use turn::{Turning, TurningError, overlap_with_turned};

@@ -1,11 +1,14 @@
-//! An operation on orbitals whose atoms land on like atoms: shells change places and turn.
+//! An operation on orbitals.
 //!
-//! Not here: operations that carry atoms onto nothing.
+//! Two paths. [`Turning`]: atoms land on like atoms, shells change places and turn; right also for nuclei a hair off.
+//! [`overlap_with_turned`]: any operation, whether or not it carries atoms onto atoms, by true overlaps.
+//! Not here: finding operations (`group::detect`), what follows from ⟨i|R|i⟩ (`labelling`).
 
 use super::basis::Basis;
 use super::cartesian::{L_MAX, shell_rotation};
-use nalgebra::{DMatrix, Matrix3};
-use ndarray::{ArrayView1, ArrayViewMut1};
+use super::overlap::overlap_between;
+use nalgebra::{DMatrix, Matrix3, Point3};
+use ndarray::{Array2, ArrayView1, ArrayViewMut1, Axis, parallel::prelude::*};
 use thiserror::Error;
 
 /// An operation that does not carry the basis onto itself.
@@ -56,11 +59,7 @@ impl Turning {
                 moves[source] = (source_shell.offset, image_shell.offset, kind);
             }
         }
-        let used = |kind: usize| basis.shells().iter().any(|shell| 2 * shell.l + usize::from(shell.pure) == kind);
-        let matrices = (0..2 * (L_MAX + 1))
-            .map(|kind| if used(kind) { shell_rotation(kind / 2, kind % 2 == 1, matrix) } else { DMatrix::zeros(0, 0) })
-            .collect();
-        Ok(Self { moves, matrices })
+        Ok(Self { moves, matrices: kinds_of_matrices(basis, matrix) })
     }
 
     /// Coefficients of the turned orbital.
@@ -86,4 +85,38 @@ impl Turning {
         }
         sum
     }
+}
+
+/// One matrix for each kind of shell, 2l + (1 when pure); empty for kinds that the basis has not.
+fn kinds_of_matrices(basis: &Basis, matrix: &Matrix3<f64>) -> Vec<DMatrix<f64>> {
+    let used = |kind: usize| basis.shells().iter().any(|shell| 2 * shell.l + usize::from(shell.pure) == kind);
+    (0..2 * (L_MAX + 1))
+        .map(|kind| if used(kind) { shell_rotation(kind / 2, kind % 2 == 1, matrix) } else { DMatrix::zeros(0, 0) })
+        .collect()
+}
+
+/// ⟨μ|R|ν⟩ for the operation `matrix` (file axes) about `centre`: n_functions × n_functions.
+///
+/// Atoms need not land on atoms. A core function that misses its image by a few hundredths of a bohr hardly overlaps
+/// with it: where a permutation of atoms exists, [`Turning`] is the path to take. Costs one overlap, n².
+///
+/// # Holds
+/// The matrix of the inverse operation is the transpose.
+#[must_use]
+pub fn overlap_with_turned(basis: &Basis, matrix: &Matrix3<f64>, centre: &Point3<f64>) -> Array2<f64> {
+    let matrices = kinds_of_matrices(basis, matrix);
+    let mut overlap = overlap_between(basis, &basis.with_turned_centres(matrix, centre));
+    // R ν is a combination of the functions of its own shell on the turned centre.
+    overlap.axis_iter_mut(Axis(0)).into_par_iter().for_each(|mut row| {
+        let mut values = Vec::new();
+        for shell in basis.shells() {
+            let turn = &matrices[2 * shell.l + usize::from(shell.pure)];
+            values.clear();
+            values.extend(shell.range().map(|k| row[k]));
+            for (column, place) in turn.column_iter().zip(shell.range()) {
+                row[place] = column.iter().zip(&values).map(|(factor, value)| factor * value).sum();
+            }
+        }
+    });
+    overlap
 }

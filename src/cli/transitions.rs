@@ -1,0 +1,40 @@
+//! The verb `transitions`: label the orbitals, pair the sets asked for, deliver.
+
+use super::arguments::{Format, Transitions};
+use super::verbs::{json, read};
+use super::{CliError, Status, input, output, use_threads};
+use crate::labelling::{self, Thresholds};
+use crate::model::{self, ANGSTROM_PER_BOHR};
+use crate::report::build;
+use crate::report::text::EV_PER_HARTREE;
+use crate::report::transitions_text::transitions_text;
+use crate::selection::Choice;
+use std::io::Write;
+
+pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
+    use_threads(&arguments.common)?;
+    let path = &arguments.file;
+    let bytes = input::open(path)?;
+    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
+    let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
+    let labelled = labelling::label(&mut molecule, &thresholds)
+        .map_err(|source| CliError::Label { path: path.clone(), source })?;
+    let choice = Choice {
+        from: arguments.from.clone(),
+        to: arguments.to.clone(),
+        window: arguments.window,
+        largest_gap: arguments.max_ev.map(|ev| ev / EV_PER_HARTREE),
+    };
+    let name = path.display().to_string();
+    let document =
+        build::transitions_document(&name, &molecule, &labelled, &thresholds, &choice, arguments.allowed_only)
+            .map_err(|error| CliError::Usage(format!("{name}: {error}")))?;
+    let printed = match arguments.common.format {
+        Format::Text => transitions_text(&document).into_bytes(),
+        Format::Json => json(&document)?,
+        Format::Csv => return Err(CliError::Usage("transitions prints text or json, not csv".to_owned())),
+    };
+    output::deliver(arguments.common.output.as_deref(), &printed, out)?;
+    Ok(Status::Done)
+}
