@@ -26,6 +26,8 @@ pub enum Verb {
     States(States),
     /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
     Transitions(Transitions),
+    /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
+    Modes(Modes),
 }
 
 /// Options of every verb.
@@ -171,6 +173,19 @@ pub struct Transitions {
     /// Only pairs that an electric dipole connects
     #[arg(long)]
     pub allowed_only: bool,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `modes`.
+#[derive(Debug, Args)]
+pub struct Modes {
+    /// Molden-format or XYZ file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
     /// Distance a nucleus may lie from its symmetric place, Å
     #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
     pub tolerance: f64,

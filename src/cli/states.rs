@@ -9,6 +9,7 @@ use crate::group::{DoubleGroup, GroupName, PointGroup};
 use crate::labelling::configuration::{Obstacle, open_shells};
 use crate::labelling::{self, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Spin};
+use crate::modes;
 use crate::report::double_table;
 use crate::report::states::{Stage, StatesDocument};
 use crate::report::states_text::{self, StatesOptions};
@@ -185,8 +186,8 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
     let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
     let group = &labelled.symmetry.group;
     let double = DoubleGroup::of(group).map_err(|source| failed(source.into()))?;
-    let is_atom: Vec<bool> = molecule.atoms.iter().map(|atom| !atom.ghost).collect();
-    let vibrations = labelled.symmetry.vibrations(&is_atom).map_err(|source| failed(source.into()))?;
+    let vibrations =
+        modes::motion(&molecule.atoms, &labelled.symmetry).map_err(|source| failed(source.into()))?.vibrations;
     let stage = Stage { group, double: &double, vibrations: Some(&vibrations) };
     let mut document = StatesDocument::new(group, Some(path.display().to_string()));
     match open_shells(group, &labelled.spins) {

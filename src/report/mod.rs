@@ -5,6 +5,8 @@
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod modes;
+pub mod modes_text;
 pub mod double_table;
 pub mod states;
 pub mod states_text;

@@ -8,7 +8,7 @@ use super::text::{head, push_table, table};
 use super::unicode::pretty;
 use crate::group::{GroupError, IrrepName, PointGroup};
 use crate::selection::rules::QUADRATIC;
-use crate::selection::{Allowed, Operators, states};
+use crate::selection::{Allowed, Operators};
 use serde::Serialize;
 use std::fmt::Write as _;
 
@@ -144,7 +144,7 @@ pub fn state(group: &PointGroup, operators: &Operators, irrep: usize) -> StateRu
     let name = |irrep: usize| group.irreps()[irrep].name.to_string();
     let direct = operators.polarisation(irrep);
     let helpers = if direct.is_empty() { operators.helpers(group, irrep) } else { Vec::new() };
-    let sublevels = states::triplet_sublevels(group, operators, irrep).unwrap_or_default();
+    let sublevels = operators.triplet_sublevels(group, irrep).unwrap_or_default();
     StateRule {
         irrep: name(irrep),
         electric_dipole: dipole(&direct),

@@ -2,8 +2,9 @@
 //!
 //! Not here: any number that the document does not hold.
 
-use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, SpinFrontier};
+use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, Source, SpinFrontier};
 use super::unicode::pretty;
+use crate::group::IrrepName;
 use crate::model::Spin;
 use comfy_table::{CellAlignment, Table, presets};
 use std::fmt::Write as _;
@@ -54,13 +55,23 @@ pub(super) fn wrap(text: &str, width: usize) -> Vec<String> {
     lines
 }
 
+/// A sentence with the irreps in it set as people print them.
+fn pretty_irreps(text: &str) -> String {
+    let word = |word: &str| if word.parse::<IrrepName>().is_ok() { pretty(word) } else { word.to_owned() };
+    text.split(' ').map(word).collect::<Vec<_>>().join(" ")
+}
+
 /// A number of electrons without needless decimals.
 fn count(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
 pub(super) fn title(document: &Document) -> String {
-    let source = &document.source;
+    source_line(&document.source)
+}
+
+/// File, formula, title, atoms, electrons and charge.
+pub(super) fn source_line(source: &Source) -> String {
     let mut parts = vec![source.file.clone(), source.formula.clone()];
     if !source.title.is_empty() {
         parts.push(format!("“{}”", source.title));
@@ -191,7 +202,7 @@ fn answer(document: &Document, sets: &[SetEntry]) -> String {
         }
     }
     if frontier.spins.iter().any(|spin| spin.homo.is_some() || !spin.somo.is_empty()) {
-        head(&mut out, "Determinant", &pretty(&frontier.determinant));
+        head(&mut out, "Determinant", &pretty_irreps(&frontier.determinant));
         let totals: Vec<String> = frontier
             .electrons_per_irrep
             .iter()
