@@ -1,6 +1,5 @@
 //! Laws of terms, levels and double groups, tried on every family of groups; second paths that share no code with the program's.
 #![allow(clippy::unwrap_used, reason = "a test may stop at once")]
-
 #![expect(clippy::unwrap_used, reason = "a test that cannot build its input fails")]
 
 use orbsieve::group::irrep_name::{IrrepName, Parity};
