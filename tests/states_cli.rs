@@ -116,8 +116,8 @@ fn open_shells_of_files_are_configurations() {
 #[test]
 fn broken_open_shells_are_explained() {
     for (file, reason) in [
-        ("broken_chromium_fluoride_d1", "of 1t2g, stands for 1 of 3 partners"),
-        ("broken_nitric_oxide", "of 2pi, stands for 1 of 2 partners"),
+        ("broken_chromium_fluoride_d1", ": 1 of the 3 partners of 1t2g"),
+        ("broken_nitric_oxide", ": 1 of the 2 partners of 2pi"),
         ("broken_h2_stretched", "belongs to no irrep"),
         ("xtb_amidogen", "further than 0.02 from a whole number"),
     ] {

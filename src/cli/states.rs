@@ -212,7 +212,10 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
             fill(&mut document, arguments, &stage, &configuration)?;
         }
         Err(obstacles) => {
-            document.obstacles = obstacles.iter().map(|obstacle| obstacle_in_words(group, obstacle)).collect();
+            // What lacks partners says more than what is merely spread.
+            let (lacking, spread): (Vec<_>, Vec<_>) = obstacles.iter().partition(|obstacle| lacks_partners(obstacle));
+            document.obstacles =
+                lacking.into_iter().chain(spread).map(|obstacle| obstacle_in_words(group, obstacle)).collect();
         }
     }
     levels(&mut document, arguments, &stage)?;
@@ -228,13 +231,13 @@ fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
             format!("{} {holds} to no irrep: the symmetry is broken", orbital_numbers(*spin, orbitals))
         }
         Obstacle::Incomplete { spin, irrep, number, orbitals, wanted, .. } if orbitals.len() < *wanted => format!(
-            "{}, of {}, stands for {} of {wanted} partners: the others are filled differently, missing or at another energy",
+            "{}: {} of the {wanted} partners of {}; the others are filled differently, missing or at another energy",
             orbital_numbers(*spin, orbitals),
-            set(*irrep, *number),
-            orbitals.len()
+            orbitals.len(),
+            set(*irrep, *number)
         ),
         Obstacle::Incomplete { spin, irrep, number, orbitals, spread_hartree, .. } => format!(
-            "{}, the partners of {}, do not keep together: their energies are spread over {spread_hartree:.4} hartree",
+            "{}: the partners of {}, which do not keep together; their energies are spread over {spread_hartree:.4} hartree",
             orbital_numbers(*spin, orbitals),
             set(*irrep, *number)
         ),
@@ -242,6 +245,10 @@ fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
             format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
         }
     }
+}
+
+fn lacks_partners(obstacle: &Obstacle) -> bool {
+    !matches!(obstacle, Obstacle::Incomplete { orbitals, wanted, .. } if orbitals.len() >= *wanted)
 }
 
 fn orbital_numbers(spin: Spin, orbitals: &[usize]) -> String {

@@ -148,13 +148,11 @@ fn rows(entries: &[TransitionEntry]) -> String {
         if centre { "Laporte" } else { "" },
         "",
     ]);
-    let mut note = 0;
+    let notes = notes(entries);
     for entry in entries {
-        let mut mark = if entry.strongest { "strongest" } else { "" }.to_owned();
-        if !entry.remarks.is_empty() {
-            note += 1;
-            let _ = write!(mark, "{}[{note}]", if mark.is_empty() { "" } else { " " });
-        }
+        let strongest = entry.strongest.then(|| "strongest".to_owned());
+        let numbers = entry.remarks.iter().filter_map(|remark| notes.iter().position(|note| *note == remark.as_str()));
+        let mark: Vec<String> = strongest.into_iter().chain(numbers.map(|note| format!("[{}]", note + 1))).collect();
         let f = |value: Option<f64>| value.map_or("—".to_owned(), strength);
         let magnetic: Vec<&str> = entry.magnetic_dipole.components.iter().map(|name| &name[1..]).collect();
         rows.add_row([
@@ -171,8 +169,8 @@ fn rows(entries: &[TransitionEntry]) -> String {
             f(entry.electric_dipole.oscillator_strength_velocity),
             if magnetic.is_empty() { "—".to_owned() } else { format!("R {}", magnetic.join(",")) },
             if entry.two_photon.allowed == Some(true) { "yes" } else { "—" }.to_owned(),
-            entry.laporte.as_deref().map_or(String::new(), rule::laporte),
-            mark,
+            entry.laporte.as_deref().map_or(String::new(), |parities| rule::laporte(parities)),
+            mark.join(" "),
         ]);
     }
     for column in [2, 5, 6] {
@@ -190,14 +188,24 @@ fn paragraph(out: &mut String, first: &str, text: &str) {
     }
 }
 
+/// Different remarks in order of appearance.
+fn notes(entries: &[TransitionEntry]) -> Vec<&str> {
+    let mut notes: Vec<&str> = Vec::new();
+    for remark in entries.iter().flat_map(|entry| &entry.remarks) {
+        if !notes.contains(&remark.as_str()) {
+            notes.push(remark);
+        }
+    }
+    notes
+}
+
 fn remarks(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
-    let with_remarks = entries.iter().filter(|entry| !entry.remarks.is_empty());
-    for (at, entry) in with_remarks.enumerate() {
+    for (at, note) in notes(entries).into_iter().enumerate() {
         if at == 0 {
             out.push_str("\nWhere rule and number need a word\n");
         }
-        paragraph(&mut out, &format!("[{}]", at + 1), &format!("{}: {}", arrow(entry), entry.remarks.join(". ")));
+        paragraph(&mut out, &format!("[{}]", at + 1), note);
     }
     out
 }
