@@ -114,6 +114,22 @@ fn open_shells_of_files_are_configurations() {
 }
 
 #[test]
+fn modes_of_the_molecule_stand_beside_those_that_the_group_allows() {
+    // Hexaaquamanganese(II), Th: characters of 3N by hand 57 (E), 0 (C3), −3 (C2), −3 (i), 0 (S6), 9 (σh) give
+    // 3 Ag + Au + 3 Eg + Eu + 5 Tg + 8 Tu; a ⁴Tg term is split by eg and tg.
+    let document = json(&["states", "tests/molecules/manganese_aqua_sextet_th_sto3g.molden", "--quiet"]);
+    let terms = document["configuration"]["terms"].as_array().unwrap();
+    let term = terms.iter().find(|term| term["term"] == "4Tg").unwrap();
+    let modes: Vec<(&str, u64)> = term["jahn_teller"]["modes"]
+        .as_array()
+        .unwrap()
+        .iter()
+        .map(|mode| (mode["irrep"].as_str().unwrap(), mode["in_molecule"].as_u64().unwrap()))
+        .collect();
+    assert_eq!(modes, [("Eg", 3), ("Tg", 5)]);
+}
+
+#[test]
 fn broken_open_shells_are_explained() {
     for (file, reason) in [
         ("broken_chromium_fluoride_d1", ": 1 of the 3 partners of 1t2g"),
