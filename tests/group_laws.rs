@@ -1,4 +1,5 @@
 //! Laws that hold for every point group, tried on every family to n = 30, the cubic and icosahedral groups.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use nalgebra::{DMatrix, Matrix3};
 use orbsieve::group::irrep_name::Letter;

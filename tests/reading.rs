@@ -1,4 +1,5 @@
 //! The reader against files it must read alike, and against bytes that are no file at all.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use ndarray::Array2;
 use orbsieve::model::{self, Molecule, Spin};

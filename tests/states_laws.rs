@@ -1,4 +1,6 @@
 //! Laws of terms, levels and double groups, tried on every family of groups; second paths that share no code with the program's.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
+#![expect(clippy::unwrap_used, reason = "a test that cannot build its input fails")]
 
 use orbsieve::group::irrep_name::{IrrepName, Parity};
 use orbsieve::group::{DoubleGroup, GroupName, Kramers, PointGroup};
@@ -172,7 +174,7 @@ fn terms_of_atoms_agree_with_counting() {
             assert_eq!(of_atom(&atom, &[(l, electrons)]), by_counting(&[(l, electrons)]), "l = {l}, n = {electrons}");
         }
     }
-    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 3)], &[(4, 2)]] {
+    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 7)], &[(2, 2), (3, 6)], &[(4, 3)]] {
         assert_eq!(of_atom(&atom, shells), by_counting(shells), "{shells:?}");
     }
 }
@@ -325,7 +327,7 @@ proptest! {
         let Ok(configuration) = Configuration::new(&group, &shells) else { return Ok(()) };
         let Ok(list) = terms(&group, &configuration) else { return Ok(()) };
         let states: usize = list.iter().map(|term| term.states(&group)).sum();
-        prop_assert_eq!(states as f64, configuration.microstates());
+        prop_assert!((states as f64 - configuration.microstates()).abs() < 0.5);
         // Holes: the same terms.
         let holes: Vec<(usize, Option<u32>, u32)> = configuration
             .shells()

@@ -1,4 +1,5 @@
 //! Moments between orbitals against a reference library, and the transitions of real molecules against published rules.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 mod support;
 
@@ -27,7 +28,8 @@ fn moments_agree_with_a_reference_library() {
         let orbitals = molecule.orbital_sets[0].coefficients.view();
         let moments = wavefunction::moments(&settled.basis, &origin, orbitals, orbitals);
         for pair in row["pairs"].as_array().unwrap() {
-            let (i, j) = (pair["bra"].as_u64().unwrap() as usize, pair["ket"].as_u64().unwrap() as usize);
+            let place = |key: &str| usize::try_from(pair[key].as_u64().unwrap()).unwrap();
+            let (i, j) = (place("bra"), place("ket"));
             for (at, (ours, theirs)) in matrices(&moments).iter().zip(numbers(&pair["moments"])).enumerate() {
                 let ours = ours[(i, j)];
                 assert!(

@@ -1,5 +1,6 @@
 //! Functions, overlaps, moments, conventions, operations and populations, against a reference library
 //! (`tests/molecules/reference`, made by `tests/molecules/scripts/reference_values.py`), laws, and a second path.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use nalgebra::{DMatrix, Matrix3, Point3, Rotation3, Vector3};
 use ndarray::{Array1, Array2, Array3, ArrayView2, Axis, stack};
@@ -387,7 +388,9 @@ fn moments_of_all_degrees_follow_from_moving_and_turning() {
             let unit = Vector3::ith_axis(axis);
             let moved = |step: f64| {
                 let mut atoms = molecule.atoms.clone();
-                atoms.iter_mut().for_each(|atom| atom.position += step * *unit);
+                for atom in &mut atoms {
+                    atom.position += step * *unit;
+                }
                 overlap_between(&basis, &Basis::new(&atoms, &molecule.shells, Primitives::Normalised))
             };
             // f(r − a) changes with a as −∇f.
@@ -440,6 +443,7 @@ fn lowdin_populations_are_those_of_the_reference() {
 }
 
 /// Four atoms on a tilted square, functions of every degree, pure and Cartesian; its quarter turn and a mirror.
+#[expect(clippy::type_complexity, reason = "a basis and its operations with their permutations, used here only")]
 fn square() -> (Basis, Vec<(Matrix3<f64>, Vec<usize>)>) {
     let tilt = Rotation3::from_euler_angles(0.3, -0.8, 1.9).into_inner();
     let corners = [[1.3, 0.0, 0.0], [0.0, 1.3, 0.0], [-1.3, 0.0, 0.0], [0.0, -1.3, 0.0]];

@@ -67,15 +67,12 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     let stage = Stage { group: &group, double: &double, vibrations: None };
     let mut document = StatesDocument::new(&group, None);
     if let Some(text) = text {
-        match ionic_shell(&group, text) {
-            Some((l, electrons)) => {
-                let found = correlation(&group, &double, l, electrons).map_err(usage)?;
-                document.correlation = Some(stage.correlation(&found));
-            }
-            None => {
-                let configuration = Configuration::parse(&group, text).map_err(usage)?;
-                fill(&mut document, arguments, &stage, &configuration)?;
-            }
+        if let Some((l, electrons)) = ionic_shell(&group, text) {
+            let found = correlation(&group, &double, l, electrons).map_err(usage)?;
+            document.correlation = Some(stage.correlation(&found));
+        } else {
+            let configuration = Configuration::parse(&group, text).map_err(usage)?;
+            fill(&mut document, arguments, &stage, &configuration)?;
         }
     }
     levels(&mut document, arguments, &stage)?;
@@ -209,26 +206,33 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
 }
 
 fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
-    let orbitals = |spin: Spin, orbitals: &[usize]| {
-        let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
-        let plural = if numbers.len() == 1 { "" } else { "s" };
-        let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
-        format!("{spin} orbital{plural} {}", numbers.join(", "))
-    };
     let set = |irrep: usize, number: usize| format!("{number}{}", group.irreps()[irrep].name.symbol());
     match obstacle {
         Obstacle::NoOccupations => "the file gives no occupations".to_owned(),
-        Obstacle::Unlabelled { spin, orbitals: list } => {
-            format!("{} hold electrons and belong to no irrep: the symmetry is broken", orbitals(*spin, list))
+        Obstacle::Unlabelled { spin, orbitals } => {
+            let holds = if orbitals.len() == 1 { "holds electrons and belongs" } else { "hold electrons and belong" };
+            format!("{} {holds} to no irrep: the symmetry is broken", orbital_numbers(*spin, orbitals))
         }
-        Obstacle::Incomplete { spin, irrep, number, orbitals: list, wanted } => format!(
-            "{} make {} of {wanted} partners of {}: the others are filled differently, missing or at another energy",
-            orbitals(*spin, list),
-            list.len(),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, wanted, .. } if orbitals.len() < *wanted => format!(
+            "{}, of {}, stands for {} of {wanted} partners: the others are filled differently, missing or at another energy",
+            orbital_numbers(*spin, orbitals),
+            set(*irrep, *number),
+            orbitals.len()
+        ),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, spread_hartree, .. } => format!(
+            "{}, the partners of {}, do not keep together: their energies are spread over {spread_hartree:.4} hartree",
+            orbital_numbers(*spin, orbitals),
             set(*irrep, *number)
         ),
         Obstacle::Fractional { irrep, number, electrons, limit } => {
             format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
         }
     }
+}
+
+fn orbital_numbers(spin: Spin, orbitals: &[usize]) -> String {
+    let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
+    let plural = if numbers.len() == 1 { "" } else { "s" };
+    let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
+    format!("{spin} orbital{plural} {}", numbers.join(", "))
 }

@@ -51,13 +51,11 @@ impl DoubleName {
     /// As printed: `E₁/₂g`, `T₂g`.
     #[must_use]
     pub fn pretty(&self) -> String {
-        match self {
-            Self::Single(name) => name.pretty(),
-            _ => {
-                let subscript = |c: char| c.to_digit(10).and_then(|digit| char::from_u32(0x2080 + digit)).unwrap_or(c);
-                self.to_string().replace('_', "").chars().map(subscript).collect()
-            }
+        if let Self::Single(name) = self {
+            return name.pretty();
         }
+        let subscript = |c: char| c.to_digit(10).and_then(|digit| char::from_u32(0x2080 + digit)).unwrap_or(c);
+        self.to_string().replace('_', "").chars().map(subscript).collect()
     }
 }
 

@@ -42,7 +42,7 @@ impl CharacterTable for PointGroup {
         if let IrrepName::Atomic { l, parity } = irrep.name {
             // Classes of the quadrature have no elements: the angle tells.
             let (angle, proper) = self.angle(class);
-            let sign = if proper || parity == Parity::Even || k % 2 == 0 { 1.0 } else { -1.0 };
+            let sign = if proper || parity == Parity::Even || k.is_multiple_of(2) { 1.0 } else { -1.0 };
             return sign * harmonic_character(usize::from(l), angle * k as f64);
         }
         let member = self.classes()[class].members.first().copied().unwrap_or(0);

@@ -51,7 +51,7 @@ pub fn frontier(sets: &[SetLabel], capacity: f64) -> Frontier {
     let with = |wanted: Filling| {
         sets.iter().enumerate().filter(move |(_, set)| filling(set, capacity) == Some(wanted)).map(|(i, _)| i)
     };
-    let (homo, lumo) = (with(Filling::Full).last(), with(Filling::Empty).next());
+    let (homo, lumo) = (with(Filling::Full).next_back(), with(Filling::Empty).next());
     let out_of_order = matches!((homo, lumo), (Some(homo), Some(lumo)) if lumo < homo);
     Frontier { homo, somo: with(Filling::Part).collect(), lumo, out_of_order }
 }

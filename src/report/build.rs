@@ -13,6 +13,7 @@ use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
 use crate::selection::{self, Choice, SelectError};
 use ndarray::{Array2, Axis};
 use serde_json::{Map, json};
+use std::fmt::Write as _;
 
 /// Shares below this are not listed.
 const SHARE_FLOOR: f64 = 0.01;
@@ -75,12 +76,16 @@ fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
     };
     let mut text = symmetry.frame.convention.clone();
     let free = molecule.atoms.len() < 2 || symmetry.group.name() == crate::group::GroupName::C1;
+    // What all three pass is the centre and tells nothing.
+    let [x, y, z] = &symmetry.passages;
+    let central_atom = |i: &usize| [x, y, z].iter().all(|passage| passage.atoms.contains(i));
+    let central_bond = |bond: &(usize, usize)| [x, y, z].iter().all(|passage| passage.bonds.contains(bond));
     for (axis, passage) in ["x", "y", "z"].iter().zip(&symmetry.passages).filter(|_| !free) {
-        let atoms = list(passage.atoms.iter().map(atom).collect(), "atoms");
-        let bonds = list(passage.bonds.iter().map(bond).collect(), "bonds");
+        let atoms = list(passage.atoms.iter().filter(|i| !central_atom(i)).map(atom).collect(), "atoms");
+        let bonds = list(passage.bonds.iter().filter(|pair| !central_bond(pair)).map(bond).collect(), "bonds");
         let parts: Vec<String> = [atoms, bonds].into_iter().flatten().collect();
         if !parts.is_empty() {
-            text.push_str(&format!("; {axis} passes {}", parts.join(" and ")));
+            let _ = write!(text, "; {axis} passes {}", parts.join(" and "));
         }
     }
     text

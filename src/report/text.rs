@@ -4,6 +4,7 @@
 
 use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, Source, SpinFrontier};
 use super::unicode::pretty;
+use crate::group::IrrepName;
 use crate::model::Spin;
 use comfy_table::{CellAlignment, Table, presets};
 use std::fmt::Write as _;
@@ -52,6 +53,12 @@ pub(super) fn wrap(text: &str, width: usize) -> Vec<String> {
         }
     }
     lines
+}
+
+/// A sentence with the irreps in it set as people print them.
+fn pretty_irreps(text: &str) -> String {
+    let word = |word: &str| if word.parse::<IrrepName>().is_ok() { pretty(word) } else { word.to_owned() };
+    text.split(' ').map(word).collect::<Vec<_>>().join(" ")
 }
 
 /// A number of electrons without needless decimals.
@@ -195,7 +202,7 @@ fn answer(document: &Document, sets: &[SetEntry]) -> String {
         }
     }
     if frontier.spins.iter().any(|spin| spin.homo.is_some() || !spin.somo.is_empty()) {
-        head(&mut out, "Determinant", &pretty(&frontier.determinant));
+        head(&mut out, "Determinant", &pretty_irreps(&frontier.determinant));
         let totals: Vec<String> = frontier
             .electrons_per_irrep
             .iter()

@@ -169,7 +169,7 @@ fn rows(entries: &[TransitionEntry]) -> String {
             f(entry.electric_dipole.oscillator_strength_velocity),
             if magnetic.is_empty() { "—".to_owned() } else { format!("R {}", magnetic.join(",")) },
             if entry.two_photon.allowed == Some(true) { "yes" } else { "—" }.to_owned(),
-            entry.laporte.as_deref().map_or(String::new(), |parities| rule::laporte(parities)),
+            entry.laporte.as_deref().map_or(String::new(), rule::laporte),
             mark.join(" "),
         ]);
     }

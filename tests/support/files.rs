@@ -1,4 +1,5 @@
 //! Fixtures by name, labelled, and copies of them changed in ways that mean nothing.
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use ndarray::{Array2, s};
 use orbsieve::labelling::{Labelled, Thresholds, label};
@@ -47,6 +48,12 @@ impl Sequence {
         Self(seed.wrapping_mul(0x9E37_79B9_7F4A_7C15) | 1)
     }
 
+    /// A whole number from 0 to n − 1.
+    pub fn below(&mut self, n: usize) -> usize {
+        let _ = self.next();
+        usize::try_from((self.0 >> 33) % n as u64).unwrap()
+    }
+
     pub fn next(&mut self) -> f64 {
         self.0 = self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
         (self.0 >> 11) as f64 / (1_u64 << 53) as f64
@@ -61,14 +68,14 @@ pub fn disturbed(name: &str, seed: u64) -> Molecule {
     let mut random = Sequence::new(seed);
     let matrix = nalgebra::Rotation3::from_euler_angles(6.0 * random.next(), 3.0 * random.next(), 6.0 * random.next())
         .into_inner()
-        * if seed % 2 == 0 { 1.0 } else { -1.0 };
+        * if seed.is_multiple_of(2) { 1.0 } else { -1.0 };
     let shift = nalgebra::Vector3::new(random.next(), random.next(), random.next()) * 5.0;
     let identity: Vec<usize> = (0..molecule.atoms.len()).collect();
     let turning = Turning::by_permutation(&labelled.settled.basis, &identity, &matrix).unwrap();
     // Another order of atoms; shells follow their atoms.
     let mut order = identity;
     for i in (1..order.len()).rev() {
-        order.swap(i, (random.next() * (i + 1) as f64) as usize);
+        order.swap(i, random.below(i + 1));
     }
     let shells = labelled.settled.basis.shells();
     let mut shell_order: Vec<usize> = (0..shells.len()).collect();
