@@ -238,3 +238,22 @@ fn open_shells_tell_their_states() {
     let states = manganese[0].states.as_ref().unwrap();
     assert_eq!((states.ground[0].as_str(), states.ground_decided), ("6Ag", true));
 }
+
+/// A file with orbitals and modes of one geometry tells which of its modes open a state: benzene's ¹B2u borrows through the four
+/// e2g pairs (J. Chem. Phys. 112, 2798 (2000)). Their wavenumbers agree with those of another engine at the same level.
+#[test]
+fn helpers_are_named_by_the_files_own_modes() {
+    let (molecule_, labels) = labelled("benzene_with_modes_sto3g");
+    let benzene = entries(&molecule_, &labels, (1, 1));
+    let helper = benzene[0].vibronic.iter().find(|helper| helper.state == "B2u" && helper.irrep == "E2g").unwrap();
+    assert_eq!((helper.modes_in_molecule, helper.modes.len()), (4, 8));
+    let other = molecule("psi4_modes_benzene").vibrations.unwrap();
+    for mode in &helper.modes {
+        let ours = mode.wavenumber_per_cm.unwrap();
+        let theirs = other.modes[mode.mode - 1].wavenumber.unwrap();
+        assert!((ours - theirs).abs() < 2.0, "{ours} {theirs}");
+    }
+    // Loss of an e1g electron distorts along e2g: common practice for the benzene cation.
+    let split = Context::new(&molecule_, &labels).jahn_teller();
+    assert_eq!((split[0].label.as_str(), split[0].vibrations[0].irrep.as_str()), ("1e1g", "E2g"));
+}

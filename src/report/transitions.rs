@@ -503,6 +503,9 @@ fn remark(finding: &Finding, group: &str) -> String {
         Finding::WeakThoughAllowed(strength) => {
             format!("allowed, yet the strength is {strength:.1e} au: symmetry permits it, the orbitals do not use it")
         }
+        Finding::FormsDiffer(length, velocity) => format!(
+            "length form gives f = {length:.0e}, velocity form {velocity:.0e}: this basis and these gaps do not settle the strength"
+        ),
         Finding::Incomplete => "a set lacks partners: the strength is not that of the whole level".to_owned(),
     }
 }
