@@ -1,5 +1,7 @@
 //! Normal modes of files from engines: kinds, irreps, sets, and the check against counting from the nuclei.
 
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
+
 mod support;
 
 use nalgebra::{Rotation3, Vector3};

@@ -342,21 +342,21 @@ impl Context<'_> {
             electric_dipole: ElectricDipole {
                 allowed: dipole,
                 polarisation,
-                strength_au: strengths.length.iter().sum(),
-                strength_by_axis_au: strengths.length,
-                oscillator_strength: strengths.oscillator_length(),
-                velocity_strength_au: strengths.velocity.iter().sum(),
-                oscillator_strength_velocity: strengths.oscillator_velocity(),
+                strength_au: tidy(strengths.length.iter().sum()),
+                strength_by_axis_au: strengths.length.map(tidy),
+                oscillator_strength: strengths.oscillator_length().map(tidy),
+                velocity_strength_au: tidy(strengths.velocity.iter().sum()),
+                oscillator_strength_velocity: strengths.oscillator_velocity().map(tidy),
             },
             magnetic_dipole: Magnetic {
                 allowed: magnetic,
                 components: rotations,
-                strength_au: strengths.magnetic.iter().sum(),
+                strength_au: tidy(strengths.magnetic.iter().sum()),
             },
             electric_quadrupole: Magnetic {
                 allowed: quadrupole,
                 components: quadratic,
-                strength_au: strengths.quadrupole_total(),
+                strength_au: tidy(strengths.quadrupole_total()),
             },
             two_photon: TwoPhoton { allowed: two_photon, components: two_photon_components },
             laporte: allowed.as_ref().and_then(|rule| rule.parity_changes).zip(from.irrep.zip(to.irrep)).map(
@@ -486,6 +486,11 @@ impl Context<'_> {
             }
         }
     }
+}
+
+/// Without digits that only rounding decides.
+fn tidy(value: f64) -> f64 {
+    (value * 1e12).round() / 1e12
 }
 
 /// A finding in words.
