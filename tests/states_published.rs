@@ -2,7 +2,6 @@
 //!
 //! "Matrix groups": worked out from explicitly generated matrices by another program, checked by the number of microstates.
 #![allow(clippy::unwrap_used, reason = "a test may stop at once")]
-#![expect(clippy::unwrap_used, reason = "a test that cannot build its input fails")]
 
 use orbsieve::group::irrep_name::Parity;
 use orbsieve::group::{DoubleGroup, GroupName, PointGroup};

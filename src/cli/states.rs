@@ -5,7 +5,7 @@ use super::verbs::{json, read};
 use super::{CliError, Status, input, output, use_threads};
 use crate::group::double_name::half;
 use crate::group::irrep_name::Parity;
-use crate::group::{DoubleGroup, GroupName, PointGroup};
+use crate::group::{DoubleGroup, GroupName, IrrepName, PointGroup};
 use crate::labelling::configuration::{Obstacle, open_shells};
 use crate::labelling::{self, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Spin};
@@ -67,9 +67,11 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     let stage = Stage { group: &group, double: &double, vibrations: None };
     let mut document = StatesDocument::new(&group, None);
     if let Some(text) = text {
-        if let Some((l, electrons)) = ionic_shell(&group, text) {
-            let found = correlation(&group, &double, l, electrons).map_err(usage)?;
-            document.correlation = Some(stage.correlation(&found));
+        if begins_like_an_ion(&group, text) {
+            let atom = PointGroup::standard(GroupName::K).map_err(usage)?;
+            let (l, electrons) = ionic_shell(&atom, &group, text)?;
+            let found = correlation(&atom, &group, &double, l, electrons).map_err(usage)?;
+            document.correlation = Some(stage.correlation(&atom, &found));
         } else {
             let configuration = Configuration::parse(&group, text).map_err(usage)?;
             fill(&mut document, arguments, &stage, &configuration)?;
@@ -79,23 +81,35 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     Ok(document)
 }
 
-/// l and n of one shell of a free ion, `d^3`, in a group whose irreps have no such name.
-fn ionic_shell(group: &PointGroup, text: &str) -> Option<(u8, u32)> {
-    let first =
-        text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
-    if group.name() == GroupName::K || !matches!(first, 's' | 'p' | 'd' | 'f') {
-        return None;
+/// Whether text names a shell of a free ion, `d^3` or `4f7`, rather than orbitals of this group (`delta`, `f1u`).
+fn begins_like_an_ion(group: &PointGroup, text: &str) -> bool {
+    let shell = text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(');
+    let mut characters = shell.chars();
+    let letter = characters.next();
+    let alone = characters.next().is_none_or(|next| !next.is_alphabetic() && next != '_');
+    group.name() != GroupName::K && alone && matches!(letter, Some('s' | 'p' | 'd' | 'f'))
+}
+
+/// l and n of one shell of a free ion.
+fn ionic_shell(atom: &PointGroup, group: &PointGroup, text: &str) -> Result<(u8, u32), CliError> {
+    let configuration = Configuration::parse(atom, text).map_err(usage)?;
+    // F is an older letter for T: f2 might mean one electron in t2.
+    if !text.contains('^')
+        && let Ok(other) = Configuration::parse(group, text)
+    {
+        return Err(CliError::Usage(format!(
+            "`{text}` can be read as the free ion's {configuration} or as {other}: write one of them"
+        )));
     }
-    // `sigma`, `pi`, `delta` start alike.
-    if Configuration::parse(group, text).is_ok() && first != 'f' {
-        return None;
-    }
-    let atom = PointGroup::standard(GroupName::K).ok()?;
-    let configuration = Configuration::parse(&atom, text).ok()?;
-    let [shell] = configuration.shells() else { return None };
-    match shell.name {
-        crate::group::IrrepName::Atomic { l, .. } => Some((l, shell.electrons)),
-        _ => None,
+    match configuration.shells() {
+        [shell] => match shell.name {
+            IrrepName::Atomic { l, .. } => Ok((l, shell.electrons)),
+            _ => Err(CliError::Usage(format!("`{text}` is no shell of a free ion"))),
+        },
+        _ => Err(CliError::Usage(format!(
+            "{configuration} are several shells of a free ion: expected one, such as d^3, to bring it into {}",
+            group.name()
+        ))),
     }
 }
 
@@ -198,7 +212,10 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
             fill(&mut document, arguments, &stage, &configuration)?;
         }
         Err(obstacles) => {
-            document.obstacles = obstacles.iter().map(|obstacle| obstacle_in_words(group, obstacle)).collect();
+            // What lacks partners says more than what is merely spread.
+            let (lacking, spread): (Vec<_>, Vec<_>) = obstacles.iter().partition(|obstacle| lacks_partners(obstacle));
+            document.obstacles =
+                lacking.into_iter().chain(spread).map(|obstacle| obstacle_in_words(group, obstacle)).collect();
         }
     }
     levels(&mut document, arguments, &stage)?;
@@ -214,13 +231,13 @@ fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
             format!("{} {holds} to no irrep: the symmetry is broken", orbital_numbers(*spin, orbitals))
         }
         Obstacle::Incomplete { spin, irrep, number, orbitals, wanted, .. } if orbitals.len() < *wanted => format!(
-            "{}, of {}, stands for {} of {wanted} partners: the others are filled differently, missing or at another energy",
+            "{}: {} of the {wanted} partners of {}; the others are filled differently, missing or at another energy",
             orbital_numbers(*spin, orbitals),
-            set(*irrep, *number),
-            orbitals.len()
+            orbitals.len(),
+            set(*irrep, *number)
         ),
         Obstacle::Incomplete { spin, irrep, number, orbitals, spread_hartree, .. } => format!(
-            "{}, the partners of {}, do not keep together: their energies are spread over {spread_hartree:.4} hartree",
+            "{}: the partners of {}, which do not keep together; their energies are spread over {spread_hartree:.4} hartree",
             orbital_numbers(*spin, orbitals),
             set(*irrep, *number)
         ),
@@ -228,6 +245,10 @@ fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
             format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
         }
     }
+}
+
+fn lacks_partners(obstacle: &Obstacle) -> bool {
+    !matches!(obstacle, Obstacle::Incomplete { orbitals, wanted, .. } if orbitals.len() >= *wanted)
 }
 
 fn orbital_numbers(spin: Spin, orbitals: &[usize]) -> String {

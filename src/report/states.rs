@@ -411,15 +411,15 @@ impl Stage<'_> {
         Ok(LevelEntry { level, parity, components: self.components(&components)? })
     }
 
-    /// lⁿ between free ion and strong field.
+    /// lⁿ between free ion and strong field; `atom` is the full rotation group.
     #[must_use]
-    pub fn correlation(&self, correlation: &Correlation) -> CorrelationEntry {
+    pub fn correlation(&self, atom: &PointGroup, correlation: &Correlation) -> CorrelationEntry {
         let kinds = |terms: &[Term]| -> Vec<KindEntry> {
             terms.iter().map(|term| KindEntry { term: term.symbol(self.group), count: term.count }).collect()
         };
         let (weak, strong) = (correlation.weak_total(), correlation.strong_total());
         let weak_field = correlation.weak_field.iter().map(|(term, irreps)| FreeTermEntry {
-            term: term.symbol(&correlation.atom),
+            term: term.symbol(atom),
             count: term.count,
             becomes: irreps
                 .iter()

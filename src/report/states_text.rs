@@ -86,8 +86,12 @@ fn head(out: &mut String, name: &str, text: &str) {
 fn term(symbol: &str) -> String {
     let digits = symbol.len() - symbol.trim_start_matches(|c: char| c.is_ascii_digit()).len();
     let raised: String = symbol[..digits].chars().map(raised).collect();
-    // The sign of Σ stands high.
-    format!("{raised}{}", pretty(&symbol[digits..]).replace('+', "⁺").replace('-', "⁻"))
+    format!("{raised}{}", irrep(&symbol[digits..]))
+}
+
+/// `Sigma_g-` → `Σg⁻`: the sign of Σ stands high.
+fn irrep(name: &str) -> String {
+    pretty(name).replace('+', "⁺").replace('-', "⁻")
 }
 
 fn raised(digit: char) -> char {
@@ -238,7 +242,7 @@ fn jahn_teller(entry: &JahnTellerEntry) -> Option<String> {
 
 /// `E1/2g (Γ6g)`, `J = 5/2`, `Σ+ (Ω = 0+)`.
 fn component_name(component: &ComponentEntry) -> String {
-    let name = pretty(&component.irrep);
+    let name = irrep(&component.irrep);
     match (&component.gamma, &component.quantum_number) {
         (Some(gamma), _) => format!("{name} ({})", pretty(gamma)),
         (None, Some(_))

@@ -151,7 +151,11 @@ pub fn label_text(document: &Document, options: TextOptions) -> String {
             (true, Spin::Alpha) => "Alpha sets",
             (true, Spin::Beta) => "Beta sets",
         };
-        out.push_str(&set_table(name, &of_spin, frontier.iter().find(|entry| entry.spin == spin), options));
+        let geometry = &document.geometry;
+        let abelian = geometry.abelian_subgroup.as_ref().map(|abelian| abelian.point_group.as_str());
+        let abelian = abelian.filter(|name| *name != geometry.point_group && *name != "C1");
+        let frontier = frontier.iter().find(|entry| entry.spin == spin);
+        out.push_str(&set_table(name, &of_spin, frontier, abelian, options));
     }
     out.push_str(&d_block(document));
     out.push_str(&active_window(document));
@@ -263,7 +267,14 @@ fn made_of(shares: &[ShareEntry]) -> String {
     parts.join(", ")
 }
 
-fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, options: TextOptions) -> String {
+/// One spin's sets; `abelian` names the subgroup whose labels stand beside, where it is another group.
+fn set_table(
+    name: &str,
+    sets: &[&SetEntry],
+    frontier: Option<&SpinFrontier>,
+    abelian: Option<&str>,
+    options: TextOptions,
+) -> String {
     let place = |number: Option<usize>| number.and_then(|number| sets.iter().position(|set| set.set == number));
     let homo = place(frontier.and_then(|frontier| frontier.homo.or(frontier.somo.last().copied())));
     let shown = match homo {
@@ -279,7 +290,8 @@ fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, op
     };
     let _ = writeln!(out, "\n{name}{hidden}");
     let mut rows = table();
-    rows.set_header(["label", "", "eV", "e⁻", "purity", "orbitals", "made of", ""]);
+    let in_subgroup = abelian.map(|abelian| format!("in {}", pretty(abelian))).unwrap_or_default();
+    rows.set_header(["label", "", "eV", "e⁻", "purity", "orbitals", &in_subgroup, "made of", ""]);
     for set in &sets[shown] {
         let mark = match frontier {
             Some(frontier) if frontier.homo == Some(set.set) => "HOMO",
@@ -295,6 +307,7 @@ fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, op
             set.electrons.map_or(String::new(), count),
             format!("{:.4}", set.purity),
             crate::labelling::composition::ranges(&orbitals),
+            abelian.and(set.abelian_irreps.as_ref()).map_or(String::new(), |irreps| irreps.replace(" + ", "+")),
             made_of(&set.character),
             remark(set),
         ]);

@@ -54,7 +54,9 @@ fn product(entry: &TransitionEntry) -> String {
             None => terms.push((name, 1)),
         }
     }
-    let term = |&(name, n): &(&str, usize)| if n == 1 { pretty(name) } else { format!("{n}{}", pretty(name)) };
+    // Raised signs, as + also joins the terms.
+    let raised = |name: &str| pretty(name).replace('+', "⁺").replace('-', "⁻");
+    let term = |&(name, n): &(&str, usize)| if n == 1 { raised(name) } else { format!("{n}{}", raised(name)) };
     if terms.is_empty() { "—".to_owned() } else { terms.iter().map(term).collect::<Vec<_>>().join("+") }
 }
 
