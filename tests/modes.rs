@@ -1,5 +1,7 @@
 //! Normal modes of files from engines: kinds, irreps, sets, and the check against counting from the nuclei.
 
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
+
 mod support;
 
 use nalgebra::{Rotation3, Vector3};
@@ -41,6 +43,9 @@ const FILES: &[(&str, &str, &str)] = &[
     ("psi4_modes_carbon_dioxide", "Dinfh", "Pi_u Sigma_g+ Sigma_u+"),
     ("psi4_modes_sulfur_hexafluoride", "Oh", "T2u T2g T1u Eg A1g T1u"),
     ("psi4_modes_benzene", "D6h", ""),
+    ("benzene_with_modes_sto3g", "D6h", ""),
+    // Bend out of plane, rock, scissors, C=O stretch, the two CH stretches.
+    ("formaldehyde_with_modes_631gs", "C2v", "B1 B2 A1 A1 A1 B2"),
 ];
 
 #[test]

@@ -4,6 +4,8 @@
 //! collected; "by hand": from the group of rotations about an axis; "memory": common practice, from memory. Axes follow
 //! "Notations and conventions in molecular spectroscopy, Part 2: Symmetry notation", Pure Appl. Chem. 69, 1641 (1997).
 
+#![allow(clippy::unwrap_used, reason = "a test may stop at once")]
+
 mod support;
 
 use nalgebra::Matrix3;

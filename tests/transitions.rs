@@ -6,7 +6,7 @@ mod support;
 use orbsieve::labelling::{Labelled, Thresholds};
 use orbsieve::model::Molecule;
 use orbsieve::report::transitions::{Context, TransitionEntry};
-use orbsieve::selection::{Choice, choose};
+use orbsieve::selection::{Choice, Selector, choose};
 use orbsieve::wavefunction::{self, Moments};
 use serde_json::Value;
 use support::files::{disturbed, labelled, molecule, reference};
@@ -58,7 +58,8 @@ fn elements_of_operators_agree_with_a_reference_library() {
         let [xx, yy, zz, xy, xz, yz] = &moments.second;
         let second = [xx, xy, xz, yy, yz, zz];
         for row in rows.as_array().unwrap() {
-            let place = (row["i"].as_u64().unwrap() as usize, row["j"].as_u64().unwrap() as usize);
+            let index = |key: &str| usize::try_from(row[key].as_u64().unwrap()).unwrap();
+            let place = (index("i"), index("j"));
             let ours = moments.position.iter().chain(&moments.gradient).chain(&moments.angular).chain(second);
             let keys = ["r", "nabla", "r_cross_nabla", "xx_xy_xz_yy_yz_zz"];
             let theirs: Vec<f64> = keys.iter().flat_map(|key| numbers(&row[*key])).collect();
@@ -237,4 +238,58 @@ fn open_shells_tell_their_states() {
     let manganese = entries(&molecule, &labels, (2, 2));
     let states = manganese[0].states.as_ref().unwrap();
     assert_eq!((states.ground[0].as_str(), states.ground_decided), ("6Ag", true));
+}
+
+/// A file with orbitals and modes of one geometry tells which of its modes open a state: benzene's ¹B2u borrows through the four
+/// e2g pairs (J. Chem. Phys. 112, 2798 (2000)). Their wavenumbers agree with those of another engine at the same level.
+#[test]
+fn helpers_are_named_by_the_files_own_modes() {
+    let (molecule_, labels) = labelled("benzene_with_modes_sto3g");
+    let benzene = entries(&molecule_, &labels, (1, 1));
+    let helper = benzene[0].vibronic.iter().find(|helper| helper.state == "B2u" && helper.irrep == "E2g").unwrap();
+    assert_eq!((helper.modes_in_molecule, helper.modes.len()), (4, 8));
+    let other = molecule("psi4_modes_benzene").vibrations.unwrap();
+    for mode in &helper.modes {
+        let ours = mode.wavenumber_per_cm.unwrap();
+        let theirs = other.modes[mode.mode - 1].wavenumber.unwrap();
+        assert!((ours - theirs).abs() < 2.0, "{ours} {theirs}");
+    }
+    // Loss of an e1g electron distorts along e2g: common practice for the benzene cation.
+    let split = Context::new(&molecule_, &labels).jahn_teller();
+    assert_eq!((split[0].label.as_str(), split[0].vibrations[0].irrep.as_str()), ("1e1g", "E2g"));
+}
+
+/// Labels, orbital numbers and places at the frontier name the same sets; what names none is refused with what there is.
+#[test]
+fn sets_are_chosen_by_many_names() {
+    let (_, labels) = labelled("benzene_sto3g");
+    let group = &labels.symmetry.group;
+    let pairs = |from: &[&str], to: &[&str]| {
+        let read = |names: &[&str]| names.iter().map(|name| name.parse()).collect::<Result<Vec<Selector>, _>>();
+        let choice = Choice { from: read(from)?, to: read(to)?, window: (3, 3), largest_gap: None };
+        choose(&labels.spins, group, &choice)
+    };
+    let expected = pairs(&["1e1g"], &["1e2u"]).unwrap();
+    assert_eq!(expected.len(), 1);
+    for (from, to) in [("homo", "lumo"), ("20", "23"), ("HOMO", "1E2U"), ("21", "lumo+0")] {
+        assert_eq!(pairs(&[from], &[to]).unwrap(), expected, "{from} {to}");
+    }
+    assert_eq!(pairs(&["homo-1", "homo"], &[]).unwrap().len(), 6);
+    assert_eq!(pairs(&["3e2g"], &["lumo+1"]).unwrap(), pairs(&["homo-1"], &["1b2g"]).unwrap());
+    for (from, told) in [
+        ("9e1g", "one set has that irrep"),
+        ("9e2g", "5 sets have that irrep, numbered from 1"),
+        ("1t2g", "no orbital has that irrep; the group has a1g"),
+        ("1b2g", "1b2g is empty: no electron can leave it"),
+        ("99", "orbitals count from 1 to 36"),
+        ("humo", "`humo` names no set"),
+        ("0", "`0` names no set"),
+        ("homo+1", "`homo+1` names no set"),
+        ("99999999999999999999", "names no set"),
+    ] {
+        let error = pairs(&[from], &["lumo"]).unwrap_err().to_string();
+        assert!(error.contains(told), "{error}");
+    }
+    let narrow = Choice { from: Vec::new(), to: Vec::new(), window: (5, 5), largest_gap: Some(0.6) };
+    assert_eq!(choose(&labels.spins, group, &narrow).unwrap(), expected);
 }

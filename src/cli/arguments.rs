@@ -159,7 +159,7 @@ pub struct Transitions {
     /// Molden-format file, plain or gzip; `-` for standard input
     pub file: PathBuf,
     /// Sets to leave: labels (3e2g), orbital numbers, homo, homo-1; by default those of the window
-    #[arg(long, value_name = "SETS", value_delimiter = ',', allow_hyphen_values = true)]
+    #[arg(long, value_name = "SETS", value_delimiter = ',')]
     pub from: Vec<Selector>,
     /// Sets to enter: labels, orbital numbers, lumo, lumo+1
     #[arg(long, value_name = "SETS", value_delimiter = ',')]

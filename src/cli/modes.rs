@@ -1,11 +1,12 @@
 //! The verb `modes`: place the nuclei, assign the file's modes where it has some, deliver.
 
 use super::arguments::{Format, Modes};
-use super::verbs::{json, read};
+use super::verbs::{json, read, rows};
 use super::{CliError, Status, input, output, use_threads};
 use crate::labelling::{LabelError, sites};
 use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
 use crate::modes::{ModeThresholds, assign, assignment};
+use crate::report::csv;
 use crate::report::modes::modes_document;
 use crate::report::modes_text::modes_text;
 use std::io::Write;
@@ -41,7 +42,7 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let printed = match arguments.common.format {
         Format::Text => modes_text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("modes prints text or json, not csv".to_owned())),
+        Format::Csv => rows(|out| csv::write_modes(&document, out))?,
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

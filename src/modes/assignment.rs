@@ -97,16 +97,13 @@ pub fn assign(atoms: &[Atom], vibrations: &Vibrations, symmetry: &Symmetry, thre
         vibrations.modes.iter().map(|mode| DVector::from_column_slice(&mode.displacements)).collect();
     let roots: Vec<f64> = atoms.iter().map(|atom| masses::mass(atom.element).unwrap_or(0.0).sqrt()).collect();
     let rigid = Rigid::new(atoms, &roots);
-    let (weighting, residual, vectors) = [Weighting::Cartesian, Weighting::MassWeighted]
-        .into_iter()
-        .map(|weighting| {
-            let vectors: Vec<DVector<f64>> = written.iter().map(|vector| weighted(vector, &roots, weighting)).collect();
-            (weighting, vectors)
-        })
-        .map(|(weighting, vectors)| (weighting, largest_cosine(&vectors), mixing(&vectors, &rigid), vectors))
-        .min_by(|a, b| (a.1 + a.2).total_cmp(&(b.1 + b.2)))
-        .map(|(weighting, residual, _, vectors)| (weighting, residual, vectors))
-        .expect("two readings were tried");
+    let read_as = |weighting: Weighting| {
+        let vectors: Vec<DVector<f64>> = written.iter().map(|vector| weighted(vector, &roots, weighting)).collect();
+        let residual = largest_cosine(&vectors);
+        (residual + mixing(&vectors, &rigid), weighting, residual, vectors)
+    };
+    let (cartesian, mass_weighted) = (read_as(Weighting::Cartesian), read_as(Weighting::MassWeighted));
+    let (_, weighting, residual, vectors) = if mass_weighted.0 < cartesian.0 { mass_weighted } else { cartesian };
     let turned = Turned::new(symmetry);
     let mut modes: Vec<ModeLabel> =
         vectors.iter().map(|vector| label(vector, &turned, &rigid, &symmetry.group, thresholds.purity)).collect();

@@ -307,7 +307,7 @@ fn remarks(set: &ModeSetEntry, largest_intensity: f64) -> Vec<String> {
         match set.infrared {
             Some(false) if bright => remarks.push("infrared by the file, forbidden by symmetry".to_owned()),
             Some(true) if !bright && set.intensity.is_some() => {
-                remarks.push("allowed, yet dark in the file".to_owned())
+                remarks.push("allowed, yet dark in the file".to_owned());
             }
             _ => {}
         }

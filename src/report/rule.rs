@@ -192,7 +192,7 @@ fn verdict(allowed: bool, components: &[&str]) -> String {
 
 /// What Laporte's rule says, in words.
 #[must_use]
-pub fn laporte(parities: &str) -> String {
+fn laporte(parities: &str) -> String {
     let allowed = matches!(parities, "g-u" | "u-g");
     format!("{} {}", parities.replace('-', " → "), if allowed { "allowed" } else { "forbidden" })
 }
@@ -232,8 +232,8 @@ pub fn text(document: &RuleDocument) -> String {
     push_table(&mut out, &rows);
     let _ = writeln!(
         out,
-        "\nThe rules say which integrals vanish by symmetry, not how strong a band is. Spin is kept: singlet ↔ triplet only\n\
-         through spin–orbit coupling, each sublevel with singlets of its own irrep."
+        "\nThe rules say which integrals vanish by symmetry, not how strong a band is. Spin is kept: singlet ↔ triplet\n\
+         only through spin–orbit coupling, each sublevel with singlets of its own irrep."
     );
     out
 }

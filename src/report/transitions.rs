@@ -342,21 +342,21 @@ impl Context<'_> {
             electric_dipole: ElectricDipole {
                 allowed: dipole,
                 polarisation,
-                strength_au: strengths.length.iter().sum(),
-                strength_by_axis_au: strengths.length,
-                oscillator_strength: strengths.oscillator_length(),
-                velocity_strength_au: strengths.velocity.iter().sum(),
-                oscillator_strength_velocity: strengths.oscillator_velocity(),
+                strength_au: tidy(strengths.length.iter().sum()),
+                strength_by_axis_au: strengths.length.map(tidy),
+                oscillator_strength: strengths.oscillator_length().map(tidy),
+                velocity_strength_au: tidy(strengths.velocity.iter().sum()),
+                oscillator_strength_velocity: strengths.oscillator_velocity().map(tidy),
             },
             magnetic_dipole: Magnetic {
                 allowed: magnetic,
                 components: rotations,
-                strength_au: strengths.magnetic.iter().sum(),
+                strength_au: tidy(strengths.magnetic.iter().sum()),
             },
             electric_quadrupole: Magnetic {
                 allowed: quadrupole,
                 components: quadratic,
-                strength_au: strengths.quadrupole_total(),
+                strength_au: tidy(strengths.quadrupole_total()),
             },
             two_photon: TwoPhoton { allowed: two_photon, components: two_photon_components },
             laporte: allowed.as_ref().and_then(|rule| rule.parity_changes).zip(from.irrep.zip(to.irrep)).map(
@@ -488,6 +488,11 @@ impl Context<'_> {
     }
 }
 
+/// Without digits that only rounding decides.
+fn tidy(value: f64) -> f64 {
+    (value * 1e12).round() / 1e12
+}
+
 /// A finding in words.
 fn remark(finding: &Finding, group: &str) -> String {
     match finding {
@@ -503,6 +508,9 @@ fn remark(finding: &Finding, group: &str) -> String {
         Finding::WeakThoughAllowed(strength) => {
             format!("allowed, yet the strength is {strength:.1e} au: symmetry permits it, the orbitals do not use it")
         }
+        Finding::FormsDiffer(length, velocity) => format!(
+            "length form gives f = {length:.0e}, velocity form {velocity:.0e}: this basis and these gaps do not settle the strength"
+        ),
         Finding::Incomplete => "a set lacks partners: the strength is not that of the whole level".to_owned(),
     }
 }

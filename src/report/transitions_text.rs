@@ -3,7 +3,7 @@
 //! Not here: any number that the document does not hold.
 
 use super::document::Document;
-use super::rule::{self, listed};
+use super::rule::listed;
 use super::text::{EV_PER_HARTREE, geometry_head, head, push_table, table, title, wrap};
 use super::transitions::{self, ModeReference, TransitionEntry};
 use super::unicode::pretty;
@@ -54,17 +54,25 @@ fn product(entry: &TransitionEntry) -> String {
             None => terms.push((name, 1)),
         }
     }
-    let term = |&(name, n): &(&str, usize)| if n == 1 { pretty(name) } else { format!("{n}{}", pretty(name)) };
-    if terms.is_empty() { "—".to_owned() } else { terms.iter().map(term).collect::<Vec<_>>().join(" + ") }
+    // Raised signs, as + also joins the terms.
+    let raised = |name: &str| pretty(name).replace('+', "⁺").replace('-', "⁻");
+    let term = |&(name, n): &(&str, usize)| if n == 1 { raised(name) } else { format!("{n}{}", raised(name)) };
+    if terms.is_empty() { "—".to_owned() } else { terms.iter().map(term).collect::<Vec<_>>().join("+") }
 }
 
-/// `x, y`, `forbidden`, or `no rule`.
+/// `x,y`, `forbidden`, or `no rule`.
 fn verdict(allowed: Option<bool>, components: &[&str]) -> String {
     match allowed {
         None => "no rule".to_owned(),
         Some(false) => "forbidden".to_owned(),
-        Some(true) => listed(components),
+        Some(true) => components.join(","),
     }
+}
+
+/// `g → u yes`, `g → g no`.
+fn laporte(parities: &str) -> String {
+    let allowed = if matches!(parities, "g-u" | "u-g") { "yes" } else { "no" };
+    format!("{} {allowed}", parities.replace('-', " → "))
 }
 
 fn answer(entries: &[TransitionEntry]) -> String {
@@ -167,9 +175,9 @@ fn rows(entries: &[TransitionEntry]) -> String {
             verdict(entry.electric_dipole.allowed, &entry.electric_dipole.polarisation),
             f(entry.electric_dipole.oscillator_strength),
             f(entry.electric_dipole.oscillator_strength_velocity),
-            if magnetic.is_empty() { "—".to_owned() } else { format!("R {}", magnetic.join(",")) },
+            if magnetic.is_empty() { "—".to_owned() } else { magnetic.join(",") },
             if entry.two_photon.allowed == Some(true) { "yes" } else { "—" }.to_owned(),
-            entry.laporte.as_deref().map_or(String::new(), |parities| rule::laporte(parities)),
+            entry.laporte.as_deref().map_or(String::new(), laporte),
             mark.join(" "),
         ]);
     }
@@ -212,8 +220,10 @@ fn remarks(entries: &[TransitionEntry]) -> String {
 
 /// ` at 1178, 3064 cm⁻¹` where the file holds modes.
 fn at_wavenumbers(modes: &[ModeReference]) -> String {
-    let numbers: Vec<String> =
+    let mut numbers: Vec<String> =
         modes.iter().filter_map(|mode| mode.wavenumber_per_cm).map(|number| format!("{number:.0}")).collect();
+    // Partners share a wavenumber.
+    numbers.dedup();
     if numbers.is_empty() { String::new() } else { format!(" at {} cm⁻¹", numbers.join(", ")) }
 }
 
@@ -298,8 +308,10 @@ fn jahn_teller(document: &Document) -> String {
             .collect();
         let text = if entry.second_order_only {
             "none in first order; bending acts in second order (Renner–Teller)".to_owned()
+        } else if active.is_empty() {
+            "none that the molecule has".to_owned()
         } else {
-            if active.is_empty() { "none that the molecule has".to_owned() } else { active.join("  ") }
+            active.join("  ")
         };
         let own = entry.configuration == transitions::OWN;
         let label = if own { term_symbol(&entry.label) } else { pretty(&entry.label) };
