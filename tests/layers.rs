@@ -10,6 +10,7 @@ const LAYERS: [&str; 11] = [
     "grammar",
     "model",
     "group",
+    "states",
     "wavefunction",
     "labelling",
     "audit",
@@ -19,9 +20,16 @@ const LAYERS: [&str; 11] = [
     "cli",
 ];
 
-/// `group` stands on its own: it knows no file and no molecule.
-const STRANGERS: [(&str, &str); 4] =
-    [("group", "grammar"), ("group", "model"), ("group", "diagnostic"), ("grammar", "model")];
+/// `group` and `states` stand on their own: they know no file and no molecule.
+const STRANGERS: [(&str, &str); 7] = [
+    ("group", "grammar"),
+    ("group", "model"),
+    ("group", "diagnostic"),
+    ("grammar", "model"),
+    ("states", "grammar"),
+    ("states", "model"),
+    ("states", "diagnostic"),
+];
 
 fn sources_of(layer: &str) -> Vec<(PathBuf, String)> {
     let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("src");

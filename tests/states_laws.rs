@@ -6,13 +6,17 @@ use orbsieve::group::{DoubleGroup, GroupName, Kramers, PointGroup};
 use orbsieve::states::{Configuration, Term, correlation, spin_orbit, terms, transitions};
 use proptest::prelude::*;
 use std::collections::BTreeMap;
+use std::sync::Mutex;
 
 fn group(name: GroupName) -> PointGroup {
     PointGroup::standard(name).unwrap_or_else(|error| panic!("{name}: {error}"))
 }
 
-fn named(name: &str) -> PointGroup {
-    group(name.parse().unwrap())
+/// Made once a run: random cases come back to the same few.
+fn named(name: &str) -> &'static PointGroup {
+    static KNOWN: Mutex<BTreeMap<String, &'static PointGroup>> = Mutex::new(BTreeMap::new());
+    let mut known = KNOWN.lock().unwrap();
+    known.entry(name.to_owned()).or_insert_with(|| Box::leak(Box::new(group(name.parse().unwrap()))))
 }
 
 /// Every family, axes to n, and the cubic, icosahedral and linear groups.
@@ -89,7 +93,7 @@ fn whole_j_in_the_double_group_are_functions_of_that_degree() {
 fn descent_of_levels_goes_through_any_group_between() {
     for name in ["O", "Oh", "Td", "Ih", "D6h", "D4d", "D3h", "T", "D5d"] {
         let parent = named(name);
-        let double = DoubleGroup::of(&parent).unwrap();
+        let double = DoubleGroup::of(parent).unwrap();
         for subgroup in parent.subgroups().unwrap() {
             let onto = DoubleGroup::of(&subgroup.group).unwrap();
             for twice_j in 0..=9 {
@@ -173,27 +177,28 @@ fn terms_of_atoms_agree_with_counting() {
             assert_eq!(of_atom(&atom, &[(l, electrons)]), by_counting(&[(l, electrons)]), "l = {l}, n = {electrons}");
         }
     }
-    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 3)], &[(4, 2)]] {
+    for shells in [&[(1, 2), (2, 3)][..], &[(0, 1), (1, 3), (2, 2)], &[(2, 1), (3, 7)], &[(2, 2), (3, 6)], &[(4, 3)]] {
         assert_eq!(of_atom(&atom, shells), by_counting(shells), "{shells:?}");
     }
 }
 
 #[test]
 fn weak_and_strong_field_count_the_same_terms() {
+    let atom = named("Kh");
     for name in
         ["O", "Oh", "Td", "D4h", "D3", "C3v", "D3d", "D5h", "Ih", "C2v", "C4", "S4", "T", "Cinfv", "Dinfh", "D4d"]
     {
         let in_field = named(name);
-        let double = DoubleGroup::of(&in_field).unwrap();
+        let double = DoubleGroup::of(in_field).unwrap();
         for (l, places) in [(1, 6), (2, 10), (3, 14)] {
             // In lower symmetry the ways to fill seven shells are many: f only where orbitals stay together.
             if l == 3 && in_field.decompose(&in_field.shell_characters(3)).unwrap().len() > 4 {
                 continue;
             }
             for electrons in 0..=places {
-                let both = correlation(&in_field, &double, l, electrons).unwrap();
+                let both = correlation(atom, in_field, &double, l, electrons).unwrap();
                 assert_eq!(both.weak_total(), both.strong_total(), "{name} l = {l} n = {electrons}");
-                let states: usize = both.weak_total().iter().map(|term| term.states(&in_field)).sum();
+                let states: usize = both.weak_total().iter().map(|term| term.states(in_field)).sum();
                 assert!((states as f64 - both.free.microstates()).abs() < 0.5);
             }
         }
@@ -219,7 +224,7 @@ fn terms_carry_the_character_of_antisymmetrised_spin_orbitals() {
             let places = 2 * group.irreps()[irrep].dimension;
             for electrons in 0..=places {
                 let filled = [(irrep, None, u32::try_from(electrons).unwrap())];
-                let list = terms(&group, &Configuration::new(&group, &filled).unwrap()).unwrap();
+                let list = terms(group, &Configuration::new(group, &filled).unwrap()).unwrap();
                 for (class_idx, class) in group.classes().iter().enumerate() {
                     let mut element = 0;
                     let powers: Vec<f64> = (0..=electrons)
@@ -276,14 +281,14 @@ fn components_fill_the_term_and_keep_parity_and_spin() {
 fn electric_dipoles_change_parity_and_rules_are_the_same_both_ways() {
     for name in ["Oh", "D4h", "Ih", "D3d", "Dinfh", "C2h", "Kh", "Td", "C3"] {
         let group = named(name);
-        let double = DoubleGroup::of(&group).unwrap();
+        let double = DoubleGroup::of(group).unwrap();
         let list: Vec<Term> = (0..group.irreps().len())
             .filter(|&irrep| group.irreps()[irrep].dimension <= 5)
             .flat_map(|irrep| [1, 2, 3].map(|multiplicity| Term { multiplicity, irrep, count: 1 }))
-            .filter(|term| spin_orbit::components(&group, &double, term).is_ok())
+            .filter(|term| spin_orbit::components(group, &double, term).is_ok())
             .take(40)
             .collect();
-        let there = transitions(&group, &double, &list, Some(&list)).unwrap();
+        let there = transitions(group, &double, &list, Some(&list)).unwrap();
         for rule in &there {
             let back = &there[rule.to * list.len() + rule.from];
             assert_eq!((back.from, back.to), (rule.to, rule.from));
@@ -323,9 +328,9 @@ proptest! {
                 (irrep, Some(number), electrons % (places + 1))
             })
             .collect();
-        let Ok(configuration) = Configuration::new(&group, &shells) else { return Ok(()) };
-        let Ok(list) = terms(&group, &configuration) else { return Ok(()) };
-        let states: usize = list.iter().map(|term| term.states(&group)).sum();
+        let Ok(configuration) = Configuration::new(group, &shells) else { return Ok(()) };
+        let Ok(list) = terms(group, &configuration) else { return Ok(()) };
+        let states: usize = list.iter().map(|term| term.states(group)).sum();
         prop_assert!((states as f64 - configuration.microstates()).abs() < 0.5);
         // Holes: the same terms.
         let holes: Vec<(usize, Option<u32>, u32)> = configuration
@@ -333,7 +338,7 @@ proptest! {
             .iter()
             .map(|shell| (shell.irrep, shell.number, shell.places - shell.electrons))
             .collect();
-        let holes = terms(&group, &Configuration::new(&group, &holes).unwrap()).unwrap();
+        let holes = terms(group, &Configuration::new(group, &holes).unwrap()).unwrap();
         let multiplicities = |list: &[Term]| -> Vec<(u16, usize, usize)> {
             list.iter().map(|term| (term.multiplicity, group.irreps()[term.irrep].dimension, term.count)).collect()
         };
@@ -344,7 +349,7 @@ proptest! {
 
     #[test]
     fn no_text_makes_the_reader_panic(text in "\\PC{0,40}", name in prop::sample::select(vec!["Oh", "D26", "Dinfh", "Kh", "C1"])) {
-        let _ = Configuration::parse(&named(name), &text);
+        let _ = Configuration::parse(named(name), &text);
     }
 
     #[test]
@@ -362,7 +367,7 @@ proptest! {
                 (irrep, Some(number), electrons % (places + 1))
             })
             .collect();
-        let Ok(configuration) = Configuration::new(&group, &shells) else { return Ok(()) };
-        prop_assert_eq!(Configuration::parse(&group, &configuration.to_string()).unwrap(), configuration);
+        let Ok(configuration) = Configuration::new(group, &shells) else { return Ok(()) };
+        prop_assert_eq!(Configuration::parse(group, &configuration.to_string()).unwrap(), configuration);
     }
 }

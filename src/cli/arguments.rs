@@ -29,6 +29,8 @@ pub enum Verb {
     Audit(Audit),
     /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
     Transitions(Transitions),
+    /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
+    Modes(Modes),
 }
 
 /// Options of every verb.
@@ -211,7 +213,7 @@ pub struct Transitions {
     /// Molden-format file, plain or gzip; `-` for standard input
     pub file: PathBuf,
     /// Sets to leave: labels (3e2g), orbital numbers, homo, homo-1; by default those of the window
-    #[arg(long, value_name = "SETS", value_delimiter = ',', allow_hyphen_values = true)]
+    #[arg(long, value_name = "SETS", value_delimiter = ',')]
     pub from: Vec<Selector>,
     /// Sets to enter: labels, orbital numbers, lumo, lumo+1
     #[arg(long, value_name = "SETS", value_delimiter = ',')]
@@ -231,6 +233,19 @@ pub struct Transitions {
     /// Which group
     #[command(flatten)]
     pub placing: Placing,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `modes`.
+#[derive(Debug, Args)]
+pub struct Modes {
+    /// Molden-format or XYZ file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

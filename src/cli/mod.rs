@@ -5,6 +5,7 @@
 pub mod arguments;
 mod audit;
 mod input;
+mod modes;
 mod output;
 mod placing;
 mod states;
@@ -109,6 +110,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Label(label) => verbs::label(label, out, errors),
         Verb::Geometry(geometry) => verbs::geometry(geometry, out, errors),
         Verb::Table(table) => verbs::table(table, out),
+        Verb::Modes(arguments) => modes::modes(arguments, out, errors),
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),

@@ -5,10 +5,11 @@ use super::verbs::{json, read};
 use super::{CliError, Status, input, output, use_threads};
 use crate::group::double_name::half;
 use crate::group::irrep_name::Parity;
-use crate::group::{DoubleGroup, GroupName, PointGroup};
+use crate::group::{DoubleGroup, GroupName, IrrepName, PointGroup};
 use crate::labelling::configuration::{Obstacle, open_shells};
 use crate::labelling::{self, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Spin};
+use crate::modes;
 use crate::report::double_table;
 use crate::report::states::{Stage, StatesDocument};
 use crate::report::states_text::{self, StatesOptions};
@@ -66,9 +67,11 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     let stage = Stage { group: &group, double: &double, vibrations: None };
     let mut document = StatesDocument::new(&group, None);
     if let Some(text) = text {
-        if let Some((l, electrons)) = ionic_shell(&group, text) {
-            let found = correlation(&group, &double, l, electrons).map_err(usage)?;
-            document.correlation = Some(stage.correlation(&found));
+        if begins_like_an_ion(&group, text) {
+            let atom = PointGroup::standard(GroupName::K).map_err(usage)?;
+            let (l, electrons) = ionic_shell(&atom, &group, text)?;
+            let found = correlation(&atom, &group, &double, l, electrons).map_err(usage)?;
+            document.correlation = Some(stage.correlation(&atom, &found));
         } else {
             let configuration = Configuration::parse(&group, text).map_err(usage)?;
             fill(&mut document, arguments, &stage, &configuration)?;
@@ -78,23 +81,35 @@ fn of_group(arguments: &States, name: GroupName, text: Option<&str>) -> Result<S
     Ok(document)
 }
 
-/// l and n of one shell of a free ion, `d^3`, in a group whose irreps have no such name.
-fn ionic_shell(group: &PointGroup, text: &str) -> Option<(u8, u32)> {
-    let first =
-        text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(').chars().next()?;
-    if group.name() == GroupName::K || !matches!(first, 's' | 'p' | 'd' | 'f') {
-        return None;
+/// Whether text names a shell of a free ion, `d^3` or `4f7`, rather than orbitals of this group (`delta`, `f1u`).
+fn begins_like_an_ion(group: &PointGroup, text: &str) -> bool {
+    let shell = text.trim_start_matches(|c: char| c.is_ascii_digit() || c.is_whitespace() || c == '(');
+    let mut characters = shell.chars();
+    let letter = characters.next();
+    let alone = characters.next().is_none_or(|next| !next.is_alphabetic() && next != '_');
+    group.name() != GroupName::K && alone && matches!(letter, Some('s' | 'p' | 'd' | 'f'))
+}
+
+/// l and n of one shell of a free ion.
+fn ionic_shell(atom: &PointGroup, group: &PointGroup, text: &str) -> Result<(u8, u32), CliError> {
+    let configuration = Configuration::parse(atom, text).map_err(usage)?;
+    // F is an older letter for T: f2 might mean one electron in t2.
+    if !text.contains('^')
+        && let Ok(other) = Configuration::parse(group, text)
+    {
+        return Err(CliError::Usage(format!(
+            "`{text}` can be read as the free ion's {configuration} or as {other}: write one of them"
+        )));
     }
-    // `sigma`, `pi`, `delta` start alike.
-    if Configuration::parse(group, text).is_ok() && first != 'f' {
-        return None;
-    }
-    let atom = PointGroup::standard(GroupName::K).ok()?;
-    let configuration = Configuration::parse(&atom, text).ok()?;
-    let [shell] = configuration.shells() else { return None };
-    match shell.name {
-        crate::group::IrrepName::Atomic { l, .. } => Some((l, shell.electrons)),
-        _ => None,
+    match configuration.shells() {
+        [shell] => match shell.name {
+            IrrepName::Atomic { l, .. } => Ok((l, shell.electrons)),
+            _ => Err(CliError::Usage(format!("`{text}` is no shell of a free ion"))),
+        },
+        _ => Err(CliError::Usage(format!(
+            "{configuration} are several shells of a free ion: expected one, such as d^3, to bring it into {}",
+            group.name()
+        ))),
     }
 }
 
@@ -185,8 +200,8 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
     let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
     let group = &labelled.symmetry.group;
     let double = DoubleGroup::of(group).map_err(|source| failed(source.into()))?;
-    let is_atom: Vec<bool> = molecule.atoms.iter().map(|atom| !atom.ghost).collect();
-    let vibrations = labelled.symmetry.vibrations(&is_atom).map_err(|source| failed(source.into()))?;
+    let vibrations =
+        modes::motion(&molecule.atoms, &labelled.symmetry).map_err(|source| failed(source.into()))?.vibrations;
     let stage = Stage { group, double: &double, vibrations: Some(&vibrations) };
     let mut document = StatesDocument::new(group, Some(path.display().to_string()));
     match open_shells(group, &labelled.spins) {
@@ -197,7 +212,10 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
             fill(&mut document, arguments, &stage, &configuration)?;
         }
         Err(obstacles) => {
-            document.obstacles = obstacles.iter().map(|obstacle| obstacle_in_words(group, obstacle)).collect();
+            // What lacks partners says more than what is merely spread.
+            let (lacking, spread): (Vec<_>, Vec<_>) = obstacles.iter().partition(|obstacle| lacks_partners(obstacle));
+            document.obstacles =
+                lacking.into_iter().chain(spread).map(|obstacle| obstacle_in_words(group, obstacle)).collect();
         }
     }
     levels(&mut document, arguments, &stage)?;
@@ -205,26 +223,37 @@ fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument,
 }
 
 fn obstacle_in_words(group: &PointGroup, obstacle: &Obstacle) -> String {
-    let orbitals = |spin: Spin, orbitals: &[usize]| {
-        let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
-        let plural = if numbers.len() == 1 { "" } else { "s" };
-        let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
-        format!("{spin} orbital{plural} {}", numbers.join(", "))
-    };
     let set = |irrep: usize, number: usize| format!("{number}{}", group.irreps()[irrep].name.symbol());
     match obstacle {
         Obstacle::NoOccupations => "the file gives no occupations".to_owned(),
-        Obstacle::Unlabelled { spin, orbitals: list } => {
-            format!("{} hold electrons and belong to no irrep: the symmetry is broken", orbitals(*spin, list))
+        Obstacle::Unlabelled { spin, orbitals } => {
+            let holds = if orbitals.len() == 1 { "holds electrons and belongs" } else { "hold electrons and belong" };
+            format!("{} {holds} to no irrep: the symmetry is broken", orbital_numbers(*spin, orbitals))
         }
-        Obstacle::Incomplete { spin, irrep, number, orbitals: list, wanted } => format!(
-            "{} make {} of {wanted} partners of {}: the others are filled differently, missing or at another energy",
-            orbitals(*spin, list),
-            list.len(),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, wanted, .. } if orbitals.len() < *wanted => format!(
+            "{}: {} of the {wanted} partners of {}; the others are filled differently, missing or at another energy",
+            orbital_numbers(*spin, orbitals),
+            orbitals.len(),
+            set(*irrep, *number)
+        ),
+        Obstacle::Incomplete { spin, irrep, number, orbitals, spread_hartree, .. } => format!(
+            "{}: the partners of {}, which do not keep together; their energies are spread over {spread_hartree:.4} hartree",
+            orbital_numbers(*spin, orbitals),
             set(*irrep, *number)
         ),
         Obstacle::Fractional { irrep, number, electrons, limit } => {
             format!("{} holds {electrons:.3} electrons, further than {limit} from a whole number", set(*irrep, *number))
         }
     }
+}
+
+fn lacks_partners(obstacle: &Obstacle) -> bool {
+    !matches!(obstacle, Obstacle::Incomplete { orbitals, wanted, .. } if orbitals.len() >= *wanted)
+}
+
+fn orbital_numbers(spin: Spin, orbitals: &[usize]) -> String {
+    let numbers: Vec<String> = orbitals.iter().map(|orbital| (orbital + 1).to_string()).collect();
+    let plural = if numbers.len() == 1 { "" } else { "s" };
+    let spin = if spin == Spin::Alpha { "alpha" } else { "beta" };
+    format!("{spin} orbital{plural} {}", numbers.join(", "))
 }

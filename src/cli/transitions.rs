@@ -2,13 +2,13 @@
 
 use super::arguments::{Format, Transitions};
 use super::placing::choice;
-use super::verbs::{json, read};
+use super::verbs::{json, read, rows};
 use super::{CliError, Status, input, output, use_threads};
 use crate::labelling::{self, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR};
-use crate::report::build;
 use crate::report::text::EV_PER_HARTREE;
 use crate::report::transitions_text::transitions_text;
+use crate::report::{build, csv};
 use crate::selection::Choice;
 use std::io::Write;
 
@@ -35,7 +35,7 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
     let printed = match arguments.common.format {
         Format::Text => transitions_text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("transitions prints text or json, not csv".to_owned())),
+        Format::Csv => rows(|out| csv::write_transitions(&document, out))?,
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

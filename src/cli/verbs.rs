@@ -117,13 +117,15 @@ fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) ->
         Format::Csv if document.sets.is_none() => {
             Err(CliError::Usage("geometry prints text or json: csv has one row a set of orbitals".to_owned()))
         }
-        Format::Csv => {
-            let mut bytes = Vec::new();
-            csv::write_sets(document, &mut bytes)
-                .map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
-            Ok(bytes)
-        }
+        Format::Csv => rows(|out| csv::write_sets(document, out)),
     }
+}
+
+/// Comma-separated rows in memory.
+pub(super) fn rows(write: impl FnOnce(&mut dyn Write) -> ::csv::Result<()>) -> Result<Vec<u8>, CliError> {
+    let mut bytes = Vec::new();
+    write(&mut bytes).map_err(|error| CliError::Write { path: None, source: std::io::Error::other(error) })?;
+    Ok(bytes)
 }
 
 /// Indented JSON with a newline at its end.

@@ -14,13 +14,14 @@ use super::point_group::{Class, Irrep, PointGroup, elements_and_classes};
 use super::schoenflies::GroupName;
 use nalgebra::DMatrix;
 
-/// Highest angular momentum of an irrep held.
-pub(super) const HIGHEST_L: u8 = 12;
+/// Highest angular momentum of an irrep held: f⁷ reaches 12, f⁷ with an electron in a d shell 14, with two 15.
+pub(super) const HIGHEST_L: u8 = 16;
 
-/// Angles of the quadrature: products of three irreps with l ≤ 12 are cosine sums of degree 37, below twice this number.
-const N_ANGLES: usize = 20;
+/// Angles of the quadrature: products of three irreps with l ≤ 16, or of two levels with J ≤ 39/2 and an operator, are cosine sums
+/// of degree 49 at most, below twice this number.
+const N_ANGLES: usize = 28;
 
-/// The group of an atom with irreps S to Q (l ≤ 12), even and odd.
+/// The group of an atom with irreps S to V (l ≤ 16), even and odd.
 ///
 /// The mean over the group of a function of the angle φ alone is (1/π)∫(1 − cos φ)f(φ)dφ over 0…π; the midpoint rule is exact
 /// for cosine sums of degree below 2N.

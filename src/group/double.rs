@@ -23,7 +23,8 @@ use super::subgroups::Subgroup;
 use nalgebra::{Matrix3, Quaternion, Vector3};
 
 /// Twice the highest J of an atom, and twice the highest Ω of a linear molecule, that is kept.
-pub const HIGHEST_TWICE_J: u16 = 25;
+const ATOMIC_TWICE_J: u16 = 39;
+const LINEAR_TWICE_OMEGA: u16 = 25;
 
 /// An operation as it acts on spins.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -273,7 +274,7 @@ impl DoubleGroup {
             n_single: 0,
         };
         for parity in [Parity::Even, Parity::Odd] {
-            for twice_j in (1..=HIGHEST_TWICE_J).step_by(2) {
+            for twice_j in (1..=ATOMIC_TWICE_J).step_by(2) {
                 let characters = double.spin_characters(twice_j, parity);
                 let dimension = usize::from(twice_j) + 1;
                 let name = DoubleName::Level { twice_j, parity };
@@ -313,6 +314,16 @@ impl DoubleGroup {
     #[must_use]
     pub fn n_single(&self) -> usize {
         self.n_single
+    }
+
+    /// Twice the highest J (atoms) or Ω (linear molecules) kept; none for finite groups, which keep all.
+    #[must_use]
+    pub fn highest_twice_j(&self) -> Option<u16> {
+        match self.name {
+            GroupName::K => Some(ATOMIC_TWICE_J),
+            GroupName::Cinfv | GroupName::Dinfh => Some(LINEAR_TWICE_OMEGA),
+            _ => None,
+        }
     }
 
     /// Characters, one per class, of the 2J + 1 states of one J (whole or half) and parity.
@@ -477,6 +488,6 @@ impl CharacterTable for DoubleGroup {
             DoubleName::Single(IrrepName::Linear { m, .. }) => 2 * u16::from(m),
             _ => return None,
         };
-        Some((u32::from(twice), u32::from(HIGHEST_TWICE_J)))
+        Some((u32::from(twice), u32::from(self.highest_twice_j()?)))
     }
 }

@@ -52,11 +52,10 @@ impl DoubleName {
     #[must_use]
     pub fn pretty(&self) -> String {
         if let Self::Single(name) = self {
-            name.pretty()
-        } else {
-            let subscript = |c: char| c.to_digit(10).and_then(|digit| char::from_u32(0x2080 + digit)).unwrap_or(c);
-            self.to_string().replace('_', "").chars().map(subscript).collect()
+            return name.pretty();
         }
+        let subscript = |c: char| c.to_digit(10).and_then(|digit| char::from_u32(0x2080 + digit)).unwrap_or(c);
+        self.to_string().replace('_', "").chars().map(subscript).collect()
     }
 }
 

@@ -83,7 +83,8 @@ pub enum IrrepName {
 }
 
 /// Letters by angular momentum, the usual order after F with J, and letters already used, left out.
-const ATOMIC_LETTERS: [char; 13] = ['S', 'P', 'D', 'F', 'G', 'H', 'I', 'K', 'L', 'M', 'N', 'O', 'Q'];
+const ATOMIC_LETTERS: [char; 17] =
+    ['S', 'P', 'D', 'F', 'G', 'H', 'I', 'K', 'L', 'M', 'N', 'O', 'Q', 'R', 'T', 'U', 'V'];
 
 /// By |m|: ASCII word, capital, small letter; from 5 on the Greek letters follow the Latin ones of angular momentum,
 /// with Θ for Q.
@@ -310,8 +311,8 @@ fn atomic(plain: &str) -> Option<IrrepName> {
     let letter = characters.next()?.to_ascii_uppercase();
     let rest = characters.as_str();
     let l = ATOMIC_LETTERS.iter().zip(0_u8..).find(|(known, _)| **known == letter)?.1;
-    // F, G and H without an underscore are Mulliken letters.
-    if matches!(letter, 'F' | 'G' | 'H') && !rest.starts_with('_') {
+    // F, G, H and T without an underscore are Mulliken letters.
+    if matches!(letter, 'F' | 'G' | 'H' | 'T') && !rest.starts_with('_') {
         return None;
     }
     Some(IrrepName::Atomic { parity: parity(rest)??, l })
@@ -344,11 +345,11 @@ mod tests {
     fn names_survive_a_round_trip() {
         for text in [
             "A1g", "B2u", "E''", "A2'", "T1u", "Gg", "Hu", "E10u", "A", "Sigma_g+", "Sigma_u-", "Sigma+", "Pi_u",
-            "Delta_g", "Eta_u", "Theta_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u",
+            "Delta_g", "Eta_u", "Theta_g", "S_g", "P_u", "D_g", "F_u", "Q_g", "H_u", "T_g", "V_u",
         ] {
             let name: IrrepName = text.parse().unwrap();
             assert_eq!(name.to_string(), text);
-            if !matches!(text, "F_u" | "H_u") {
+            if !matches!(text, "F_u" | "H_u" | "T_g") {
                 assert_eq!(name.pretty().parse::<IrrepName>().unwrap(), name, "{}", name.pretty());
             }
         }

@@ -221,8 +221,9 @@ mod tests {
     fn octahedron(turn: &Rotation3<f64>, stretch: f64) -> Vec<Site> {
         let arms =
             [Vector3::x(), -Vector3::x(), Vector3::y(), -Vector3::y(), Vector3::z() * stretch, -Vector3::z() * stretch];
-        let mut sites = vec![Site { kind: 0, position: Point3::new(1.0, 2.0, 3.0) }];
-        sites.extend(arms.iter().map(|arm| Site { kind: 1, position: sites[0].position + turn * (arm * 3.7) }));
+        let centre = Point3::new(1.0, 2.0, 3.0);
+        let mut sites = vec![Site { kind: 0, position: centre }];
+        sites.extend(arms.iter().map(|arm| Site { kind: 1, position: centre + turn * (arm * 3.7) }));
         sites
     }
 

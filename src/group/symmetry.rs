@@ -1,10 +1,7 @@
 //! A point group placed on a set of sites: where its axes lie and which site each operation carries where.
 
-use super::error::GroupError;
 use super::irrep_name::IrrepName;
-use super::point_group::{Class, PointGroup};
-use super::products::Decomposition;
-use super::schoenflies::GroupName;
+use super::point_group::PointGroup;
 use nalgebra::{Matrix3, Point3, Vector3};
 
 /// A place of one kind: kinds are alike when element, shells and ghost status are alike.
@@ -89,37 +86,5 @@ impl Symmetry {
     #[must_use]
     pub fn standard_coordinates(&self, place: &Point3<f64>) -> Vector3<f64> {
         self.frame.axes * (place - self.frame.centre)
-    }
-
-    /// The irreps of the vibrations of the sites that are atoms, 3N − 6 in all (3N − 5 of a linear molecule, none of an atom).
-    ///
-    /// # Errors
-    /// As [`PointGroup::decompose`].
-    pub fn vibrations(&self, is_atom: &[bool]) -> Result<Decomposition, GroupError> {
-        if self.group.name() == GroupName::K {
-            return Ok(Vec::new());
-        }
-        let irreps = self.group.irreps();
-        let linear = self.group.is_continuous();
-        // A linear molecule has no rotation about its axis.
-        let rotations: Vec<usize> = self
-            .group
-            .rotation_irreps()
-            .into_iter()
-            .flat_map(|(irrep, count)| vec![irrep; count])
-            .filter(|&irrep| !linear || irreps[irrep].dimension == 2)
-            .collect();
-        let of_class = |(class_idx, class): (usize, &Class)| {
-            let member = class.members.first().copied().unwrap_or(0);
-            let trace = self.group.elements()[member].operation.matrix().trace();
-            let fixed = self.permutations[member]
-                .iter()
-                .enumerate()
-                .filter(|&(from, &to)| from == to && is_atom.get(from) == Some(&true))
-                .count();
-            let turned: f64 = rotations.iter().map(|&irrep| irreps[irrep].characters[class_idx]).sum();
-            (fixed as f64 - 1.0) * trace - turned
-        };
-        self.group.decompose(&self.group.classes().iter().enumerate().map(of_class).collect::<Vec<_>>())
     }
 }

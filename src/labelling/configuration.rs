@@ -48,6 +48,8 @@ pub enum Obstacle {
         orbitals: Vec<usize>,
         /// Partners that a complete set has.
         wanted: usize,
+        /// Largest difference of their energies, hartree.
+        spread_hartree: f64,
     },
     /// Electrons that make no whole number.
     Fractional {
@@ -118,5 +120,12 @@ pub fn open_shells(group: &PointGroup, spins: &[SpinLabels]) -> Result<Vec<OpenS
 }
 
 fn incomplete(spin: Spin, irrep: usize, set: &SetLabel) -> Obstacle {
-    Obstacle::Incomplete { spin, irrep, number: set.number, orbitals: set.orbitals.clone(), wanted: set.degeneracy }
+    Obstacle::Incomplete {
+        spin,
+        irrep,
+        number: set.number,
+        orbitals: set.orbitals.clone(),
+        wanted: set.degeneracy,
+        spread_hartree: set.spread,
+    }
 }

@@ -92,7 +92,8 @@ pub fn set_cores(
     }
 }
 
-/// An atom known by its name alone, position in bohr.
+/// An atom known by its name alone, position in bohr; a ghost where the name means no element.
+#[must_use]
 pub fn named_atom(name: &str, position: [f64; 3]) -> Atom {
     let element = elements::atomic_number(name);
     Atom {

@@ -4,10 +4,12 @@
 //! Not here: the grammar (`grammar`), normalisation and order of functions (`wavefunction::convention`):
 //! coefficients stand exactly as the file gives them.
 
-pub mod elements;
 mod atoms;
+pub mod elements;
+pub mod masses;
 mod molden;
 
+pub use atoms::named_atom;
 pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};
 
 use crate::diagnostic::Span;

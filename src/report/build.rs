@@ -1,12 +1,12 @@
 //! From labels to the document: names instead of indices, the units of the JSON keys.
 
 use super::document::{
-    BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry, SCHEMA,
-    SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
+    AbelianEntry, BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry,
+    SCHEMA, SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
 use super::placement::placement_entry;
 use super::transitions::{self, Context, TransitionEntry};
-use crate::group::{Detection, IrrepName, PointGroup, Symmetry};
+use crate::group::{Detection, GroupName, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
 use crate::labelling::frontier::{self, Configuration};
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
@@ -76,16 +76,60 @@ fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
         _ => Some(names.join(" ")),
     };
     let mut text = symmetry.frame.convention.clone();
-    let free = molecule.atoms.len() < 2 || symmetry.group.name() == crate::group::GroupName::C1;
+    let free = molecule.atoms.len() < 2 || symmetry.group.name() == GroupName::C1;
+    // What all three pass is the centre and tells nothing.
+    let [x, y, z] = &symmetry.passages;
+    let central_atom = |i: &usize| [x, y, z].iter().all(|passage| passage.atoms.contains(i));
+    let central_bond = |bond: &(usize, usize)| [x, y, z].iter().all(|passage| passage.bonds.contains(bond));
     for (axis, passage) in ["x", "y", "z"].iter().zip(&symmetry.passages).filter(|_| !free) {
-        let atoms = list(passage.atoms.iter().map(atom).collect(), "atoms");
-        let bonds = list(passage.bonds.iter().map(bond).collect(), "bonds");
+        let atoms = list(passage.atoms.iter().filter(|i| !central_atom(i)).map(atom).collect(), "atoms");
+        let bonds = list(passage.bonds.iter().filter(|pair| !central_bond(pair)).map(bond).collect(), "bonds");
         let parts: Vec<String> = [atoms, bonds].into_iter().flatten().collect();
         if !parts.is_empty() {
             let _ = write!(text, "; {axis} passes {}", parts.join(" and "));
         }
     }
     text
+}
+
+/// Electrons of the noble-gas cores of the real atoms.
+fn core_electrons(molecule: &Molecule) -> u32 {
+    const NOBLE: [u8; 7] = [2, 10, 18, 36, 54, 86, 118];
+    let core = |element: u8| NOBLE.iter().rev().find(|noble| **noble < element).copied().unwrap_or(0);
+    molecule.atoms.iter().filter(|atom| !atom.ghost).map(|atom| u32::from(core(atom.element))).sum()
+}
+
+/// Whether no atom with a core has a function steep enough for it: a 1s function needs exponents up to Z² and beyond.
+fn valence_only(molecule: &Molecule) -> bool {
+    molecule.shells.iter().all(|shell| {
+        let element = molecule.atoms[shell.atom_idx].element;
+        let steepest = shell.exponents.iter().copied().fold(0.0, f64::max);
+        element <= 2 || steepest < f64::from(element).powi(2)
+    })
+}
+
+/// What Σ occupations and the nuclear charges say against each other.
+fn electron_cautions(molecule: &Molecule) -> Vec<String> {
+    let source = source("", molecule);
+    let (Some(electrons), Some(charge)) = (source.electrons, source.charge) else {
+        return vec!["the file gives no occupations: nothing is said of HOMO, LUMO and electrons".to_owned()];
+    };
+    let mut cautions = Vec::new();
+    if (electrons - electrons.round()).abs() > 1e-3 {
+        cautions.push(format!("the occupations sum to {electrons:.4}, which is no whole number of electrons"));
+    }
+    let core = f64::from(core_electrons(molecule));
+    if core > 0.0 && (charge - core).abs() < 1e-3 && valence_only(molecule) {
+        cautions.push(format!(
+            "the nuclei have {core} charges more than there are electrons: just their noble-gas cores, so the basis \
+             seems to be for valence electrons only and the charge given is that of the cores"
+        ));
+    } else if charge.abs() > 8.0 {
+        cautions.push(format!(
+            "nuclei less electrons give a charge of {charge:+.0}: occupations or atomic numbers may be wrong"
+        ));
+    }
+    cautions
 }
 
 /// The geometry block.
@@ -105,6 +149,10 @@ pub fn geometry(molecule: &Molecule, detection: &Detection, symmetry: &Symmetry,
         centre_bohr: symmetry.frame.centre.coords.into(),
         axes: std::array::from_fn(|row| std::array::from_fn(|column| axes[(row, column)])),
         axes_convention: axes_in_words(molecule, symmetry),
+        abelian_subgroup: (group.name() != GroupName::K).then(|| {
+            let abelian = group.abelian_subgroup();
+            AbelianEntry { point_group: abelian.group.name().to_string(), axes: abelian.description }
+        }),
         other_settings: symmetry
             .other_settings
             .iter()
@@ -137,7 +185,7 @@ pub fn label_document(
     let group = &labelled.symmetry.group;
     let grouping = Grouping::new(molecule, &labelled.settled.basis, &labelled.symmetry);
     let builder = Builder { molecule, labelled, group, grouping: &grouping, lowdin };
-    let mut cautions = Vec::new();
+    let mut cautions = electron_cautions(molecule);
     if lowdin.is_none() {
         cautions.push("populations were not computed for this size of basis; ask for them with --character".to_owned());
     }
@@ -328,6 +376,11 @@ impl Builder<'_> {
 
     fn sets(&self, thresholds: &Thresholds) -> Vec<SetEntry> {
         let mut entries = Vec::new();
+        let abelian = (self.group.name() != GroupName::K).then(|| self.group.abelian_subgroup());
+        let descended = |irrep: usize| {
+            let abelian = abelian.as_ref()?;
+            Some(super::table::sum(&abelian.group, &self.group.subduce(abelian, irrep).ok()?))
+        };
         for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
             let first = self.first_set(spin_idx);
             for (set_idx, set) in spin.sets.iter().enumerate() {
@@ -341,6 +394,7 @@ impl Builder<'_> {
                     irrep: set.irrep.map(|irrep| self.group.irreps()[irrep].name.to_string()),
                     label: set_label(self.group, set),
                     orbitals: set.orbitals.iter().map(|i| i + 1).collect(),
+                    abelian_irreps: set.irrep.and_then(&descended),
                     degeneracy: set.degeneracy,
                     energy_hartree: set.energy,
                     energy_spread_hartree: set.spread,

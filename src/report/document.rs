@@ -91,6 +91,8 @@ pub struct Geometry {
     pub axes: [[f64; 3]; 3],
     /// In words: where the axes lie and by which rule.
     pub axes_convention: String,
+    /// The abelian subgroup that most engines would use; null for an atom.
+    pub abelian_subgroup: Option<AbelianEntry>,
     /// Labels that swap under another legal choice of axes.
     pub other_settings: Vec<SettingEntry>,
     /// Groups near the nuclei, lowest first.
@@ -100,6 +102,15 @@ pub struct Geometry {
     pub placement: Option<super::placement::PlacementEntry>,
     /// What to know before trusting the group.
     pub warnings: Vec<String>,
+}
+
+/// The largest abelian subgroup among D2h and its subgroups.
+#[derive(Debug, Clone, Serialize)]
+pub struct AbelianEntry {
+    /// Its name.
+    pub point_group: String,
+    /// How its axes lie in those of the group.
+    pub axes: String,
 }
 
 /// Another legal choice of axes.
@@ -199,6 +210,8 @@ pub struct SetEntry {
     pub label: Option<String>,
     /// Orbitals by index from 1.
     pub orbitals: Vec<usize>,
+    /// What the irrep becomes in the abelian subgroup, such as `B2g + B3g`; null without an irrep, or for an atom.
+    pub abelian_irreps: Option<String>,
     /// Dimension of the irrep; without one the number of orbitals.
     pub degeneracy: usize,
     /// Mean energy.

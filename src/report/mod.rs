@@ -7,6 +7,8 @@ pub mod audit_text;
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod modes;
+pub mod modes_text;
 pub mod double_table;
 pub mod states;
 pub mod states_text;

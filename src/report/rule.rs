@@ -8,7 +8,7 @@ use super::text::{head, push_table, table};
 use super::unicode::pretty;
 use crate::group::{GroupError, IrrepName, PointGroup};
 use crate::selection::rules::QUADRATIC;
-use crate::selection::{Allowed, Operators, states};
+use crate::selection::{Allowed, Operators};
 use serde::Serialize;
 use std::fmt::Write as _;
 
@@ -144,7 +144,7 @@ pub fn state(group: &PointGroup, operators: &Operators, irrep: usize) -> StateRu
     let name = |irrep: usize| group.irreps()[irrep].name.to_string();
     let direct = operators.polarisation(irrep);
     let helpers = if direct.is_empty() { operators.helpers(group, irrep) } else { Vec::new() };
-    let sublevels = states::triplet_sublevels(group, operators, irrep).unwrap_or_default();
+    let sublevels = operators.triplet_sublevels(group, irrep).unwrap_or_default();
     StateRule {
         irrep: name(irrep),
         electric_dipole: dipole(&direct),
@@ -192,7 +192,7 @@ fn verdict(allowed: bool, components: &[&str]) -> String {
 
 /// What Laporte's rule says, in words.
 #[must_use]
-pub fn laporte(parities: &str) -> String {
+fn laporte(parities: &str) -> String {
     let allowed = matches!(parities, "g-u" | "u-g");
     format!("{} {}", parities.replace('-', " → "), if allowed { "allowed" } else { "forbidden" })
 }
@@ -232,8 +232,8 @@ pub fn text(document: &RuleDocument) -> String {
     push_table(&mut out, &rows);
     let _ = writeln!(
         out,
-        "\nThe rules say which integrals vanish by symmetry, not how strong a band is. Spin is kept: singlet ↔ triplet only\n\
-         through spin–orbit coupling, each sublevel with singlets of its own irrep."
+        "\nThe rules say which integrals vanish by symmetry, not how strong a band is. Spin is kept: singlet ↔ triplet\n\
+         only through spin–orbit coupling, each sublevel with singlets of its own irrep."
     );
     out
 }

@@ -127,7 +127,7 @@ pub struct ModeEntry {
 pub struct GroundEntry {
     /// One term, or those that Hund's rules leave.
     pub terms: Vec<String>,
-    /// `closed`, `rules`, `several_shells` or `undecided`.
+    /// `closed`, `only`, `rules`, `several_shells` or `undecided`.
     pub certainty: &'static str,
     /// Of an atom, J of the lowest level.
     pub j: Option<String>,
@@ -339,13 +339,17 @@ impl Stage<'_> {
     fn ground(&self, terms: &[Term], ground: &Ground) -> GroundEntry {
         let (certainty, caution) = match ground.certainty {
             Certainty::Closed => ("closed", "every shell is full or empty"),
+            Certainty::Only => ("only", "the only term of this configuration"),
+            Certainty::Rules if self.group.is_continuous() => {
+                ("rules", "lowest of this configuration by Hund's rules, which can fail")
+            }
             Certainty::Rules => (
                 "rules",
-                "lowest of this configuration by Hund's rules; another configuration may lie lower (low spin), and the rules can fail",
+                "lowest of this configuration by Hund's rules, which can fail; another configuration, such as that of low spin, may lie lower",
             ),
             Certainty::SeveralShells => (
                 "several_shells",
-                "highest spin; Hund's rules were found for one open shell and decide less surely between several",
+                "highest spin; Hund's rules were found for one open shell and decide less surely where there are several",
             ),
             Certainty::Undecided => {
                 ("undecided", "Hund's rules stop at highest spin: which of these lies lowest takes a calculation")
@@ -407,15 +411,15 @@ impl Stage<'_> {
         Ok(LevelEntry { level, parity, components: self.components(&components)? })
     }
 
-    /// lⁿ between free ion and strong field.
+    /// lⁿ between free ion and strong field; `atom` is the full rotation group.
     #[must_use]
-    pub fn correlation(&self, correlation: &Correlation) -> CorrelationEntry {
+    pub fn correlation(&self, atom: &PointGroup, correlation: &Correlation) -> CorrelationEntry {
         let kinds = |terms: &[Term]| -> Vec<KindEntry> {
             terms.iter().map(|term| KindEntry { term: term.symbol(self.group), count: term.count }).collect()
         };
         let (weak, strong) = (correlation.weak_total(), correlation.strong_total());
         let weak_field = correlation.weak_field.iter().map(|(term, irreps)| FreeTermEntry {
-            term: term.symbol(&correlation.atom),
+            term: term.symbol(atom),
             count: term.count,
             becomes: irreps
                 .iter()

@@ -15,6 +15,10 @@ use std::fmt::Write as _;
 const WIDTH: usize = 100;
 /// Columns of the words at the left of the head's lines.
 const HEAD: usize = 13;
+/// Obstacles that are printed; of more the number.
+const OBSTACLES_IN_TEXT: usize = 6;
+/// Transitions that are printed one by one; of more only those that something allows.
+const TRANSITIONS_IN_TEXT: usize = 30;
 /// Ways to fill the orbitals that are printed one by one; of more only the sum.
 const FILLINGS_IN_TEXT: usize = 24;
 const SUPERSCRIPTS: [char; 10] = ['⁰', '¹', '²', '³', '⁴', '⁵', '⁶', '⁷', '⁸', '⁹'];
@@ -34,9 +38,17 @@ pub fn text(document: &StatesDocument, options: StatesOptions) -> String {
     let _ = writeln!(out, "{from}{}", pretty(&document.point_group));
     if !document.obstacles.is_empty() {
         out.push_str("\nThe occupations are no configuration of whole sets, so no terms are given:\n");
-        for obstacle in &document.obstacles {
+        for obstacle in document.obstacles.iter().take(OBSTACLES_IN_TEXT) {
             push_wrapped(&mut out, "  · ", obstacle);
         }
+        if document.obstacles.len() > OBSTACLES_IN_TEXT {
+            let _ = writeln!(out, "  · and {} more", document.obstacles.len() - OBSTACLES_IN_TEXT);
+        }
+        let _ = writeln!(
+            out,
+            "A configuration can be typed instead: orbsieve states {} CONFIGURATION",
+            document.point_group
+        );
     }
     if let Some(configuration) = &document.configuration {
         out.push_str(&configuration_text(configuration, document, options));
@@ -74,7 +86,12 @@ fn head(out: &mut String, name: &str, text: &str) {
 fn term(symbol: &str) -> String {
     let digits = symbol.len() - symbol.trim_start_matches(|c: char| c.is_ascii_digit()).len();
     let raised: String = symbol[..digits].chars().map(raised).collect();
-    format!("{raised}{}", pretty(&symbol[digits..]))
+    format!("{raised}{}", irrep(&symbol[digits..]))
+}
+
+/// `Sigma_g-` → `Σg⁻`: the sign of Σ stands high.
+fn irrep(name: &str) -> String {
+    pretty(name).replace('+', "⁺").replace('-', "⁻")
 }
 
 fn raised(digit: char) -> char {
@@ -124,10 +141,11 @@ fn configuration_text(entry: &ConfigurationEntry, document: &StatesDocument, opt
         &mut out,
         "Configuration",
         &format!(
-            "{shells}   {} electron{}, {} microstates in {count} term{} of {kinds} kind{}",
+            "{shells} · {} electron{} · {} microstate{} · {count} term{} of {kinds} kind{}",
             entry.electrons,
             plural(entry.electrons as usize),
             whole(entry.microstates),
+            if entry.microstates > 1.5 { "s" } else { "" },
             plural(count),
             plural(kinds)
         ),
@@ -136,12 +154,9 @@ fn configuration_text(entry: &ConfigurationEntry, document: &StatesDocument, opt
     let level = entry.ground.j.as_ref().map_or(String::new(), |j| format!(", lowest level J = {j}"));
     let named = if ground.len() > 1 { format!("one of {}", ground.join(", ")) } else { ground.join("") };
     head(&mut out, "Ground term", &format!("{named}{level}: {}", entry.ground.caution));
-    for symbol in &entry.ground.terms {
-        if let Some(kind) = entry.terms.iter().find(|kind| kind.term == *symbol)
-            && let Some(verdict) = jahn_teller(&kind.jahn_teller)
-        {
-            head(&mut out, "Jahn–Teller", &format!("{}: {verdict}", term(symbol)));
-        }
+    let ground = entry.terms.iter().filter(|kind| entry.ground.terms.contains(&kind.term));
+    for (kind, verdict) in ground.filter_map(|kind| Some((kind, jahn_teller(&kind.jahn_teller)?))) {
+        head(&mut out, "Jahn–Teller", &format!("{}: {verdict}", term(&kind.term)));
     }
     out.push('\n');
     let file = document.file.is_some();
@@ -198,11 +213,7 @@ fn level_stability(entry: &ConfigurationEntry, file: bool) -> String {
             told.push(&component.irrep);
             let verdict = jahn_teller(&component.jahn_teller).unwrap_or_default();
             let of = if file { "in this molecule " } else { "" };
-            push_wrapped(
-                &mut out,
-                "",
-                &format!("Level {} of the ground term: {of}{verdict}", component_name(component)),
-            );
+            push_wrapped(&mut out, "", &format!("Level {}: {of}{verdict}", component_name(component)));
         }
     }
     out
@@ -231,7 +242,7 @@ fn jahn_teller(entry: &JahnTellerEntry) -> Option<String> {
 
 /// `E1/2g (Γ6g)`, `J = 5/2`, `Σ+ (Ω = 0+)`.
 fn component_name(component: &ComponentEntry) -> String {
-    let name = pretty(&component.irrep);
+    let name = irrep(&component.irrep);
     match (&component.gamma, &component.quantum_number) {
         (Some(gamma), _) => format!("{name} ({})", pretty(gamma)),
         (None, Some(_))
@@ -259,7 +270,9 @@ pub fn component_sum(components: &[ComponentEntry]) -> String {
 pub fn level_lines(levels: &[LevelEntry]) -> String {
     let mut rows = table();
     for level in levels {
-        rows.add_row([pretty(&level.level), component_sum(&level.components)]);
+        let name = if level.level.starts_with('J') { level.level.clone() } else { term(&level.level) };
+        let odd = if level.parity == "odd" { " odd" } else { "" };
+        rows.add_row([format!("{name}{odd}"), component_sum(&level.components)]);
     }
     let mut out = String::new();
     push_table(&mut out, &rows);
@@ -278,7 +291,14 @@ fn transitions_text(transitions: &[TransitionEntry]) -> String {
         "Quadrupole",
         "Electric dipole by spin–orbit coupling",
     ]);
-    for rule in transitions {
+    let open = |rule: &&TransitionEntry| {
+        rule.electric_dipole.allowed
+            || rule.magnetic_dipole.allowed
+            || rule.electric_quadrupole.allowed
+            || rule.spin_orbit.allowed
+    };
+    let all = transitions.len() <= TRANSITIONS_IN_TEXT;
+    for rule in transitions.iter().filter(|rule| all || open(rule)) {
         let cell = |allowed: bool, components: &[String]| {
             if allowed { components.join(", ") } else { "–".to_owned() }
         };
@@ -301,6 +321,10 @@ fn transitions_text(transitions: &[TransitionEntry]) -> String {
         ]);
     }
     push_table(&mut out, &rows);
+    let closed = transitions.len() - transitions.iter().filter(open).count();
+    if !all && closed > 0 {
+        let _ = writeln!(out, "{closed} more pairs: nothing allowed");
+    }
     out
 }
 
@@ -318,7 +342,7 @@ fn correlation_text(correlation: &CorrelationEntry) -> String {
         &mut out,
         "Free ion",
         &format!(
-            "{}   {} microstates; in the field {}",
+            "{} · {} microstates · orbitals in the field {}",
             configuration(&correlation.free_ion),
             whole(correlation.microstates),
             pretty(&correlation.orbitals)

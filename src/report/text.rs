@@ -2,9 +2,10 @@
 //!
 //! Not here: any number that the document does not hold.
 
-use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, SpinFrontier};
+use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, Source, SpinFrontier};
 use super::placement::placement_lines;
 use super::unicode::pretty;
+use crate::group::IrrepName;
 use crate::model::Spin;
 use comfy_table::{CellAlignment, Table, presets};
 use std::fmt::Write as _;
@@ -55,13 +56,23 @@ pub(super) fn wrap(text: &str, width: usize) -> Vec<String> {
     lines
 }
 
+/// A sentence with the irreps in it set as people print them.
+fn pretty_irreps(text: &str) -> String {
+    let word = |word: &str| if word.parse::<IrrepName>().is_ok() { pretty(word) } else { word.to_owned() };
+    text.split(' ').map(word).collect::<Vec<_>>().join(" ")
+}
+
 /// A number of electrons without needless decimals.
 fn count(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
 pub(super) fn title(document: &Document) -> String {
-    let source = &document.source;
+    source_line(&document.source)
+}
+
+/// File, formula, title, atoms, electrons and charge.
+pub(super) fn source_line(source: &Source) -> String {
     let mut parts = vec![source.file.clone(), source.formula.clone()];
     if !source.title.is_empty() {
         parts.push(format!("“{}”", source.title));
@@ -144,7 +155,11 @@ pub fn label_text(document: &Document, options: TextOptions) -> String {
             (true, Spin::Alpha) => "Alpha sets",
             (true, Spin::Beta) => "Beta sets",
         };
-        out.push_str(&set_table(name, &of_spin, frontier.iter().find(|entry| entry.spin == spin), options));
+        let geometry = &document.geometry;
+        let abelian = geometry.abelian_subgroup.as_ref().map(|abelian| abelian.point_group.as_str());
+        let abelian = abelian.filter(|name| *name != geometry.point_group && *name != "C1");
+        let frontier = frontier.iter().find(|entry| entry.spin == spin);
+        out.push_str(&set_table(name, &of_spin, frontier, abelian, options));
     }
     out.push_str(&d_block(document));
     out.push_str(&active_window(document));
@@ -195,7 +210,7 @@ fn answer(document: &Document, sets: &[SetEntry]) -> String {
         }
     }
     if frontier.spins.iter().any(|spin| spin.homo.is_some() || !spin.somo.is_empty()) {
-        head(&mut out, "Determinant", &pretty(&frontier.determinant));
+        head(&mut out, "Determinant", &pretty_irreps(&frontier.determinant));
         let totals: Vec<String> = frontier
             .electrons_per_irrep
             .iter()
@@ -256,7 +271,14 @@ fn made_of(shares: &[ShareEntry]) -> String {
     parts.join(", ")
 }
 
-fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, options: TextOptions) -> String {
+/// One spin's sets; `abelian` names the subgroup whose labels stand beside, where it is another group.
+fn set_table(
+    name: &str,
+    sets: &[&SetEntry],
+    frontier: Option<&SpinFrontier>,
+    abelian: Option<&str>,
+    options: TextOptions,
+) -> String {
     let place = |number: Option<usize>| number.and_then(|number| sets.iter().position(|set| set.set == number));
     let homo = place(frontier.and_then(|frontier| frontier.homo.or(frontier.somo.last().copied())));
     let shown = match homo {
@@ -272,7 +294,8 @@ fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, op
     };
     let _ = writeln!(out, "\n{name}{hidden}");
     let mut rows = table();
-    rows.set_header(["label", "", "eV", "e⁻", "purity", "orbitals", "made of", ""]);
+    let in_subgroup = abelian.map(|abelian| format!("in {}", pretty(abelian))).unwrap_or_default();
+    rows.set_header(["label", "", "eV", "e⁻", "purity", "orbitals", &in_subgroup, "made of", ""]);
     for set in &sets[shown] {
         let mark = match frontier {
             Some(frontier) if frontier.homo == Some(set.set) => "HOMO",
@@ -288,6 +311,7 @@ fn set_table(name: &str, sets: &[&SetEntry], frontier: Option<&SpinFrontier>, op
             set.electrons.map_or(String::new(), count),
             format!("{:.4}", set.purity),
             crate::labelling::composition::ranges(&orbitals),
+            abelian.and(set.abelian_irreps.as_ref()).map_or(String::new(), |irreps| irreps.replace(" + ", "+")),
             made_of(&set.character),
             remark(set),
         ]);

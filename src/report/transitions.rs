@@ -6,12 +6,15 @@ use super::build::set_label;
 use super::rule::{self, AXES, ROTATIONS};
 use crate::group::PointGroup;
 use crate::labelling::Labelled;
-use crate::model::{ANGSTROM_PER_BOHR, Molecule, Spin};
-use crate::modes::{self, Motion};
+use crate::labelling::configuration::open_shells;
+use crate::labelling::frontier::frontier;
+use crate::model::{ANGSTROM_PER_BOHR, Atom, Molecule, Spin};
+use crate::modes::{self, Kind, ModeThresholds, Motion, assignment};
 use crate::selection::agreement::{self, Cause, Finding, Operator};
 use crate::selection::rules::QUADRATIC;
-use crate::selection::states::{self, Ground};
 use crate::selection::{Allowed, Operators, Pair, Strengths, strengths};
+use crate::states::jahn_teller::{self, JahnTeller};
+use crate::states::{self, Certainty, Configuration, Term};
 use serde::Serialize;
 
 /// One pair of sets.
@@ -93,27 +96,33 @@ pub struct TwoPhoton {
     pub components: Vec<&'static str>,
 }
 
-/// States of the configuration reached.
+/// States of the configuration reached, from those of the file's own configuration.
 #[derive(Debug, Clone, Serialize)]
 pub struct StatesEntry {
-    /// `closed shell`, or the open shells that the ground state comes from.
+    /// `closed shell`, or the open shells that the ground term comes from: `1t2g^3`.
     pub ground_from: String,
-    /// Orbital irreps that the ground configuration gives.
+    /// Ground term by Hund's rules, `4A2g`; several where the rules leave them.
     pub ground: Vec<String>,
-    /// Orbital irreps that the excited configuration gives.
+    /// Whether the rules leave one.
+    pub ground_decided: bool,
+    /// Terms of the excited configuration, highest spin first.
     pub excited: Vec<ExcitedEntry>,
-    /// Multiplicities where they are plain: 1 and 3 from a closed shell of restricted orbitals, else empty.
-    pub multiplicities: Vec<u8>,
 }
 
-/// One irrep of the excited configuration.
+/// Terms of one kind of the excited configuration.
 #[derive(Debug, Clone, Serialize)]
 pub struct ExcitedEntry {
+    /// `4T2g`.
+    pub term: String,
+    /// 2S + 1.
+    pub multiplicity: u16,
     /// Orbital irrep.
     pub irrep: String,
-    /// How many terms have it.
-    pub terms: usize,
-    /// Axes along which some ground state reaches it with spin kept; empty when forbidden.
+    /// How many there are.
+    pub count: usize,
+    /// Same spin as the ground term.
+    pub spin_allowed: bool,
+    /// Axes along which the ground term reaches it with spin kept; empty when forbidden.
     pub polarisation: Vec<&'static str>,
 }
 
@@ -165,7 +174,7 @@ pub struct SublevelEntry {
 /// A degenerate level and the vibrations that split it.
 #[derive(Debug, Clone, Serialize)]
 pub struct JahnTellerEntry {
-    /// Label of the set.
+    /// Ground term, or label of the set.
     pub label: String,
     /// What is meant: the file's own configuration, or one electron less or more.
     pub configuration: String,
@@ -187,6 +196,17 @@ pub struct ActiveVibration {
     pub modes: Vec<ModeReference>,
 }
 
+/// Irrep, running number and electrons of an open shell.
+type Shell = (usize, Option<u32>, u32);
+
+/// The file's own configuration.
+struct Ground {
+    shells: Vec<Shell>,
+    text: String,
+    terms: Vec<Term>,
+    decided: bool,
+}
+
 /// What transitions are built from.
 pub struct Context<'a> {
     /// The molecule, coefficients canonical.
@@ -201,6 +221,9 @@ pub struct Context<'a> {
     pub modes: Vec<(usize, ModeReference)>,
 }
 
+/// The file's own configuration, in [`JahnTellerEntry`].
+pub const OWN: &str = "this configuration";
+
 /// What every reader of the table must know.
 pub const CAUTIONS: [&str; 3] = [
     "a label is not an intensity: symmetry says which integrals vanish, not how large the others are",
@@ -209,13 +232,30 @@ pub const CAUTIONS: [&str; 3] = [
      rotational and quadrupole strengths refer to the centre of the group",
 ];
 
+/// The file's vibrations by irrep, where its displacements belong to the geometry of the orbitals.
+fn file_modes(molecule: &Molecule, labelled: &Labelled) -> Vec<(usize, ModeReference)> {
+    const SAME_PLACE_BOHR: f64 = 0.02;
+    let Some(vibrations) = &molecule.vibrations else { return Vec::new() };
+    let atoms = assignment::atoms_of_modes(&molecule.atoms, vibrations);
+    let in_place = |(a, b): (&Atom, &Atom)| (a.position - b.position).norm() < SAME_PLACE_BOHR;
+    if atoms.len() != molecule.atoms.len() || !atoms.iter().zip(&molecule.atoms).all(in_place) {
+        return Vec::new();
+    }
+    let assigned = modes::assign(&atoms, vibrations, &labelled.symmetry, &ModeThresholds::STANDARD);
+    let of_mode = |(at, label): (usize, &assignment::ModeLabel)| {
+        let irrep = label.irrep.filter(|_| label.kind == Kind::Vibration)?;
+        Some((irrep, ModeReference { mode: at + 1, wavenumber_per_cm: vibrations.modes[at].wavenumber }))
+    };
+    assigned.modes.iter().enumerate().filter_map(of_mode).collect()
+}
+
 impl<'a> Context<'a> {
     /// Works out operators and vibrations of the molecule.
     #[must_use]
     pub fn new(molecule: &'a Molecule, labelled: &'a Labelled) -> Self {
         let operators = Operators::new(&labelled.symmetry.group);
         let motion = modes::motion(&molecule.atoms, &labelled.symmetry).ok();
-        Self { molecule, labelled, operators, motion, modes: Vec::new() }
+        Self { molecule, labelled, operators, motion, modes: file_modes(molecule, labelled) }
     }
 }
 
@@ -249,7 +289,7 @@ impl Context<'_> {
     /// The entries of these pairs, in the order given.
     #[must_use]
     pub fn entries(&self, pairs: &[Pair]) -> Vec<TransitionEntry> {
-        let ground = states::ground(self.group(), &self.labelled.spins);
+        let ground = self.ground();
         let strengths = strengths(self.molecule, self.labelled, pairs);
         let mut entries: Vec<TransitionEntry> = pairs
             .iter()
@@ -263,7 +303,7 @@ impl Context<'_> {
         if let Some(at) = strongest {
             entries[at].strongest = true;
         }
-        if ground.is_some_and(|ground| ground.closed) && self.labelled.spins.len() == 1 {
+        if ground.is_some_and(|ground| ground.shells.is_empty()) {
             self.add_triplets(&mut entries);
         }
         entries
@@ -302,21 +342,21 @@ impl Context<'_> {
             electric_dipole: ElectricDipole {
                 allowed: dipole,
                 polarisation,
-                strength_au: strengths.length.iter().sum(),
-                strength_by_axis_au: strengths.length,
-                oscillator_strength: strengths.oscillator_length(),
-                velocity_strength_au: strengths.velocity.iter().sum(),
-                oscillator_strength_velocity: strengths.oscillator_velocity(),
+                strength_au: tidy(strengths.length.iter().sum()),
+                strength_by_axis_au: strengths.length.map(tidy),
+                oscillator_strength: strengths.oscillator_length().map(tidy),
+                velocity_strength_au: tidy(strengths.velocity.iter().sum()),
+                oscillator_strength_velocity: strengths.oscillator_velocity().map(tidy),
             },
             magnetic_dipole: Magnetic {
                 allowed: magnetic,
                 components: rotations,
-                strength_au: strengths.magnetic.iter().sum(),
+                strength_au: tidy(strengths.magnetic.iter().sum()),
             },
             electric_quadrupole: Magnetic {
                 allowed: quadrupole,
                 components: quadratic,
-                strength_au: strengths.quadrupole_total(),
+                strength_au: tidy(strengths.quadrupole_total()),
             },
             two_photon: TwoPhoton { allowed: two_photon, components: two_photon_components },
             laporte: allowed.as_ref().and_then(|rule| rule.parity_changes).zip(from.irrep.zip(to.irrep)).map(
@@ -333,46 +373,74 @@ impl Context<'_> {
         }
     }
 
+    /// The file's open shells and the terms that Hund's rules leave; None where they are no configuration of whole sets.
+    fn ground(&self) -> Option<Ground> {
+        let shells = open_shells(self.group(), &self.labelled.spins).ok()?;
+        let shells: Vec<Shell> =
+            shells.iter().map(|shell| (shell.irrep, Some(shell.number), shell.electrons)).collect();
+        let configuration = Configuration::new(self.group(), &shells).ok()?;
+        let terms = states::terms(self.group(), &configuration).ok()?;
+        let found = states::ground(self.group(), &configuration, &terms);
+        Some(Ground {
+            shells,
+            text: configuration.to_string(),
+            decided: found.certainty != Certainty::Undecided,
+            terms: found.terms.iter().map(|&at| terms[at]).collect(),
+        })
+    }
+
+    /// The shells after one electron has gone from set to set.
+    fn excited_shells(&self, ground: &Ground, pair: Pair) -> Option<Vec<Shell>> {
+        let sets = &self.labelled.spins[pair.spin_idx].sets;
+        let mut shells = ground.shells.clone();
+        for (set, gains) in [(&sets[pair.from], false), (&sets[pair.to], true)] {
+            let irrep = set.irrep?;
+            let number = u32::try_from(set.number).ok()?;
+            let known = shells.iter().position(|shell| (shell.0, shell.1) == (irrep, Some(number)));
+            let at = known.unwrap_or_else(|| {
+                // Not open: empty, or full with both spins.
+                let places = u32::try_from(2 * self.group().irreps()[irrep].dimension).unwrap_or(u32::MAX);
+                shells.push((irrep, Some(number), if gains { 0 } else { places }));
+                shells.len() - 1
+            });
+            let electrons = &mut shells[at].2;
+            *electrons = if gains { *electrons + 1 } else { electrons.checked_sub(1)? };
+        }
+        Some(shells)
+    }
+
     fn states(&self, ground: &Ground, pair: Pair) -> Option<StatesEntry> {
         let group = self.group();
-        let spins = &self.labelled.spins;
-        let before = states::terms(group, &ground.shells).ok()?;
-        let shells = states::excited(group, ground, spins, pair.spin_idx, pair.from, pair.to)?;
-        let after = states::terms(group, &shells).ok()?;
-        let reached = |irrep: usize| {
-            let mut axes: Vec<usize> = before
+        let configuration = Configuration::new(group, &self.excited_shells(ground, pair)?).ok()?;
+        let terms = states::terms(group, &configuration).ok()?;
+        let reached = |term: &Term| {
+            let mut axes: Vec<usize> = ground
+                .terms
                 .iter()
-                .filter_map(|&(from, _)| self.operators.between(group, from, irrep).ok())
+                .filter(|from| from.multiplicity == term.multiplicity)
+                .filter_map(|from| self.operators.between(group, from.irrep, term.irrep).ok())
                 .flat_map(|rule| rule.electric_dipole)
                 .collect();
             axes.sort_unstable();
             axes.dedup();
             rule::axes(&axes)
         };
-        let restricted = spins.len() == 1;
         Some(StatesEntry {
-            ground_from: self.ground_from(ground),
-            ground: rule::names(group, &before),
-            excited: after
+            ground_from: if ground.shells.is_empty() { "closed shell".to_owned() } else { ground.text.clone() },
+            ground: ground.terms.iter().map(|term| term.symbol(group)).collect(),
+            ground_decided: ground.decided,
+            excited: terms
                 .iter()
-                .map(|&(irrep, terms)| ExcitedEntry { irrep: self.name(irrep), terms, polarisation: reached(irrep) })
+                .map(|term| ExcitedEntry {
+                    term: term.symbol(group),
+                    multiplicity: term.multiplicity,
+                    irrep: self.name(term.irrep),
+                    count: term.count,
+                    spin_allowed: ground.terms.iter().any(|from| from.multiplicity == term.multiplicity),
+                    polarisation: reached(term),
+                })
                 .collect(),
-            multiplicities: if ground.closed && restricted { vec![1, 3] } else { Vec::new() },
         })
-    }
-
-    /// `closed shell`, `3eg^2`, or the determinant of spin orbitals.
-    fn ground_from(&self, ground: &Ground) -> String {
-        if ground.closed {
-            return if self.labelled.spins.len() == 1 { "closed shell" } else { "full sets of spin orbitals" }
-                .to_owned();
-        }
-        let open = ground
-            .shells
-            .iter()
-            .filter(|shell| shell.electrons < shell.capacity * self.group().irreps()[shell.irrep].dimension);
-        let text = open.map(|shell| format!("{}^{}", self.label(shell.spin_idx, shell.set_idx), shell.electrons));
-        text.collect::<Vec<_>>().join(" ")
     }
 
     fn vibronic(&self, allowed: &Allowed) -> Vec<VibronicEntry> {
@@ -403,7 +471,7 @@ impl Context<'_> {
                 (0..group.irreps().len()).filter(|&irrep| entry.product.contains(&self.name(irrep))).collect();
             irreps.dedup();
             for irrep in irreps {
-                let Ok(sublevels) = states::triplet_sublevels(group, &self.operators, irrep) else { continue };
+                let Ok(sublevels) = self.operators.triplet_sublevels(group, irrep) else { continue };
                 let sublevels = sublevels.into_iter().map(|(sublevel, _)| {
                     let name = self.name(sublevel);
                     let with_it = singlets.iter().filter(|(_, product)| product.contains(&name));
@@ -418,6 +486,11 @@ impl Context<'_> {
             }
         }
     }
+}
+
+/// Without digits that only rounding decides.
+fn tidy(value: f64) -> f64 {
+    (value * 1e12).round() / 1e12
 }
 
 /// A finding in words.
@@ -435,6 +508,9 @@ fn remark(finding: &Finding, group: &str) -> String {
         Finding::WeakThoughAllowed(strength) => {
             format!("allowed, yet the strength is {strength:.1e} au: symmetry permits it, the orbitals do not use it")
         }
+        Finding::FormsDiffer(length, velocity) => format!(
+            "length form gives f = {length:.0e}, velocity form {velocity:.0e}: this basis and these gaps do not settle the strength"
+        ),
         Finding::Incomplete => "a set lacks partners: the strength is not that of the whole level".to_owned(),
     }
 }
@@ -449,39 +525,42 @@ fn explained(cause: &Cause, group: &str) -> String {
 }
 
 impl Context<'_> {
-    /// Degenerate sets whose part-filling splits the nuclei: those of the file, and the frontier sets after loss or gain of an electron.
+    /// What splits a degenerate ground term, or, of a closed shell, the frontier sets after loss or gain of an electron.
     #[must_use]
     pub fn jahn_teller(&self) -> Vec<JahnTellerEntry> {
-        use crate::labelling::frontier::frontier;
         let group = self.group();
-        let capacity = if self.labelled.spins.len() > 1 { 1.0 } else { 2.0 };
-        let mut entries = Vec::new();
-        for (spin_idx, spin) in self.labelled.spins.iter().enumerate() {
-            let found = frontier(&spin.sets, capacity);
-            let own = found.somo.iter().map(|&set| (set, "this configuration"));
-            let homo = found.homo.map(|set| (set, "one electron less"));
-            let lumo = found.lumo.map(|set| (set, "one electron more"));
-            for (set, configuration) in own.chain(homo).chain(lumo) {
-                let degenerate = |irrep: &usize| group.irreps()[*irrep].dimension > 1;
-                let Some(irrep) = spin.sets[set].irrep.filter(degenerate) else { continue };
-                let Ok(active) = states::jahn_teller(group, irrep) else { continue };
-                let vibrations: Vec<ActiveVibration> = active
-                    .into_iter()
-                    .filter(|&irrep| self.n_modes(irrep) > 0)
-                    .map(|irrep| ActiveVibration {
-                        irrep: self.name(irrep),
-                        modes_in_molecule: self.n_modes(irrep),
-                        modes: self.modes_of(irrep),
-                    })
-                    .collect();
-                entries.push(JahnTellerEntry {
-                    label: self.label(spin_idx, set),
-                    configuration: configuration.to_owned(),
-                    second_order_only: vibrations.is_empty(),
-                    vibrations,
-                });
-            }
+        let Some(ground) = self.ground() else { return Vec::new() };
+        if !ground.shells.is_empty() {
+            let of_term = |term: &Term| self.splitting(term.symbol(group), OWN, term.irrep);
+            return ground.terms.iter().filter_map(of_term).collect();
         }
-        entries
+        let capacity = if self.labelled.spins.len() > 1 { 1.0 } else { 2.0 };
+        let Some(spin) = self.labelled.spins.first() else { return Vec::new() };
+        let found = frontier(&spin.sets, capacity);
+        let ends = [(found.homo, "one electron less"), (found.lumo, "one electron more")];
+        let of_end = |(set, configuration): (Option<usize>, &str)| {
+            let set = set?;
+            self.splitting(self.label(0, set), configuration, spin.sets[set].irrep?)
+        };
+        ends.into_iter().filter_map(of_end).collect()
+    }
+
+    /// The vibrations that split a level of this irrep; None where it is not degenerate.
+    fn splitting(&self, label: String, configuration: &str, irrep: usize) -> Option<JahnTellerEntry> {
+        let (active, linear) = match jahn_teller::of_irrep(self.group(), irrep).ok()? {
+            JahnTeller::Active(active) => (active, false),
+            JahnTeller::Linear => (Vec::new(), true),
+            JahnTeller::Stable | JahnTeller::Atom => return None,
+        };
+        let vibrations = active
+            .into_iter()
+            .filter(|&(irrep, _)| self.n_modes(irrep) > 0)
+            .map(|(irrep, _)| ActiveVibration {
+                irrep: self.name(irrep),
+                modes_in_molecule: self.n_modes(irrep),
+                modes: self.modes_of(irrep),
+            })
+            .collect();
+        Some(JahnTellerEntry { label, configuration: configuration.to_owned(), vibrations, second_order_only: linear })
     }
 }

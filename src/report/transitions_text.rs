@@ -3,9 +3,9 @@
 //! Not here: any number that the document does not hold.
 
 use super::document::Document;
-use super::rule::{self, listed};
+use super::rule::listed;
 use super::text::{EV_PER_HARTREE, geometry_head, head, push_table, table, title, wrap};
-use super::transitions::{ModeReference, TransitionEntry};
+use super::transitions::{self, ModeReference, TransitionEntry};
 use super::unicode::pretty;
 use crate::model::Spin;
 use comfy_table::CellAlignment;
@@ -13,6 +13,9 @@ use std::fmt::Write as _;
 
 /// Columns of a line below the table.
 const WIDTH: usize = 106;
+
+/// Triplets of so many pairs are told; the rest is in the JSON output.
+const TRIPLETS_OF: usize = 2;
 
 /// The whole report of `transitions`.
 #[must_use]
@@ -51,40 +54,58 @@ fn product(entry: &TransitionEntry) -> String {
             None => terms.push((name, 1)),
         }
     }
-    let term = |&(name, n): &(&str, usize)| if n == 1 { pretty(name) } else { format!("{n}{}", pretty(name)) };
-    if terms.is_empty() { "—".to_owned() } else { terms.iter().map(term).collect::<Vec<_>>().join(" + ") }
+    // Raised signs, as + also joins the terms.
+    let raised = |name: &str| pretty(name).replace('+', "⁺").replace('-', "⁻");
+    let term = |&(name, n): &(&str, usize)| if n == 1 { raised(name) } else { format!("{n}{}", raised(name)) };
+    if terms.is_empty() { "—".to_owned() } else { terms.iter().map(term).collect::<Vec<_>>().join("+") }
 }
 
-/// `x, y`, `forbidden`, or `no rule`.
+/// `x,y`, `forbidden`, or `no rule`.
 fn verdict(allowed: Option<bool>, components: &[&str]) -> String {
     match allowed {
         None => "no rule".to_owned(),
         Some(false) => "forbidden".to_owned(),
-        Some(true) => listed(components),
+        Some(true) => components.join(","),
     }
+}
+
+/// `g → u yes`, `g → g no`.
+fn laporte(parities: &str) -> String {
+    let allowed = if matches!(parities, "g-u" | "u-g") { "yes" } else { "no" };
+    format!("{} {allowed}", parities.replace('-', " → "))
 }
 
 fn answer(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
     let told = |entry: &TransitionEntry| {
-        let f = entry.electric_dipole.oscillator_strength.map_or(String::new(), |f| format!("  f ≈ {f:.3}"));
-        let pol = verdict(entry.electric_dipole.allowed, &entry.electric_dipole.polarisation);
-        format!("{}  {} eV  {}  {}{f}", arrow(entry), electronvolts(entry), product(entry), pol)
+        let f = entry.electric_dipole.oscillator_strength.map_or(String::new(), |f| format!(" · f ≈ {}", strength(f)));
+        let dipole = match entry.electric_dipole.allowed {
+            Some(true) => format!("allowed along {}", listed(&entry.electric_dipole.polarisation)),
+            other => verdict(other, &[]),
+        };
+        format!("{} · {} eV · {} · {dipole}{f}", arrow(entry), electronvolts(entry), product(entry))
     };
-    if let Some(entry) = entries.iter().find(|entry| entry.strongest) {
-        head(&mut out, "Strongest", &format!("{} (one-electron estimate)", told(entry)));
-    }
-    if let Some(entry) = entries.first() {
-        head(&mut out, "Lowest gap", &told(entry));
-    }
-    if let Some(entry) = entries.iter().find(|entry| entry.electric_dipole.allowed == Some(true)) {
-        head(&mut out, "First allowed", &told(entry));
+    let strongest = entries.iter().position(|entry| entry.strongest);
+    let first_allowed = entries.iter().position(|entry| entry.electric_dipole.allowed == Some(true));
+    let named = [("Strongest", strongest), ("First allowed", first_allowed), ("Lowest gap", Some(0))];
+    for (at, &(name, place)) in named.iter().enumerate() {
+        let Some(entry) = place.and_then(|place| entries.get(place)) else { continue };
+        if named[..at].iter().all(|(_, before)| *before != place) {
+            head(&mut out, name, &told(entry));
+        }
     }
     let allowed = entries.iter().filter(|entry| entry.electric_dipole.allowed == Some(true)).count();
     head(&mut out, "Pairs", &format!("{} listed, {allowed} allowed by electric dipole", entries.len()));
     if let Some(states) = entries.iter().find_map(|entry| entry.states.as_ref()) {
-        let ground: Vec<String> = states.ground.iter().map(|name| pretty(name)).collect();
-        head(&mut out, "Ground", &format!("{} from {}", ground.join(" + "), pretty(&states.ground_from)));
+        let ground: Vec<String> = states.ground.iter().map(|term| term_symbol(term)).collect();
+        let from =
+            if states.ground_from == "closed shell" { "closed shell".to_owned() } else { pretty(&states.ground_from) };
+        let rule = match (states.ground_from == "closed shell", states.ground_decided) {
+            (true, _) => "",
+            (_, true) => ", by highest spin",
+            (_, false) => ", one of these: highest spin leaves several",
+        };
+        head(&mut out, "Ground", &format!("{} ({from}{rule})", ground.join(", ")));
     } else {
         head(
             &mut out,
@@ -93,6 +114,19 @@ fn answer(entries: &[TransitionEntry]) -> String {
         );
     }
     out
+}
+
+/// `4A2g` → `⁴A2g`.
+fn term_symbol(term: &str) -> String {
+    let digits = term.bytes().take_while(u8::is_ascii_digit).count();
+    let raised = term[..digits].chars().map(|digit| match digit {
+        '0' => '⁰',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        digit => char::from_u32('⁰' as u32 + digit as u32 - '0' as u32).unwrap_or(digit),
+    });
+    raised.chain(pretty(&term[digits..]).chars()).collect()
 }
 
 /// Small strengths in powers of ten, zero as such.
@@ -122,13 +156,11 @@ fn rows(entries: &[TransitionEntry]) -> String {
         if centre { "Laporte" } else { "" },
         "",
     ]);
-    let mut note = 0;
+    let notes = notes(entries);
     for entry in entries {
-        let mut mark = if entry.strongest { "strongest" } else { "" }.to_owned();
-        if !entry.remarks.is_empty() {
-            note += 1;
-            let _ = write!(mark, "{}[{note}]", if mark.is_empty() { "" } else { " " });
-        }
+        let strongest = entry.strongest.then(|| "strongest".to_owned());
+        let numbers = entry.remarks.iter().filter_map(|remark| notes.iter().position(|note| *note == remark.as_str()));
+        let mark: Vec<String> = strongest.into_iter().chain(numbers.map(|note| format!("[{}]", note + 1))).collect();
         let f = |value: Option<f64>| value.map_or("—".to_owned(), strength);
         let magnetic: Vec<&str> = entry.magnetic_dipole.components.iter().map(|name| &name[1..]).collect();
         rows.add_row([
@@ -143,10 +175,10 @@ fn rows(entries: &[TransitionEntry]) -> String {
             verdict(entry.electric_dipole.allowed, &entry.electric_dipole.polarisation),
             f(entry.electric_dipole.oscillator_strength),
             f(entry.electric_dipole.oscillator_strength_velocity),
-            if magnetic.is_empty() { "—".to_owned() } else { format!("R {}", magnetic.join(",")) },
+            if magnetic.is_empty() { "—".to_owned() } else { magnetic.join(",") },
             if entry.two_photon.allowed == Some(true) { "yes" } else { "—" }.to_owned(),
-            entry.laporte.as_deref().map_or(String::new(), rule::laporte),
-            mark,
+            entry.laporte.as_deref().map_or(String::new(), laporte),
+            mark.join(" "),
         ]);
     }
     for column in [2, 5, 6] {
@@ -164,22 +196,34 @@ fn paragraph(out: &mut String, first: &str, text: &str) {
     }
 }
 
+/// Different remarks in order of appearance.
+fn notes(entries: &[TransitionEntry]) -> Vec<&str> {
+    let mut notes: Vec<&str> = Vec::new();
+    for remark in entries.iter().flat_map(|entry| &entry.remarks) {
+        if !notes.contains(&remark.as_str()) {
+            notes.push(remark);
+        }
+    }
+    notes
+}
+
 fn remarks(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
-    let with_remarks = entries.iter().filter(|entry| !entry.remarks.is_empty());
-    for (at, entry) in with_remarks.enumerate() {
+    for (at, note) in notes(entries).into_iter().enumerate() {
         if at == 0 {
             out.push_str("\nWhere rule and number need a word\n");
         }
-        paragraph(&mut out, &format!("[{}]", at + 1), &format!("{}: {}", arrow(entry), entry.remarks.join(". ")));
+        paragraph(&mut out, &format!("[{}]", at + 1), note);
     }
     out
 }
 
 /// ` at 1178, 3064 cm⁻¹` where the file holds modes.
 fn at_wavenumbers(modes: &[ModeReference]) -> String {
-    let numbers: Vec<String> =
+    let mut numbers: Vec<String> =
         modes.iter().filter_map(|mode| mode.wavenumber_per_cm).map(|number| format!("{number:.0}")).collect();
+    // Partners share a wavenumber.
+    numbers.dedup();
     if numbers.is_empty() { String::new() } else { format!(" at {} cm⁻¹", numbers.join(", ")) }
 }
 
@@ -219,12 +263,12 @@ fn vibronic(entries: &[TransitionEntry]) -> String {
 fn triplets(entries: &[TransitionEntry]) -> String {
     let mut out = String::new();
     let mut told: Vec<&str> = Vec::new();
-    for triplet in entries.iter().flat_map(|entry| &entry.triplets) {
+    for triplet in entries.iter().take(TRIPLETS_OF).flat_map(|entry| &entry.triplets) {
         if told.contains(&triplet.irrep.as_str()) {
             continue;
         }
         if told.is_empty() {
-            out.push_str("\nTriplets: sublevels, each mixing by spin–orbit coupling with singlets of its own irrep\n");
+            out.push_str("\nTriplets of the lowest pairs: sublevels, each mixing by spin–orbit coupling with singlets of its own irrep\n");
         }
         told.push(&triplet.irrep);
         let sublevels: Vec<String> = triplet
@@ -264,10 +308,14 @@ fn jahn_teller(document: &Document) -> String {
             .collect();
         let text = if entry.second_order_only {
             "none in first order; bending acts in second order (Renner–Teller)".to_owned()
+        } else if active.is_empty() {
+            "none that the molecule has".to_owned()
         } else {
             active.join("  ")
         };
-        paragraph(&mut out, &pretty(&entry.label), &format!("({}) {text}", entry.configuration));
+        let own = entry.configuration == transitions::OWN;
+        let label = if own { term_symbol(&entry.label) } else { pretty(&entry.label) };
+        paragraph(&mut out, &label, &format!("({}) {text}", entry.configuration));
     }
     out
 }

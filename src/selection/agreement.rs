@@ -10,6 +10,8 @@ use crate::labelling::{Labelled, SetLabel};
 const NOISE: f64 = 1e-4;
 /// An allowed pair of a smaller strength is weak.
 const WEAK: f64 = 1e-4;
+/// An oscillator strength above this in one form, with next to nothing in the other, is not settled by the basis.
+const FORMS_APART: f64 = 0.02;
 /// A set below this purity explains moments that symmetry forbids.
 const IMPURE: f64 = 0.9999;
 /// Nuclei farther off their group than this explain them too, bohr.
@@ -53,8 +55,10 @@ pub enum Finding {
         /// Why.
         causes: Vec<Cause>,
     },
-    /// Electric-dipole allowed, yet next to nothing: this strength.
+    /// Electric-dipole allowed, yet next to nothing in both forms: this strength in the length form.
     WeakThoughAllowed(f64),
+    /// Next to nothing in one form and not in the other: oscillator strengths in length and velocity form.
+    FormsDiffer(f64, f64),
     /// One of the sets lacks partners, so the sums are not those of a level.
     Incomplete,
 }
@@ -79,9 +83,14 @@ pub fn findings(labelled: &Labelled, from: &SetLabel, to: &SetLabel, allowed: &A
             found.push(Finding::Forbidden { operator, component, moment, causes: causes(labelled, from, to) });
         }
     }
-    let total: f64 = s.length.iter().sum();
-    if !allowed.electric_dipole.is_empty() && total < WEAK {
-        found.push(Finding::WeakThoughAllowed(total));
+    let (length, velocity): (f64, f64) = (s.length.iter().sum(), s.velocity.iter().sum());
+    if !allowed.electric_dipole.is_empty() && length.min(velocity) < WEAK {
+        let forms = (s.oscillator_length().unwrap_or(0.0), s.oscillator_velocity().unwrap_or(0.0));
+        if forms.0.max(forms.1) > FORMS_APART {
+            found.push(Finding::FormsDiffer(forms.0, forms.1));
+        } else if length < WEAK {
+            found.push(Finding::WeakThoughAllowed(length));
+        }
     }
     if !from.complete || !to.complete {
         found.push(Finding::Incomplete);

@@ -7,7 +7,6 @@ pub mod agreement;
 pub mod moments;
 pub mod pairs;
 pub mod rules;
-pub mod states;
 
 pub use moments::{Strengths, strengths};
 pub use pairs::{Choice, Pair, SelectError, Selector, choose};

@@ -242,7 +242,9 @@ impl End<'_> {
             Selector::Label(_, name) => {
                 let of_irrep = |set: &&SetLabel| set.irrep.is_some_and(|irrep| self.group.irreps()[irrep].name == name);
                 let n = self.spins.iter().map(|spin| spin.sets.iter().filter(of_irrep).count()).max().unwrap_or(0);
-                if n > 0 {
+                if n == 1 {
+                    "one set has that irrep, number 1".to_owned()
+                } else if n > 0 {
                     format!("{n} sets have that irrep, numbered from 1")
                 } else {
                     let names: Vec<String> = self.group.irreps().iter().map(|irrep| irrep.name.symbol()).collect();

@@ -164,6 +164,22 @@ impl Operators {
         irreps
     }
 
+    /// Irreps of the three sublevels of a triplet whose orbital part has irrep `orbital`, with multiplicities.
+    ///
+    /// Spin–orbit coupling is totally symmetric, so a sublevel mixes with singlets of the same irrep.
+    ///
+    /// # Errors
+    /// As [`PointGroup::product`].
+    pub fn triplet_sublevels(&self, group: &PointGroup, orbital: usize) -> Result<Vec<(usize, usize)>, GroupError> {
+        let mut counts = vec![0; group.irreps().len()];
+        for rotation in self.rotations() {
+            for (irrep, n) in group.product(orbital, rotation)? {
+                counts[irrep] += n;
+            }
+        }
+        Ok(counts.into_iter().enumerate().filter(|(_, n)| *n > 0).collect())
+    }
+
     /// Vibrations that make a state of irrep `state` reachable by an electric dipole from the totally symmetric one.
     ///
     /// Irreps whose product leaves those kept of a continuous group are left out: no vibration has them.

@@ -188,7 +188,8 @@ fn example(group: &PointGroup) -> String {
     if group.name() == GroupName::K {
         return "d^2".to_owned();
     }
-    let largest = group.irreps().iter().max_by_key(|irrep| irrep.dimension);
+    // The first of the largest.
+    let largest = group.irreps().iter().rev().max_by_key(|irrep| irrep.dimension);
     largest.map_or(String::new(), |irrep| format!("{}^2", irrep.name.symbol()))
 }
 
@@ -196,18 +197,20 @@ fn example(group: &PointGroup) -> String {
 fn normalised(text: &str) -> String {
     const SUPERSCRIPTS: [char; 10] = ['⁰', '¹', '²', '³', '⁴', '⁵', '⁶', '⁷', '⁸', '⁹'];
     let mut plain = String::new();
+    let mut raised = false;
     for c in text.trim().replace("**", "^").chars() {
-        match SUPERSCRIPTS.iter().zip('0'..).find(|(known, _)| **known == c) {
-            Some((_, digit)) => {
-                if !plain.ends_with(|c: char| c.is_ascii_digit()) || !plain.contains('^') || plain.ends_with(' ') {
-                    plain.push('^');
-                }
-                plain.push(digit);
+        let superscript = SUPERSCRIPTS.iter().zip('0'..).find(|(known, _)| **known == c);
+        if let Some((_, digit)) = superscript {
+            if !raised {
+                plain.push('^');
             }
-            None if matches!(c, '(' | ')' | '[' | ']' | ',' | ';' | '·' | '\t') => plain.push(' '),
-            None if matches!(c, '{' | '}') => {}
-            None => plain.push(c),
+            plain.push(digit);
+        } else if matches!(c, '(' | ')' | '[' | ']' | ',' | ';' | '·' | '\t') {
+            plain.push(' ');
+        } else if !matches!(c, '{' | '}') {
+            plain.push(c);
         }
+        raised = superscript.is_some();
     }
     plain
 }
@@ -300,4 +303,43 @@ fn number(digits: &[char]) -> Option<u32> {
         return None;
     }
     digits.iter().collect::<String>().parse().ok()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn read(group: &str, text: &str) -> String {
+        let group = PointGroup::standard(group.parse().unwrap()).unwrap();
+        Configuration::parse(&group, text).map_or_else(|error| error.to_string(), |found| found.to_string())
+    }
+
+    #[test]
+    fn symbols_and_electrons_are_told_apart_by_the_group() {
+        for (group, text, expected) in [
+            ("Oh", "t2g3eg1", "t2g^3 eg^1"),
+            ("Oh", "t2g eg", "t2g^1 eg^1"),
+            ("Oh", "t2g^3eg^0", "t2g^3 eg^0"),
+            ("C5v", "a12e13", "a1^2 e1^3"),
+            ("C3v", "1e2 2e2", "1e^2 2e^2"),
+            ("D26", "a1^1 e1²", "a1^1 e1^2"),
+            ("D26", "e12^2", "e12^2"),
+            ("D3h", "e'1e''3", "e'^1 e''^3"),
+            ("Dinfh", "1πu⁴ 1πg²", "1pi_u^4 1pi_g^2"),
+            ("Cinfv", "σ1 π3", "sigma^1 pi^3"),
+            ("Kh", "4f13 5d1", "4f^13 5d^1"),
+            ("Kh", "1s2 2s2 2p²", "1s^2 2s^2 2p^2"),
+            ("Ih", "hu10t1u2", "hu^10 t1u^2"),
+        ] {
+            assert_eq!(read(group, text), expected, "{group} {text}");
+        }
+    }
+
+    #[test]
+    fn what_is_left_over_is_pointed_at() {
+        assert!(read("Oh", "t2g^3 ex^1").contains("cannot read `ex^1`"));
+        assert!(read("Oh", "t2g^").contains("cannot read"));
+        assert!(read("Kh", "4f7 5q1").contains("cannot read `5q1`"));
+        assert!(read("D26", "e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12e12!").contains("cannot read"));
+    }
 }

@@ -8,16 +8,14 @@ use super::spin_orbit::level_in_field;
 use super::terms::{Term, terms};
 use crate::group::irrep_name::Parity;
 use crate::group::products::Decomposition;
-use crate::group::{DoubleGroup, GroupName, IrrepName, PointGroup};
+use crate::group::{DoubleGroup, IrrepName, PointGroup};
 
 /// lⁿ in a group.
 #[derive(Debug, Clone)]
 pub struct Correlation {
-    /// The full rotation group, to which the free ion's terms point.
-    pub atom: PointGroup,
     /// The free ion's configuration.
     pub free: Configuration,
-    /// Terms of the free ion, each with the irreps it becomes.
+    /// Terms of the free ion, in irreps of the atom's group, each with the irreps it becomes.
     pub weak_field: Vec<(Term, Decomposition)>,
     /// The orbitals of the shell in the group.
     pub orbitals: Decomposition,
@@ -25,26 +23,29 @@ pub struct Correlation {
     pub strong_field: Vec<(Configuration, Vec<Term>)>,
 }
 
-/// n electrons of a shell of angular momentum l, from free ion to strong field.
+/// n electrons of a shell of angular momentum l, from free ion to strong field; `atom` is the full rotation group.
 ///
 /// # Errors
 /// [`StatesError::Overfull`] for more than 2(2l + 1) electrons, [`StatesError::BeyondTable`] for shells beyond f.
 pub fn correlation(
+    atom: &PointGroup,
     group: &PointGroup,
     double: &DoubleGroup,
     l: u8,
     electrons: u32,
 ) -> Result<Correlation, StatesError> {
-    let atom = PointGroup::standard(GroupName::K)?;
     let shell = atom.orbital_irrep(usize::from(l)).unwrap_or(atom.irreps().len() - 1);
-    let free = Configuration::new(&atom, &[(shell, None, electrons)])?;
+    let free = Configuration::new(atom, &[(shell, None, electrons)])?;
     let mut weak_field = Vec::new();
-    for term in terms(&atom, &free)? {
-        weak_field.push((term, term_in_field(&atom, double, &term)?));
+    for term in terms(atom, &free)? {
+        weak_field.push((term, term_in_field(atom, double, &term)?));
     }
     let orbitals = group.decompose(&group.shell_characters(usize::from(l)))?;
     let mut shells: Vec<(usize, Option<u32>)> = Vec::new();
-    for &(irrep, count) in &orbitals {
+    // Largest sets first: t2g before eg.
+    let mut by_size = orbitals.clone();
+    by_size.sort_by_key(|&(irrep, _)| std::cmp::Reverse(group.irreps()[irrep].dimension));
+    for &(irrep, count) in &by_size {
         let count = u32::try_from(count).unwrap_or(1);
         shells.extend((1..=count).map(|number| (irrep, (count > 1).then_some(number))));
     }
@@ -54,13 +55,17 @@ pub fn correlation(
         .collect();
     let mut strong_field = Vec::new();
     for filling in fillings(&places, electrons) {
-        let occupied: Vec<(usize, Option<u32>, u32)> =
-            shells.iter().zip(filling).map(|(&(irrep, number), electrons)| (irrep, number, electrons)).collect();
+        let occupied: Vec<(usize, Option<u32>, u32)> = shells
+            .iter()
+            .zip(filling)
+            .map(|(&(irrep, number), electrons)| (irrep, number, electrons))
+            .filter(|(_, _, electrons)| *electrons > 0)
+            .collect();
         let configuration = Configuration::new(group, &occupied)?;
         let list = terms(group, &configuration)?;
         strong_field.push((configuration, list));
     }
-    Ok(Correlation { atom, free, weak_field, orbitals, strong_field })
+    Ok(Correlation { free, weak_field, orbitals, strong_field })
 }
 
 /// The irreps that the orbital part of a free ion's term becomes.

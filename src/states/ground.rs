@@ -11,6 +11,8 @@ use crate::group::{GroupName, IrrepName, PointGroup};
 pub enum Certainty {
     /// Every shell is full or empty: there is no other term.
     Closed,
+    /// The configuration has one term.
+    Only,
     /// One open shell, and the rules leave one term.
     Rules,
     /// The rules leave one term, but were found for one open shell, and there are several.
@@ -49,6 +51,7 @@ pub fn ground(group: &PointGroup, configuration: &Configuration, terms: &[Term])
     let alone = left.len() == 1 && left.iter().all(|&at| terms[at].count == 1);
     let certainty = match (open, alone) {
         (0, _) => Certainty::Closed,
+        (_, true) if terms.len() == 1 => Certainty::Only,
         (_, false) => Certainty::Undecided,
         (1, true) => Certainty::Rules,
         (_, true) => Certainty::SeveralShells,

@@ -2,6 +2,21 @@
 //!
 //! Reading order: `configuration`, `terms`, `ground`, `spin_orbit`, `transitions`, `jahn_teller`, `correlation`. Everything is worked
 //! out from characters of a single or double group; no term list is typed in. Not here: orbitals of a molecule, energies.
+//!
+//! ```
+//! use orbsieve::group::PointGroup;
+//! use orbsieve::states::{Configuration, ground, terms};
+//!
+//! # fn main() -> Result<(), orbsieve::states::StatesError> {
+//! let group = PointGroup::standard("Oh".parse()?)?;
+//! let configuration = Configuration::parse(&group, "t2g^2")?;
+//! let list = terms(&group, &configuration)?;
+//! let symbols: Vec<String> = list.iter().map(|term| term.symbol(&group)).collect();
+//! assert_eq!(symbols, ["3T1g", "1A1g", "1Eg", "1T2g"]);
+//! assert_eq!(ground(&group, &configuration, &list).terms, [0]);
+//! # Ok(())
+//! # }
+//! ```
 
 pub mod configuration;
 pub mod correlation;

@@ -7,7 +7,7 @@ use super::terms::Term;
 use crate::group::double_name::half;
 use crate::group::irrep_name::{IrrepName, Parity};
 use crate::group::products::Decomposition;
-use crate::group::{DoubleGroup, PointGroup};
+use crate::group::{DoubleGroup, DoubleName, PointGroup};
 
 /// The components of one term: irreps of the double group with multiplicities.
 ///
@@ -18,11 +18,11 @@ use crate::group::{DoubleGroup, PointGroup};
 pub fn components(group: &PointGroup, double: &DoubleGroup, term: &Term) -> Result<Decomposition, StatesError> {
     let orbital = match group.irreps()[term.irrep].name {
         IrrepName::Atomic { l, .. } => Some((2 * u16::from(l), "J")),
-        IrrepName::Linear { m, .. } => Some((2 * u16::from(m), "Omega")),
+        IrrepName::Linear { m, .. } => Some((2 * u16::from(m), "Ω")),
         IrrepName::Mulliken { .. } => None,
     };
     if let Some((twice, quantity)) = orbital {
-        check_reach(twice + term.twice_spin(), quantity, || term.symbol(group))?;
+        check_reach(double, twice + term.twice_spin(), quantity, || term.symbol(group))?;
     }
     let spin = double.spin_characters(term.twice_spin(), Parity::Even);
     let orbital = &double.irreps()[term.irrep].characters;
@@ -36,15 +36,24 @@ pub fn components(group: &PointGroup, double: &DoubleGroup, term: &Term) -> Resu
 /// # Errors
 /// [`StatesError::BeyondTable`] as [`components`].
 pub fn level_in_field(double: &DoubleGroup, twice_j: u16, parity: Parity) -> Result<Decomposition, StatesError> {
-    if double.name().is_continuous() {
-        check_reach(twice_j, "J", || format!("J = {}", half(twice_j)))?;
-    }
+    check_reach(double, twice_j, "J", || format!("J = {}", half(twice_j)))?;
     Ok(double.decompose(&double.spin_characters(twice_j, parity))?)
 }
 
-fn check_reach(twice: u16, quantity: &'static str, what: impl Fn() -> String) -> Result<(), StatesError> {
-    // Whole numbers are kept half a unit less far.
-    let limit = crate::group::double::HIGHEST_TWICE_J - (twice + 1) % 2;
+fn check_reach(
+    double: &DoubleGroup,
+    twice: u16,
+    quantity: &'static str,
+    what: impl Fn() -> String,
+) -> Result<(), StatesError> {
+    let Some(highest) = double.highest_twice_j() else { return Ok(()) };
+    // Whole numbers are kept as far as the orbital irreps are, half a unit less for linear molecules.
+    let kept = double.irreps()[..double.n_single()].iter().filter_map(|irrep| match irrep.name {
+        DoubleName::Single(IrrepName::Atomic { l, .. }) => Some(2 * u16::from(l)),
+        DoubleName::Single(IrrepName::Linear { m, .. }) => Some(2 * u16::from(m)),
+        _ => None,
+    });
+    let limit = if twice.is_multiple_of(2) { kept.max().unwrap_or(0) } else { highest };
     if twice <= limit {
         return Ok(());
     }

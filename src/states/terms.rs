@@ -127,7 +127,7 @@ fn check_reach(group: &PointGroup, configuration: &Configuration) -> Result<(), 
     }
     Err(StatesError::BeyondTable {
         configuration: configuration.to_string(),
-        quantity: if group.name() == GroupName::K { "L" } else { "Lambda" },
+        quantity: if group.name() == GroupName::K { "L" } else { "Λ" },
         reach: reach.to_string(),
         limit: limit.to_string(),
     })

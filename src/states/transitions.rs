@@ -45,10 +45,11 @@ impl Transition {
     }
 }
 
-/// Terms with their spin–orbit components.
-struct Split<'a> {
+/// A kind of term with its spin–orbit components, and its place in its list.
+struct Side<'a> {
+    place: usize,
     term: &'a Term,
-    components: Decomposition,
+    components: &'a Decomposition,
 }
 
 /// Rules between every pair of two lists; for one list against itself each pair once, and a kind with itself where there are several of it.
@@ -72,29 +73,22 @@ pub fn transitions(
     let split = |terms: &'_ [Term]| -> Result<Vec<Decomposition>, StatesError> {
         terms.iter().map(|term| spin_orbit::components(group, double, term)).collect()
     };
-    let (left, right) = (split(from)?, split(to.unwrap_or(from))?);
     let right_terms = to.unwrap_or(from);
+    let (left, right) = (split(from)?, split(right_terms)?);
     let mut found = Vec::new();
-    for (i, (a, of_a)) in from.iter().zip(left).enumerate() {
-        let a = Split { term: a, components: of_a };
-        for (j, (b, of_b)) in right_terms.iter().zip(&right).enumerate() {
-            if to.is_none() && (j < i || (j == i && b.count == 1)) {
+    for (i, (term, components)) in from.iter().zip(&left).enumerate() {
+        let a = Side { place: i, term, components };
+        for (j, (term, components)) in right_terms.iter().zip(&right).enumerate() {
+            if to.is_none() && (j < i || (j == i && term.count == 1)) {
                 continue;
             }
-            let b = Split { term: b, components: of_b.clone() };
-            found.push(between(group, double, &operators, (i, &a), (j, &b)));
+            found.push(between(group, double, &operators, &a, &Side { place: j, term, components }));
         }
     }
     Ok(found)
 }
 
-fn between(
-    group: &PointGroup,
-    double: &DoubleGroup,
-    operators: &Operators,
-    (from, a): (usize, &Split<'_>),
-    (to, b): (usize, &Split<'_>),
-) -> Transition {
+fn between(group: &PointGroup, double: &DoubleGroup, operators: &Operators, a: &Side<'_>, b: &Side<'_>) -> Transition {
     let orbital = |irrep: usize| group.irreps()[irrep].characters.as_slice();
     let allowed =
         |operator: &&usize| group.mean(&[orbital(a.term.irrep), orbital(b.term.irrep), orbital(**operator)]) > WHOLE;
@@ -107,10 +101,10 @@ fn between(
     let electric_dipole: Vec<usize> = operators.dipole.iter().filter(allowed).copied().collect();
     let spin_allowed = a.term.multiplicity == b.term.multiplicity;
     let steps = a.term.multiplicity.abs_diff(b.term.multiplicity);
-    let same_kind = steps % 2 == 0;
+    let same_kind = steps.is_multiple_of(2);
     Transition {
-        from,
-        to,
+        from: a.place,
+        to: b.place,
         spin_allowed,
         magnetic_dipole: operators.rotation.iter().filter(allowed).copied().collect(),
         quadrupole: operators.quadrupole.iter().filter(allowed).copied().collect(),

@@ -5,7 +5,7 @@
 use super::convention::Settled;
 use super::product;
 use crate::model::Molecule;
-use faer::{Mat, Side};
+use faer::{Mat, Par, Side};
 use ndarray::Array2;
 
 /// |S^½C|² of each spin: n_orbitals × n_functions, every row sums to one for a normalised orbital.
@@ -18,6 +18,8 @@ use ndarray::Array2;
 #[must_use]
 pub fn lowdin(settled: &Settled, molecule: &Molecule) -> Option<Vec<Array2<f64>>> {
     let n = settled.basis.n_functions();
+    // The library splits its sums by this degree, not by the threads there are: the same bytes on any machine.
+    faer::set_global_parallelism(Par::rayon(2));
     let matrix = Mat::from_fn(n, n, |i, j| settled.overlap[(i, j)]);
     let eigen = matrix.self_adjoint_eigen(Side::Lower).ok()?;
     let (vectors, values) = (eigen.U(), eigen.S());

@@ -49,6 +49,8 @@ PYSCF = {
     "water_g_cart": ("H2O", "RHF/by hand", "C2v", "s to g, cartesian"),
     "ammonia_631gs": ("NH3", "RHF/6-31G*", "C3v", "e sets"),
     "methane_631gs": ("CH4", "RHF/6-31G*", "Td", "e and t2 sets"),
+    "benzene_with_modes_sto3g": ("C6H6", "RHF/STO-3G, relaxed", "D6h", "orbitals and modes of one geometry"),
+    "formaldehyde_with_modes_631gs": ("CH2O", "RHF/6-31G*, relaxed", "C2v", "orbitals and modes of one geometry"),
     "benzene_sto3g": ("C6H6", "RHF/STO-3G", "D6h", "the pi set a2u e1g e2u b2g"),
     "benzene_631g": ("C6H6", "RHF/6-31G", "D6h", "the same in a larger set"),
     "ethene_631gs": ("C2H4", "RHF/6-31G*", "D2h", "axis choice"),
