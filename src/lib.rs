@@ -13,6 +13,7 @@ pub mod states;
 pub mod wavefunction;
 pub mod labelling;
 pub mod audit;
+pub mod purify;
 pub mod selection;
 pub mod modes;
 pub mod report;

@@ -46,15 +46,20 @@ fn weights_add_up(name: &str, labelled: &Labelled) {
                     scale * terms.sum::<f64>()
                 })
                 .collect();
+            // What is listed adds up as well.
+            let listed: f64 = spin.orbitals[i].weights.iter().map(|entry| entry.1).sum();
+            let turned = matches!(labelled.operations, Operations::Turned(_));
+            assert!(!turned || (listed - row[0]).abs() < 1e-9, "{name} {i}: {listed}");
             // The norm of the orbital is 1 to the digits of the file.
             assert_abs_diff_eq!(weights.iter().sum::<f64>(), row[0], epsilon = 1e-9);
             assert_abs_diff_eq!(row[0], 1.0, epsilon = 1e-8);
-            assert!(weights.iter().all(|weight| *weight > -1e-6), "{name} {i}: {weights:?}");
+            // A permutation of nuclei that are a hair off is no unitary operation.
+            assert!(weights.iter().all(|weight| *weight > -1e-5), "{name} {i}: {weights:?}");
         }
     }
 }
 
-/// The set of five d orbitals as (label, mean purity, share of metal d not looked at) by name.
+/// The smallest purity in a set.
 fn purity_of(labelled: &Labelled, spin: usize, label: &str) -> f64 {
     let at = set_labels(labelled, spin).iter().position(|other| other == label);
     let at = at.unwrap_or_else(|| panic!("no set {label} among {:?}", set_labels(labelled, spin)));

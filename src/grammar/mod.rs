@@ -10,6 +10,7 @@ pub mod numbers;
 pub mod orbitals;
 pub mod sections;
 pub mod vibrations;
+pub mod write;
 pub mod xyz;
 
 use crate::diagnostic::{Diagnostic, Severity, Span};

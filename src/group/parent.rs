@@ -13,6 +13,8 @@ use nalgebra::{Matrix3, Point3, Rotation3, Vector3};
 
 /// A site farther than this (bohr) from all places of its like counts as if it were this far: it belongs to no fit.
 const CAP: f64 = 1.5;
+/// Sites nearer to the centre (bohr) have no direction.
+const CLOSE: f64 = 0.3;
 /// Directions of the sites looked at, at most.
 const MAX_DIRECTIONS: usize = 32;
 /// Sites near the centre by which orientations are sifted.
@@ -31,7 +33,7 @@ pub struct ParentFit {
     pub axes: Matrix3<f64>,
     /// The centroid of the sites.
     pub centre: Point3<f64>,
-    /// Root mean square distance of turned sites from the nearest of their kind, capped, bohr.
+    /// Root mean square distance of turned sites from the nearest of their kind, capped, inner sites foremost, bohr.
     pub misfit: f64,
 }
 
@@ -56,7 +58,7 @@ pub fn fit_parent(sites: &[Site], group: &PointGroup, operations: &[Matrix3<f64>
     let elements: Vec<Matrix3<f64>> = group.elements().iter().map(|element| *element.operation.matrix()).collect();
     let fit = Fit { arrangement: &arrangement, elements: &elements };
     let axes = fit.best(operations);
-    let all: Vec<usize> = (0..arrangement.n_sites()).collect();
+    let all: Vec<usize> = (0..arrangement.n_sites()).filter(|&site| arrangement.radii[site] > CLOSE).collect();
     Ok(ParentFit { axes, centre: arrangement.centroid, misfit: fit.misfit(&axes, &all, &elements).sqrt() })
 }
 
@@ -66,25 +68,29 @@ struct Fit<'a> {
 }
 
 impl Fit<'_> {
-    /// Mean square distance of turned sites from their like.
+    /// Mean square distance of turned sites from their like; inner sites, which make the surroundings of the centre, count
+    /// more: by r⁻⁴, of which r⁻² makes distances angles.
     fn misfit(&self, axes: &Matrix3<f64>, sites: &[usize], elements: &[Matrix3<f64>]) -> f64 {
         let turned: Vec<Matrix3<f64>> = elements.iter().map(|element| axes.transpose() * element * axes).collect();
         let arrangement = self.arrangement;
-        let mut sum = 0.0;
+        let (mut sum, mut whole) = (0.0, 0.0);
         for &site in sites {
+            let weight = arrangement.radii[site].max(CLOSE).powi(-4);
+            whole += weight * turned.len() as f64;
             let (kind, place) = (arrangement.kinds[site], arrangement.positions[site]);
             for matrix in &turned {
                 let distance = arrangement.nearest(kind, &(matrix * place), CAP, None).map_or(CAP, |found| found.1);
-                sum += distance * distance;
+                sum += weight * distance * distance;
             }
         }
-        sum / (sites.len().max(1) * turned.len().max(1)) as f64
+        if whole > 0.0 { sum / whole } else { 0.0 }
     }
 
     fn best(&self, operations: &[Matrix3<f64>]) -> Matrix3<f64> {
-        let all: Vec<usize> = (0..self.arrangement.n_sites()).collect();
-        let mut inner = all.clone();
-        inner.retain(|&site| self.arrangement.radii[site] > 0.3);
+        // A site near the centre stays there whatever the orientation.
+        let mut inner: Vec<usize> = (0..self.arrangement.n_sites()).collect();
+        inner.retain(|&site| self.arrangement.radii[site] > CLOSE);
+        let all = inner.clone();
         inner.sort_by(|&a, &b| self.arrangement.radii[a].total_cmp(&self.arrangement.radii[b]));
         inner.truncate(SIFTING_SITES);
         // A few elements suffice to sift: every third, so that several axes are among them.

@@ -59,7 +59,7 @@ pub struct OrbitalLabel {
     pub partner: Option<usize>,
     /// Largest weight of one irrep.
     pub purity: f64,
-    /// Weights above 1e-6, largest first.
+    /// Weights above 1e-11, largest first.
     pub weights: Vec<(usize, f64)>,
     /// Irrep in the abelian subgroup, where one reaches the purity asked for.
     pub abelian: Option<usize>,
@@ -120,8 +120,8 @@ pub struct Labelled {
     pub spins: Vec<SpinLabels>,
 }
 
-/// Weights that are worth keeping.
-const WEIGHT_FLOOR: f64 = 1e-6;
+/// Weights that are worth keeping: those left out must not show in the sum, 1 to 1e-9.
+const WEIGHT_FLOOR: f64 = 1e-11;
 
 /// Why a file gets no labels.
 #[derive(Debug, thiserror::Error)]
