@@ -5,7 +5,7 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// Lowest first; each may use those before it.
-const LAYERS: [&str; 12] = [
+const LAYERS: [&str; 13] = [
     "diagnostic",
     "grammar",
     "model",
@@ -14,6 +14,7 @@ const LAYERS: [&str; 12] = [
     "wavefunction",
     "labelling",
     "audit",
+    "purify",
     "selection",
     "modes",
     "report",

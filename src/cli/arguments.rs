@@ -27,6 +27,8 @@ pub enum Verb {
     States(States),
     /// Does the wavefunction keep the symmetry of its nuclei? A verdict; exit status 1 when it is broken
     Audit(Audit),
+    /// Write symmetry-adapted orbitals: projected, orthonormal, partners aligned, in the file's own dialect
+    Purify(Purify),
     /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
     Transitions(Transitions),
     /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
@@ -199,6 +201,25 @@ pub struct Audit {
     /// Show every operation and orbital
     #[arg(long)]
     pub all: bool,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// `purify`. Its `--output` takes the new file; the report goes to standard output, or beside without `--output`.
+#[derive(Debug, Args)]
+pub struct Purify {
+    /// Molden-format file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Move the nuclei onto their symmetric places too
+    #[arg(long)]
+    pub geometry: bool,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
     /// Which group
     #[command(flatten)]
     pub placing: Placing,

@@ -8,6 +8,7 @@ mod input;
 mod modes;
 mod output;
 mod placing;
+mod purify;
 mod states;
 mod transitions;
 mod verbs;
@@ -74,6 +75,9 @@ pub enum CliError {
         /// The reason.
         source: LabelError,
     },
+    /// The numbers do not allow what was asked for.
+    #[error("{0}")]
+    Refused(String),
     /// An argument that only its meaning shows to be wrong.
     #[error("{0}")]
     Usage(String),
@@ -83,7 +87,7 @@ impl CliError {
     fn status(&self) -> Status {
         match self {
             Self::Usage(_) => Status::Usage,
-            Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
+            Self::Refused(_) | Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
             Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
             Self::Write { source, .. } if source.kind() == io::ErrorKind::BrokenPipe => Status::Done,
             Self::Read { .. } | Self::Write { .. } | Self::Input { .. } | Self::Label { .. } => Status::BadInput,
@@ -113,6 +117,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Modes(arguments) => modes::modes(arguments, out, errors),
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
+        Verb::Purify(arguments) => purify::purify(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

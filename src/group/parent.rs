@@ -5,7 +5,7 @@
 use super::arrangement::Arrangement;
 use super::detect::{DetectError, checked};
 use super::error::GroupError;
-use super::fit::nearest_orthogonal;
+use super::fit::{intertwiner, nearest_orthogonal};
 use super::operation::axis_angle;
 use super::point_group::PointGroup;
 use super::symmetry::Site;
@@ -104,7 +104,23 @@ impl Fit<'_> {
         sifted.truncate(REFINED);
         let refined = sifted.into_iter().map(|(_, axes)| self.refined(axes, &all));
         let best = refined.min_by(|a, b| ((a.0 * 1e9).round()).total_cmp(&((b.0 * 1e9).round())));
-        best.map_or_else(Matrix3::identity, |(_, axes)| axes)
+        best.map_or_else(Matrix3::identity, |(misfit, axes)| self.along(operations, axes, misfit, &all))
+    }
+
+    /// The axes turned so that operations of the sites are operations of the group, where that costs next to nothing.
+    fn along(&self, operations: &[Matrix3<f64>], axes: Matrix3<f64>, misfit: f64, sites: &[usize]) -> Matrix3<f64> {
+        /// Operations nearer to each other than this are meant to be one.
+        const NEAR: f64 = 0.2;
+        /// The mean square misfit may grow by this factor.
+        const DEARER: f64 = 1.1;
+        let nearest = |operation: &Matrix3<f64>| {
+            let seen = axes * operation * axes.transpose();
+            let distances = self.elements.iter().map(|element| ((element - seen).amax(), *element));
+            distances.min_by(|a, b| a.0.total_cmp(&b.0)).filter(|(distance, _)| *distance < NEAR).map(|(_, near)| near)
+        };
+        let Some(standard) = operations.iter().map(nearest).collect::<Option<Vec<_>>>() else { return axes };
+        let turned = intertwiner(&axes, operations, &standard).unwrap_or(axes);
+        if self.misfit(&turned, sites, self.elements) <= DEARER * misfit + 1e-12 { turned } else { axes }
     }
 
     /// Axes of operations, then directions to sites and to the middles of sites of a kind, each line once.

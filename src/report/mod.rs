@@ -13,6 +13,7 @@ pub mod double_table;
 pub mod states;
 pub mod states_text;
 pub mod placement;
+pub mod purify;
 pub mod rule;
 pub mod table;
 pub mod text;
