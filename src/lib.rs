@@ -12,6 +12,7 @@ pub mod group;
 pub mod states;
 pub mod wavefunction;
 pub mod labelling;
+pub mod audit;
 pub mod selection;
 pub mod modes;
 pub mod report;

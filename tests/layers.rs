@@ -13,6 +13,7 @@ const LAYERS: [&str; 11] = [
     "states",
     "wavefunction",
     "labelling",
+    "audit",
     "selection",
     "modes",
     "report",

@@ -1,5 +1,6 @@
 //! What a person types, as types.
 
+use crate::audit::Limits;
 use crate::selection::Selector;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
@@ -24,6 +25,8 @@ pub enum Verb {
     Table(Table),
     /// Terms of an electron configuration, spin–orbit components, rules between states, Jahn–Teller modes
     States(States),
+    /// Does the wavefunction keep the symmetry of its nuclei? A verdict; exit status 1 when it is broken
+    Audit(Audit),
     /// Selection rules between sets of orbitals, with computed moments and the vibrations that help
     Transitions(Transitions),
     /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
@@ -58,6 +61,20 @@ pub enum Format {
     Csv,
 }
 
+/// Which group the labels are in.
+#[derive(Debug, Args)]
+pub struct Placing {
+    /// Label in this point group, a parent or a subgroup of that of the nuclei
+    #[arg(long, value_name = "SCHOENFLIES")]
+    pub group: Option<String>,
+    /// Only these atoms define the symmetry: elements, numbers, ranges, `shell 1 around Fe`, such as "Co,N"
+    #[arg(long, value_name = "ATOMS")]
+    pub frame: Option<String>,
+    /// Of several orientations of a subgroup, take this one
+    #[arg(long, value_name = "N", default_value_t = 1)]
+    pub orientation: usize,
+}
+
 /// `label`.
 #[derive(Debug, Args)]
 pub struct Label {
@@ -84,6 +101,9 @@ pub struct Label {
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
@@ -153,6 +173,40 @@ pub struct States {
     pub common: Common,
 }
 
+/// `audit`.
+#[derive(Debug, Args)]
+pub struct Audit {
+    /// Molden-format file, plain or gzip; `-` for standard input
+    pub file: PathBuf,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// An operation counts as kept when it carries no more electrons than this out of place
+    #[arg(long, value_name = "ELECTRONS", default_value_t = Limits::STANDARD.carried, value_parser = positive)]
+    pub carried: f64,
+    /// Smallest weight of one irrep in an orbital that belongs to it
+    #[arg(long, value_name = "WEIGHT", default_value_t = Limits::STANDARD.pure, value_parser = fraction)]
+    pub pure: f64,
+    /// Corresponding orbitals that overlap less than this are a magnetic pair
+    #[arg(long, value_name = "OVERLAP", default_value_t = Limits::STANDARD.magnetic, value_parser = fraction)]
+    pub magnetic: f64,
+    /// Energies this near count as one, hartree
+    #[arg(long, value_name = "HARTREE", default_value_t = 1e-3, value_parser = positive)]
+    pub degeneracy: f64,
+    /// Exit status 1 for mixed orbitals too
+    #[arg(long)]
+    pub strict: bool,
+    /// Show every operation and orbital
+    #[arg(long)]
+    pub all: bool,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
 /// `transitions`.
 #[derive(Debug, Args)]
 pub struct Transitions {
@@ -176,6 +230,9 @@ pub struct Transitions {
     /// Distance a nucleus may lie from its symmetric place, Å
     #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
     pub tolerance: f64,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,

@@ -3,9 +3,11 @@
 //! Only this layer touches files, the terminal and threads.
 
 pub mod arguments;
+mod audit;
 mod input;
 mod modes;
 mod output;
+mod placing;
 mod states;
 mod transitions;
 mod verbs;
@@ -23,6 +25,8 @@ use thiserror::Error;
 pub enum Status {
     /// The result stands.
     Done = 0,
+    /// `audit` found broken symmetry.
+    Broken = 1,
     /// Wrong usage.
     Usage = 2,
     /// The input cannot be read or is inconsistent.
@@ -80,6 +84,7 @@ impl CliError {
         match self {
             Self::Usage(_) => Status::Usage,
             Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
+            Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
             Self::Write { source, .. } if source.kind() == io::ErrorKind::BrokenPipe => Status::Done,
             Self::Read { .. } | Self::Write { .. } | Self::Input { .. } | Self::Label { .. } => Status::BadInput,
         }
@@ -107,6 +112,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Table(table) => verbs::table(table, out),
         Verb::Modes(arguments) => modes::modes(arguments, out, errors),
         Verb::States(arguments) => states::states(arguments, out, errors),
+        Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

@@ -3,6 +3,7 @@
 use super::arguments::{Format, Modes};
 use super::verbs::{json, read, rows};
 use super::{CliError, Status, input, output, use_threads};
+use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{LabelError, sites};
 use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
 use crate::modes::{ModeThresholds, assign, assignment};
@@ -25,7 +26,8 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
         .map_or_else(|| molecule.atoms.clone(), |vibrations| assignment::atoms_of_modes(&molecule.atoms, vibrations));
     // Basis functions play no part in how nuclei move.
     let nuclei = Molecule { atoms, shells: Vec::new(), orbital_sets: Vec::new(), ..molecule.clone() };
-    let (detection, symmetry) = sites::place(&nuclei, tolerance_bohr).map_err(failed)?;
+    let Placement { detection, symmetry, .. } =
+        placement::place(&nuclei, tolerance_bohr, &Choice::default()).map_err(failed)?;
     let thresholds = ModeThresholds::STANDARD;
     let assigned =
         molecule.vibrations.as_ref().map(|vibrations| assign(&nuclei.atoms, vibrations, &symmetry, &thresholds));

@@ -1,6 +1,7 @@
 //! The verb `transitions`: label the orbitals, pair the sets asked for, deliver.
 
 use super::arguments::{Format, Transitions};
+use super::placing::choice;
 use super::verbs::{json, read, rows};
 use super::{CliError, Status, input, output, use_threads};
 use crate::labelling::{self, Thresholds};
@@ -18,7 +19,8 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
     let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
-    let labelled = labelling::label(&mut molecule, &thresholds)
+    let placed = choice(&arguments.placing, &molecule)?;
+    let labelled = labelling::label_in(&mut molecule, &thresholds, &placed)
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let choice = Choice {
         from: arguments.from.clone(),

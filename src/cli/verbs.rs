@@ -1,9 +1,11 @@
 //! One function a verb: open, call the layers below, deliver.
 
 use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::placing::choice;
 use super::{CliError, Status, draw, input, output, use_threads};
 use crate::diagnostic::Diagnostic;
-use crate::labelling::{self, LabelError, Thresholds, sites};
+use crate::labelling::placement::{self, Choice, Placement};
+use crate::labelling::{self, LabelError, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
@@ -49,7 +51,8 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
         ..Thresholds::STANDARD
     };
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
-    let labelled = labelling::label(&mut molecule, &thresholds).map_err(failed)?;
+    let choice = choice(&arguments.placing, &molecule)?;
+    let labelled = labelling::label_in(&mut molecule, &thresholds, &choice).map_err(failed)?;
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
     let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     let name = path.display().to_string();
@@ -72,8 +75,8 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
     let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
     let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
-    let (detection, symmetry) =
-        sites::place(&molecule, tolerance_bohr).map_err(|source| CliError::Label { path: path.clone(), source })?;
+    let Placement { detection, symmetry, .. } = placement::place(&molecule, tolerance_bohr, &Choice::default())
+        .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let document =
         build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
     let printed = print(&document, &arguments.common, || text::geometry_text(&document))?;

@@ -114,6 +114,36 @@ impl Arrangement {
     }
 }
 
+/// Looks up the site of a kind that is nearest to a place.
+#[derive(Debug, Clone)]
+pub struct NearestSites(Arrangement);
+
+impl NearestSites {
+    /// `sites` are finite, as those of a group that was found.
+    #[must_use]
+    pub fn of(sites: &[Site]) -> Self {
+        Self(Arrangement::of(sites))
+    }
+
+    /// Index and distance (bohr) of the nearest site of this kind; the first and infinity when there is none.
+    #[must_use]
+    pub fn of_kind(&self, kind: u32, place: &Point3<f64>) -> (usize, f64) {
+        let place = place - self.0.centroid;
+        // Beyond this sphere there is no site.
+        let farthest = place.norm() + self.0.extent() + 1.0;
+        let mut radius = 0.5;
+        loop {
+            if let Some(found) = self.0.nearest(kind, &place, radius, None) {
+                return found;
+            }
+            if radius > farthest {
+                return (0, f64::INFINITY);
+            }
+            radius *= 4.0;
+        }
+    }
+}
+
 /// A box around all sites, cut into about as many cubes as there are sites.
 #[derive(Debug, Clone)]
 struct Cells {

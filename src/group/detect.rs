@@ -156,7 +156,7 @@ pub fn detect(sites: &[Site], settings: &DetectSettings) -> Result<Detection, De
     Ok(detection(groups, search.limit))
 }
 
-fn checked(sites: &[Site]) -> Result<Arrangement, DetectError> {
+pub(super) fn checked(sites: &[Site]) -> Result<Arrangement, DetectError> {
     const FARTHEST: f64 = 1e6;
     if sites.is_empty() {
         return Err(DetectError::NoSites);

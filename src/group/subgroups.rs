@@ -152,6 +152,17 @@ impl PointGroup {
             Some(group) => group.clone(),
             None => known.entry(name).or_insert(PointGroup::standard(name)?).clone(),
         };
+        self.embed(group, members, axes)
+    }
+
+    /// The subgroup of these elements with its standard axes where they are wanted.
+    ///
+    /// `axes` takes coordinates of this group's frame to those of the subgroup's.
+    ///
+    /// # Errors
+    /// [`GroupError::NotClosed`] when the elements are not those of `group` in these axes.
+    pub fn embed(&self, group: PointGroup, members: &[usize], axes: Matrix3<f64>) -> Result<Subgroup, GroupError> {
+        let operations = self.matrices_of(members);
         let embedding = group.elements().iter().map(|element| {
             let here = axes.transpose() * element.operation.matrix() * axes;
             let at = members.iter().zip(&operations).find(|(_, operation)| same(operation, &here));

@@ -7,15 +7,19 @@ mod atom;
 pub mod composition;
 pub mod configuration;
 pub mod d_block;
+pub mod descent;
+pub mod frame_atoms;
 pub mod frontier;
+pub mod placement;
 mod sets;
 pub mod sites;
 mod weights;
 
 use crate::group::{Detection, GroupName, Symmetry};
 use crate::model::{Molecule, Spin};
-use crate::wavefunction::{Settled, Turning};
+use crate::wavefunction::{Operations, Rows, Settled};
 use ndarray::{Array2, ArrayView1, Axis};
+use placement::{Choice, Derivation, Placement};
 
 /// Every limit that decides a label, passed explicitly and told back in the report.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -106,10 +110,12 @@ pub struct Labelled {
     pub detection: Detection,
     /// The group that the labels are in, placed on the nuclei.
     pub symmetry: Symmetry,
+    /// How the group of the labels came about.
+    pub derivation: Derivation,
     /// Basis, overlap, products and the convention found; coefficients are canonical.
     pub settled: Settled,
     /// Operations on orbitals, one an element of the group.
-    pub turnings: Vec<Turning>,
+    pub operations: Operations,
     /// Alpha, then beta where there is one.
     pub spins: Vec<SpinLabels>,
 }
@@ -132,6 +138,19 @@ pub enum LabelError {
     /// No convention makes the orbitals orthonormal.
     #[error(transparent)]
     Convention(#[from] crate::wavefunction::ConventionError),
+    /// The atoms of a frame are all at one place.
+    #[error("the atoms of the frame are at one place: any group fits them; name one with --group, or add atoms")]
+    SphericalFrame,
+    /// A subgroup has fewer orientations.
+    #[error("{group} has {} orientations here, asked for number {asked}: {}", orientations.len(), orientations.join("; "))]
+    Orientation {
+        /// From 1.
+        asked: usize,
+        /// The subgroup.
+        group: GroupName,
+        /// In words.
+        orientations: Vec<String>,
+    },
     /// An operation carries a shell onto an atom without its like.
     #[error(transparent)]
     Turning(#[from] crate::wavefunction::TurningError),
@@ -145,19 +164,56 @@ pub enum LabelError {
 /// [`LabelError`] when nuclei coincide, when no convention makes the orbitals orthonormal, or when an
 /// operation carries an atom onto one with other functions.
 pub fn label(molecule: &mut Molecule, thresholds: &Thresholds) -> Result<Labelled, LabelError> {
+    label_in(molecule, thresholds, &Choice::default())
+}
+
+/// As [`label`], in a group of one's choice: a subgroup, a parent, that of some atoms.
+///
+/// # Errors
+/// As [`label`], and when the group asked for cannot be laid over the atoms.
+pub fn label_in(molecule: &mut Molecule, thresholds: &Thresholds, choice: &Choice) -> Result<Labelled, LabelError> {
     if molecule.shells.is_empty() {
         return Err(LabelError::Nothing("basis functions ([GTO])"));
     }
     if molecule.orbital_sets.iter().all(|set| set.orbitals.is_empty()) {
         return Err(LabelError::Nothing("orbitals ([MO])"));
     }
-    let (detection, symmetry) = sites::place(molecule, thresholds.tolerance_bohr)?;
+    let placement = placement::place(molecule, thresholds.tolerance_bohr, choice)?;
     let settled = crate::wavefunction::settle(molecule, thresholds.orthonormality)?;
-    let turnings = atom::turnings(&settled.basis, &symmetry)?;
-    let spins = (0..molecule.orbital_sets.len())
-        .map(|spin_idx| label_spin(molecule, spin_idx, &settled, &symmetry, &turnings, thresholds))
-        .collect();
-    Ok(Labelled { detection, symmetry, settled, turnings, spins })
+    let operations = placement::operations(&settled, &placement)?;
+    let Placement { detection, symmetry, derivation } = placement;
+    let spins = label_spins(molecule, &settled, &symmetry, &operations, thresholds);
+    Ok(Labelled { detection, symmetry, derivation, settled, operations, spins })
+}
+
+fn label_spins(
+    molecule: &Molecule,
+    settled: &Settled,
+    symmetry: &Symmetry,
+    operations: &Operations,
+    thresholds: &Thresholds,
+) -> Vec<SpinLabels> {
+    (0..molecule.orbital_sets.len())
+        .map(|spin_idx| label_spin(molecule, spin_idx, settled, symmetry, operations, thresholds))
+        .collect()
+}
+
+/// The same orbitals with the same group in other axes.
+///
+/// # Errors
+/// [`LabelError::Turning`] when an operation carries an atom onto one with other functions.
+pub fn relabelled(
+    molecule: &Molecule,
+    labelled: Labelled,
+    symmetry: Symmetry,
+    thresholds: &Thresholds,
+) -> Result<Labelled, LabelError> {
+    let Labelled { detection, derivation, settled, .. } = labelled;
+    let placement = Placement { detection, symmetry, derivation };
+    let operations = placement::operations(&settled, &placement)?;
+    let Placement { detection, symmetry, derivation } = placement;
+    let spins = label_spins(molecule, &settled, &symmetry, &operations, thresholds);
+    Ok(Labelled { detection, symmetry, derivation, settled, operations, spins })
 }
 
 fn label_spin(
@@ -165,13 +221,14 @@ fn label_spin(
     spin_idx: usize,
     settled: &Settled,
     symmetry: &Symmetry,
-    turnings: &[Turning],
+    operations: &Operations,
     thresholds: &Thresholds,
 ) -> SpinLabels {
     let set = &molecule.orbital_sets[spin_idx];
     let (coefficients, products) = (set.coefficients.view(), settled.products[spin_idx].view());
     let group = &symmetry.group;
-    let expectations = weights::expectations(turnings, coefficients, products);
+    let rows = Rows { coefficients, products };
+    let expectations = operations.expectations(rows);
     let (all_weights, abelian_weights) = if group.name() == GroupName::K {
         (atom::weights(&settled.basis, group, coefficients, products), None)
     } else {
@@ -196,8 +253,7 @@ fn label_spin(
             OrbitalLabel { irrep, partner, purity, weights, abelian, set: 0 }
         })
         .collect();
-    let connected =
-        sets::Connected { orbitals: &set.orbitals, coefficients, products, turnings, expectations: &expectations };
+    let connected = sets::Connected { orbitals: &set.orbitals, rows, operations, expectations: &expectations };
     let sets = sets::join(&connected, group, &orbitals, set.spin, thresholds);
     for (set_idx, set) in sets.iter().enumerate() {
         for &orbital in &set.orbitals {

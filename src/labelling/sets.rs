@@ -3,12 +3,11 @@
 //! Here: linking orbitals into sets, completeness, running numbers.
 //! Not here: weights (`labelling::weights`), anything about occupation (`labelling::frontier`).
 
-use super::weights;
 use super::{OrbitalLabel, SetLabel, Thresholds};
 use crate::group::PointGroup;
 use crate::model::{Orbital, Spin};
-use crate::wavefunction::Turning;
-use ndarray::{Array2, ArrayView2};
+use crate::wavefunction::{Operations, Rows};
+use ndarray::Array2;
 use rayon::prelude::*;
 use std::collections::BTreeMap;
 
@@ -16,12 +15,10 @@ use std::collections::BTreeMap;
 pub struct Connected<'a> {
     /// The orbitals' energies and occupations.
     pub orbitals: &'a [Orbital],
-    /// n_orbitals × n_functions.
-    pub coefficients: ArrayView2<'a, f64>,
-    /// Rows of S·C, same shape.
-    pub products: ArrayView2<'a, f64>,
-    /// One an operation, or a fixed sample of the full rotation group.
-    pub turnings: &'a [Turning],
+    /// Their coefficients.
+    pub rows: Rows<'a>,
+    /// One an element of the group, or a fixed sample of the full rotation group.
+    pub operations: &'a Operations,
     /// ⟨i|R|i⟩ over the same operations.
     pub expectations: &'a Array2<f64>,
 }
@@ -68,9 +65,19 @@ pub fn join(
 ) -> Vec<SetLabel> {
     let order = energy_order(connected.orbitals);
     let tell = energies_tell(connected.orbitals);
-    let links: Vec<(usize, usize, f64)> = (0..order.len())
+    let candidates: Vec<(usize, Vec<usize>)> = (0..order.len())
         .into_par_iter()
-        .flat_map_iter(|at| links_from(connected, group, labels, thresholds, &order, at, tell))
+        .map(|at| (order[at], candidates(connected, group, labels, thresholds, &order[at..], tell)))
+        .collect();
+    let strengths = connected.operations.connections(connected.rows, &candidates);
+    let links: Vec<(usize, usize, f64)> = candidates
+        .iter()
+        .zip(&strengths)
+        .flat_map(|((ket, bras), strengths)| bras.iter().zip(strengths).map(|(&i, &strength)| (*ket, i, strength)))
+        .filter(|&(ket, i, strength)| match (labels[ket].irrep, labels[i].irrep) {
+            (Some(a), Some(_)) => strength >= LINK_SAME_IRREP / group.irreps()[a].dimension as f64,
+            _ => strength >= LINK_MIXED,
+        })
         .collect();
     let mut parents: Vec<usize> = (0..order.len()).collect();
     for &(i, j, _) in &links {
@@ -99,19 +106,19 @@ pub fn join(
     )
 }
 
-fn links_from(
+/// Orbitals after the first of `order` that may belong to its set.
+fn candidates(
     connected: &Connected<'_>,
     group: &PointGroup,
     labels: &[OrbitalLabel],
     thresholds: &Thresholds,
     order: &[usize],
-    at: usize,
     energies_tell: bool,
-) -> Vec<(usize, usize, f64)> {
-    let ket = order[at];
+) -> Vec<usize> {
+    let Some((&ket, later)) = order.split_first() else { return Vec::new() };
     let energy = |i: usize| connected.orbitals[i].energy.unwrap_or(0.0);
     let apart = |i: usize| if energies_tell { (energy(i) - energy(ket)).abs() } else { 0.0 };
-    let candidates: Vec<usize> = order[at + 1..]
+    later
         .iter()
         .copied()
         .enumerate()
@@ -123,18 +130,6 @@ fn links_from(
             (Some(a), Some(b)) => a == b && group.irreps()[a].dimension > 1,
             _ => apart(i) <= thresholds.degeneracy_hartree && shared_weight(&labels[ket], &labels[i]) > LINK_MIXED,
         })
-        .collect();
-    if candidates.is_empty() {
-        return Vec::new();
-    }
-    weights::connections(connected.turnings, connected.coefficients, connected.products, ket, &candidates)
-        .into_iter()
-        .zip(&candidates)
-        .filter(|&(strength, &i)| match (labels[ket].irrep, labels[i].irrep) {
-            (Some(a), Some(_)) => strength >= LINK_SAME_IRREP / group.irreps()[a].dimension as f64,
-            _ => strength >= LINK_MIXED,
-        })
-        .map(|(strength, &i)| (ket, i, strength))
         .collect()
 }
 

@@ -2,8 +2,7 @@
 //!
 //! Not here: the search for operations (`group::detect`).
 
-use super::LabelError;
-use crate::group::{self, DetectSettings, Detection, Site, Symmetry};
+use crate::group::Site;
 use crate::model::{Molecule, elements};
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -58,18 +57,4 @@ pub fn bonds(molecule: &Molecule) -> Vec<(usize, usize)> {
     }
     bonds.sort_unstable();
     bonds
-}
-
-/// Groups are listed up to this displacement of a nucleus, bohr (0.3 Å).
-const LADDER_BOHR: f64 = 0.3 / crate::model::ANGSTROM_PER_BOHR;
-
-/// Finds the groups near the nuclei and places the highest one within the tolerance.
-///
-/// # Errors
-/// [`LabelError::Geometry`] when there is no atom or two like atoms coincide.
-pub fn place(molecule: &Molecule, tolerance_bohr: f64) -> Result<(Detection, Symmetry), LabelError> {
-    let sites = sites(molecule);
-    let detection = group::detect(&sites, &DetectSettings { limit_bohr: LADDER_BOHR.max(tolerance_bohr) })?;
-    let symmetry = detection.place(detection.at(tolerance_bohr), &sites, Some(&bonds(molecule)))?;
-    Ok((detection, symmetry))
 }

@@ -1,41 +1,13 @@
 //! How much of each irrep, and of each partner of it, is in an orbital.
 //!
-//! Here: ⟨i|R|i⟩ for every orbital and operation, weights by projection, and the mean connection of
-//! two orbitals. Not here: what counts as pure or as one set (`labelling::sets`).
+//! Here: weights by projection from ⟨i|R|i⟩. Not here: those values (`wavefunction::operations`), what counts as pure or
+//! as one set (`labelling::sets`).
 //!
 //! The sums run over operations, not classes: the expectation values of an orbital that breaks the
 //! symmetry are no class function.
 
 use crate::group::PointGroup;
-use crate::wavefunction::Turning;
-use ndarray::{Array1, Array2, ArrayView1, ArrayView2, Axis, parallel::prelude::*};
-
-/// ⟨i|R|i⟩ of every orbital i under every operation R.
-///
-/// # Shapes
-/// `coefficients` and `products` (the rows of S·C) are n_orbitals × n_functions, `turnings` holds one
-/// entry an operation: the result is n_orbitals × n_operations.
-/// # Holds
-/// The column of the identity is 1 for normalised orbitals.
-#[must_use]
-pub fn expectations(
-    turnings: &[Turning],
-    coefficients: ArrayView2<'_, f64>,
-    products: ArrayView2<'_, f64>,
-) -> Array2<f64> {
-    let mut values = Array2::zeros((coefficients.nrows(), turnings.len()));
-    values
-        .axis_iter_mut(Axis(0))
-        .into_par_iter()
-        .zip(coefficients.axis_iter(Axis(0)))
-        .zip(products.axis_iter(Axis(0)))
-        .for_each(|((mut row, c), sc)| {
-            for (value, turning) in row.iter_mut().zip(turnings) {
-                *value = turning.expectation(c, sc);
-            }
-        });
-    values
-}
+use ndarray::{Array2, ArrayView1};
 
 /// The matrix that turns expectation values into weights: n_operations × n_irreps.
 ///
@@ -69,30 +41,4 @@ pub fn partner_weights(group: &PointGroup, irrep_idx: usize, expectations: Array
         scale * irrep.matrices.iter().zip(expectations).map(|(matrix, value)| matrix[(k, k)] * value).sum::<f64>()
     });
     Some(weights.collect())
-}
-
-/// Mean over the operations of ⟨i|R|j⟩² for each i in `bras`.
-///
-/// # Holds
-/// For two partners of one irrep of dimension d it is 1/d, however the partners are turned (Schur's
-/// lemma); for orbitals of different irreps, or of different sets of one irrep, it is 0.
-#[must_use]
-pub fn connections(
-    turnings: &[Turning],
-    coefficients: ArrayView2<'_, f64>,
-    products: ArrayView2<'_, f64>,
-    ket: usize,
-    bras: &[usize],
-) -> Vec<f64> {
-    let ket = coefficients.row(ket);
-    let mut turned = Array1::zeros(ket.len());
-    let mut sums = vec![0.0; bras.len()];
-    for turning in turnings {
-        turning.apply(ket, turned.view_mut());
-        for (sum, &bra) in sums.iter_mut().zip(bras) {
-            *sum += products.row(bra).dot(&turned).powi(2);
-        }
-    }
-    let scale = 1.0 / turnings.len() as f64;
-    sums.into_iter().map(|sum| sum * scale).collect()
 }

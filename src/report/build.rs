@@ -4,6 +4,7 @@ use super::document::{
     AbelianEntry, BasisSummary, DBlockEntry, DLevelEntry, Document, FrontierEntry, Geometry, OrbitalEntry, RungEntry,
     SCHEMA, SetEntry, SettingEntry, ShareEntry, Source, SpinFrontier, ThresholdEntry, Weight, WindowEntry,
 };
+use super::placement::placement_entry;
 use super::transitions::{self, Context, TransitionEntry};
 use crate::group::{Detection, GroupName, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
@@ -166,6 +167,7 @@ pub fn geometry(molecule: &Molecule, detection: &Detection, symmetry: &Symmetry,
                 deviation_rms_angstrom: angstrom(rung.deviation.rms),
             })
             .collect(),
+        placement: None,
         warnings: Vec::new(),
     }
 }
@@ -188,10 +190,12 @@ pub fn label_document(
         cautions.push("populations were not computed for this size of basis; ask for them with --character".to_owned());
     }
     let sets = builder.sets(thresholds);
+    let mut geometry = geometry(molecule, &labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr);
+    geometry.placement = placement_entry(molecule, labelled);
     Document {
         schema: SCHEMA,
         source: source(file, molecule),
-        geometry: geometry(molecule, &labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr),
+        geometry,
         basis: Some(builder.basis()),
         orbitals: Some(builder.orbitals()),
         frontier: Some(builder.frontier()),
@@ -200,6 +204,7 @@ pub fn label_document(
         sets: Some(sets),
         transitions: frontier_transitions(molecule, labelled),
         jahn_teller: Vec::new(),
+        audit: None,
         thresholds: Some(ThresholdEntry {
             purity: thresholds.purity,
             partner: thresholds.partner,
@@ -265,6 +270,7 @@ pub fn geometry_document(
         active_window: Vec::new(),
         transitions: None,
         jahn_teller: Vec::new(),
+        audit: None,
         thresholds: None,
         cautions: Vec::new(),
     }

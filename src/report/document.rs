@@ -41,6 +41,9 @@ pub struct Document {
     /// Degenerate sets and the vibrations that split them when part-filled.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub jahn_teller: Vec<super::transitions::JahnTellerEntry>,
+    /// Whether the wavefunction keeps the symmetry, where it was asked.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub audit: Option<super::audit::AuditEntry>,
     /// Limits that decided the labels.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub thresholds: Option<ThresholdEntry>,
@@ -94,6 +97,9 @@ pub struct Geometry {
     pub other_settings: Vec<SettingEntry>,
     /// Groups near the nuclei, lowest first.
     pub ladder: Vec<RungEntry>,
+    /// How the group came about, where it is not simply that of the nuclei.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub placement: Option<super::placement::PlacementEntry>,
     /// What to know before trusting the group.
     pub warnings: Vec<String>,
 }

@@ -2,6 +2,8 @@
 //!
 //! Only this layer knows JSON keys, electronvolts and ångströms.
 
+pub mod audit;
+pub mod audit_text;
 pub mod build;
 pub mod csv;
 pub mod document;
@@ -10,6 +12,7 @@ pub mod modes_text;
 pub mod double_table;
 pub mod states;
 pub mod states_text;
+pub mod placement;
 pub mod rule;
 pub mod table;
 pub mod text;

@@ -3,6 +3,7 @@
 //! Not here: any number that the document does not hold.
 
 use super::document::{DLevelEntry, Document, Geometry, SetEntry, ShareEntry, Source, SpinFrontier};
+use super::placement::placement_lines;
 use super::unicode::pretty;
 use crate::group::IrrepName;
 use crate::model::Spin;
@@ -102,6 +103,9 @@ pub fn geometry_head(geometry: &Geometry) -> String {
             format!("{:.6}", geometry.tolerance_angstrom).trim_end_matches('0').trim_end_matches('.')
         ),
     );
+    if let Some(placement) = &geometry.placement {
+        placement_lines(&mut out, placement, &geometry.point_group, &geometry.nuclear_group);
+    }
     head(&mut out, "Axes", &geometry.axes_convention);
     for setting in &geometry.other_settings {
         let swaps: Vec<String> = setting

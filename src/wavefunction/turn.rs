@@ -88,7 +88,7 @@ impl Turning {
 }
 
 /// One matrix for each kind of shell, 2l + (1 when pure); empty for kinds that the basis has not.
-fn kinds_of_matrices(basis: &Basis, matrix: &Matrix3<f64>) -> Vec<DMatrix<f64>> {
+pub(super) fn kinds_of_matrices(basis: &Basis, matrix: &Matrix3<f64>) -> Vec<DMatrix<f64>> {
     let used = |kind: usize| basis.shells().iter().any(|shell| 2 * shell.l + usize::from(shell.pure) == kind);
     (0..2 * (L_MAX + 1))
         .map(|kind| if used(kind) { shell_rotation(kind / 2, kind % 2 == 1, matrix) } else { DMatrix::zeros(0, 0) })
