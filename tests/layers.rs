@@ -5,7 +5,7 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// Lowest first; each may use those before it.
-const LAYERS: [&str; 11] = [
+const LAYERS: [&str; 12] = [
     "diagnostic",
     "grammar",
     "model",
