@@ -10,7 +10,7 @@ mod support;
 
 use nalgebra::Matrix3;
 use orbsieve::group::{IrrepName, PointGroup, Symmetry};
-use orbsieve::labelling::sites;
+use orbsieve::labelling::placement::{self, Choice};
 use orbsieve::model::{self, Molecule};
 use orbsieve::modes;
 use orbsieve::selection::Operators;
@@ -195,7 +195,7 @@ fn sublevels_of_triplets() {
 }
 
 fn place(molecule: &Molecule) -> Symmetry {
-    sites::place(molecule, 0.02).unwrap().1
+    placement::place(molecule, 0.02, &Choice::default()).unwrap().symmetry
 }
 
 fn placed(name: &str) -> (Molecule, Symmetry) {
