@@ -89,29 +89,24 @@ fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64
     halves
 }
 
-/// One direction: overlap, moment, second moment and derivative of the ket, degree by degree.
+/// One direction of a pair of primitives: overlaps degree by degree, from which the other integrals follow.
 struct Direction {
     overlap: [[f64; W]; N],
-    moment: [[f64; N]; N],
-    second: [[f64; N]; N],
-    derivative: [[f64; N]; N],
+    /// The ket's centre less the origin.
+    from_origin: f64,
+    /// Exponent of the ket.
+    beta: f64,
 }
 
 impl Direction {
-    /// `from_origin` is the ket's centre less the origin.
-    fn new(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64, beta: f64, from_origin: f64) -> Self {
-        let overlap = one_axis::<W>(la, lb + 2, from_a, from_b, half);
-        let mut direction = Self { overlap, moment: [[0.0; N]; N], second: [[0.0; N]; N], derivative: [[0.0; N]; N] };
-        for (i, row) in overlap.iter().enumerate().take(la + 1) {
-            for j in 0..=lb {
-                // x − O = (x − B) + (B − O).
-                direction.moment[i][j] = row[j + 1] + from_origin * row[j];
-                direction.second[i][j] = row[j + 2] + from_origin * (2.0 * row[j + 1] + from_origin * row[j]);
-                let lowered = if j > 0 { j as f64 * row[j - 1] } else { 0.0 };
-                direction.derivative[i][j] = lowered - 2.0 * beta * row[j + 1];
-            }
-        }
-        direction
+    /// Overlap, moment, second moment and derivative of the ket for degrees i and j.
+    fn integrals(&self, i: usize, j: usize) -> [f64; 4] {
+        let (row, o) = (&self.overlap[i], self.from_origin);
+        // x − O = (x − B) + (B − O).
+        let moment = row[j + 1] + o * row[j];
+        let second = row[j + 2] + o * (2.0 * row[j + 1] + o * row[j]);
+        let lowered = if j > 0 { j as f64 * row[j - 1] } else { 0.0 };
+        [row[j], moment, second, lowered - 2.0 * self.beta * row[j + 1]]
     }
 }
 
@@ -127,9 +122,10 @@ fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origi
             }
             any = true;
         }
-        let directions: [Direction; 3] = std::array::from_fn(|axis| {
-            let (from_a, from_b) = (pair.from_a[axis], pair.from_b[axis]);
-            Direction::new(a.l, b.l, from_a, from_b, pair.half, pair.beta, from_origin[axis])
+        let directions: [Direction; 3] = std::array::from_fn(|axis| Direction {
+            overlap: one_axis::<W>(a.l, b.l + 2, pair.from_a[axis], pair.from_b[axis], pair.half),
+            from_origin: from_origin[axis],
+            beta: pair.beta,
         });
         let mut at = 0;
         for bra in bras {
@@ -147,10 +143,9 @@ fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origi
 
 /// All operators between two monomials, in the order of [`Moments`].
 fn one_pair(directions: &[Direction; 3], bra: &[usize; 3], ket: &[usize; 3]) -> [f64; N_OPERATORS] {
-    let overlap: [f64; 3] = std::array::from_fn(|k| directions[k].overlap[bra[k]][ket[k]]);
-    let moment: [f64; 3] = std::array::from_fn(|k| directions[k].moment[bra[k]][ket[k]]);
-    let second: [f64; 3] = std::array::from_fn(|k| directions[k].second[bra[k]][ket[k]]);
-    let derivative: [f64; 3] = std::array::from_fn(|k| directions[k].derivative[bra[k]][ket[k]]);
+    let [x, y, z] = std::array::from_fn(|axis| directions[axis].integrals(bra[axis], ket[axis]));
+    let part = |which: usize| [x[which], y[which], z[which]];
+    let (overlap, moment, second, derivative) = (part(0), part(1), part(2), part(3));
     let others = |k: usize| overlap[(k + 1) % 3] * overlap[(k + 2) % 3];
     let mut values = [0.0; N_OPERATORS];
     for k in 0..3 {
