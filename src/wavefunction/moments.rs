@@ -60,6 +60,8 @@ pub fn moments(basis: &Basis, origin: &Point3<f64>, bra: ArrayView2<'_, f64>, ke
 /// ⟨μ|O|j⟩ of all functions μ: for each operator n_functions × n_ket.
 fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64>) -> Vec<Array2<f64>> {
     let mut halves: Vec<Array2<f64>> = vec![Array2::zeros((basis.n_functions(), ket.nrows())); N_OPERATORS];
+    // One row a function, so that sums run along memory.
+    let columns = ket.t().as_standard_layout().into_owned();
     // One piece of every operator's matrix a shell: rows are written by one thread each.
     let mut pieces: Vec<Vec<ArrayViewMut2<'_, f64>>> = basis.shells().iter().map(|_| Vec::new()).collect();
     for half in &mut halves {
@@ -82,7 +84,12 @@ fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64
             }
             for (block, piece) in blocks.iter_mut().zip(&mut pieces) {
                 block.store(a, b, strip.view_mut());
-                ndarray::linalg::general_mat_mul(1.0, &strip, &ket.slice(s![.., b.range()]).t(), 1.0, piece);
+                // By hand: a library's product costs more to call than these few rows take.
+                for (strip_row, mut row) in strip.outer_iter().zip(piece.outer_iter_mut()) {
+                    for (value, column) in strip_row.iter().zip(columns.slice(s![b.range(), ..]).outer_iter()) {
+                        row.scaled_add(*value, &column);
+                    }
+                }
             }
         }
     });
