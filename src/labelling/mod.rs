@@ -11,7 +11,7 @@ pub mod descent;
 pub mod frame_atoms;
 pub mod frontier;
 pub mod placement;
-mod sets;
+pub mod sets;
 pub mod sites;
 mod weights;
 

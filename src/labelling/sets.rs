@@ -169,8 +169,34 @@ fn describe(
     let complete = irrep.is_some()
         && orbitals.len() == degeneracy
         && spread <= thresholds.degeneracy_hartree
-        && orbitals.iter().all(|&i| kept[i] >= CLOSED);
+        // Of an orbital that is pure to w, the operations can keep no more than w² in sight.
+        && orbitals.iter().all(|&i| kept[i] >= CLOSED * labels[i].purity.powi(2));
     SetLabel { spin, irrep, number: 0, orbitals, degeneracy, energy, spread, electrons, complete }
+}
+
+/// Weights of a set's orbitals may miss whole sets of partners together by this much.
+const WHOLE_SETS: f64 = 0.02;
+
+/// The irreps that the orbitals of a set without one make together, (irrep, how often), where they make whole ones:
+/// partners of several irreps at one energy, turned among themselves.
+#[must_use]
+pub fn content(group: &PointGroup, labels: &[OrbitalLabel], set: &SetLabel) -> Option<Vec<(usize, usize)>> {
+    let mut sums = vec![0.0; group.irreps().len()];
+    for (irrep, weight) in set.orbitals.iter().flat_map(|&i| &labels[i].weights) {
+        sums[*irrep] += weight;
+    }
+    let mut content = Vec::new();
+    for (irrep, sum) in sums.into_iter().enumerate() {
+        let times = sum / group.irreps()[irrep].dimension as f64;
+        if (times - times.round()).abs() > WHOLE_SETS {
+            return None;
+        }
+        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "rounded, not negative")]
+        if times > 0.5 {
+            content.push((irrep, times.round() as usize));
+        }
+    }
+    Some(content)
 }
 
 /// Counts the sets within each irrep, from 1, in the order given.

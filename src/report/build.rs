@@ -8,7 +8,9 @@ use super::placement::placement_entry;
 use super::transitions::{self, Context, TransitionEntry};
 use crate::group::{Detection, GroupName, IrrepName, PointGroup, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
+use crate::labelling::descent::sum_of_irreps;
 use crate::labelling::frontier::{self, Configuration};
+use crate::labelling::sets::content;
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
 use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
 use crate::selection::{self, Choice, SelectError};
@@ -398,6 +400,8 @@ impl Builder<'_> {
                     spin: spin.spin,
                     irrep: set.irrep.map(|irrep| self.group.irreps()[irrep].name.to_string()),
                     label: set_label(self.group, set),
+                    content: if set.irrep.is_none() { content(self.group, &spin.orbitals, set) } else { None }
+                        .map(|sum| sum_of_irreps(self.group, &sum)),
                     orbitals: set.orbitals.iter().map(|i| i + 1).collect(),
                     abelian_irreps: set.irrep.and_then(&descended),
                     degeneracy: set.degeneracy,

@@ -208,6 +208,9 @@ pub struct SetEntry {
     pub irrep: Option<String>,
     /// Running number and lower-case symbol; null without an irrep.
     pub label: Option<String>,
+    /// Without an irrep: those that the orbitals make together, turned among themselves at one energy.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub content: Option<String>,
     /// Orbitals by index from 1.
     pub orbitals: Vec<usize>,
     /// What the irrep becomes in the abelian subgroup, such as `B2g + B3g`; null without an irrep, or for an atom.

@@ -328,9 +328,11 @@ fn set_table(
 /// What is unusual about a set.
 fn remark(set: &SetEntry) -> String {
     let mut parts = Vec::new();
-    if set.irrep.is_none() {
+    if let Some(content) = &set.content {
+        parts.push(format!("{} turned among themselves", pretty(content)));
+    } else if set.irrep.is_none() {
         parts.push("no irrep reaches the purity limit".to_owned());
-    } else if !set.complete {
+    } else if !set.complete && set.orbitals.len() < set.degeneracy {
         parts.push(format!("{} of {} partners at one energy", set.orbitals.len(), set.degeneracy));
     }
     if set.irrep.is_some() && set.purity < PURE_ENOUGH {
