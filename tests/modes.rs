@@ -6,7 +6,7 @@ mod support;
 
 use nalgebra::{Rotation3, Vector3};
 use orbsieve::group::Symmetry;
-use orbsieve::labelling::sites;
+use orbsieve::labelling::placement::{self, Choice};
 use orbsieve::model::{Molecule, Vibrations, masses};
 use orbsieve::modes::assignment::{Weighting, atoms_of_modes, differences};
 use orbsieve::modes::{Assignment, Kind, ModeThresholds, assign, motion};
@@ -18,7 +18,7 @@ fn placed(mut molecule: Molecule) -> (Molecule, Symmetry) {
     molecule.atoms = atoms_of_modes(&molecule.atoms, vibrations);
     molecule.shells.clear();
     molecule.orbital_sets.clear();
-    let symmetry = sites::place(&molecule, 0.02).unwrap().1;
+    let symmetry = placement::place(&molecule, 0.02, &Choice::default()).unwrap().symmetry;
     (molecule, symmetry)
 }
 
@@ -120,7 +120,7 @@ fn turning_the_molecule_does_not_change_irreps() {
         for atom in &mut molecule.atoms {
             atom.position = turn * atom.position + Vector3::new(1.0, -2.0, 0.5);
         }
-        let symmetry = sites::place(&molecule, 0.02).unwrap().1;
+        let symmetry = placement::place(&molecule, 0.02, &Choice::default()).unwrap().symmetry;
         assert_eq!(irreps(&assigned(&molecule, &symmetry), &symmetry), before, "{name}");
     }
 }

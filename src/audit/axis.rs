@@ -43,7 +43,7 @@ pub fn adapted(
     let turn = Rotation3::from_axis_angle(&Vector3::z_axis(), -angle).into_inner();
     let mut symmetry = labelled.symmetry.clone();
     symmetry.frame.axes = turn * symmetry.frame.axes;
-    symmetry.frame.convention = "z: along the molecule; x: in the plane that the density keeps best".to_owned();
+    "z: along the molecule; x: in the plane that the density keeps best".clone_into(&mut symmetry.frame.convention);
     Ok(relabelled(molecule, labelled, symmetry, thresholds)?)
 }
 

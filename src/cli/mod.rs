@@ -86,9 +86,9 @@ pub enum CliError {
 impl CliError {
     fn status(&self) -> Status {
         match self {
-            Self::Usage(_) => Status::Usage,
+            Self::Usage(_)
+            | Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
             Self::Refused(_) | Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
-            Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
             Self::Write { source, .. } if source.kind() == io::ErrorKind::BrokenPipe => Status::Done,
             Self::Read { .. } | Self::Write { .. } | Self::Input { .. } | Self::Label { .. } => Status::BadInput,
         }

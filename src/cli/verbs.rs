@@ -56,7 +56,7 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
     let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     let name = path.display().to_string();
-    let wanted = Wanted { window: arguments.window };
+    let wanted = Wanted { window: arguments.window, frontier_transitions: small };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
     let printed =
         print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;

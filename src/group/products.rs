@@ -79,7 +79,7 @@ impl PointGroup {
         character_table::product(self, a, b)
     }
 
-    /// The irreps in the symmetric square [a²].
+    /// The irreps in the symmetric square of a.
     ///
     /// # Errors
     /// As [`Self::product`].

@@ -153,7 +153,7 @@ impl Scene {
         let positions = vec![Vector3::zeros(); self.sites.len()];
         let rung = Rung { name: wanted, deviation: Deviation::default(), operations, positions };
         let mut symmetry = self.at(&rung)?;
-        symmetry.frame.convention = "the axes of the file; the nucleus leaves them free".to_owned();
+        "the axes of the file; the nucleus leaves them free".clone_into(&mut symmetry.frame.convention);
         Ok(symmetry)
     }
 

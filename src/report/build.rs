@@ -26,6 +26,8 @@ const SHARE_FLOOR: f64 = 0.01;
 pub struct Wanted {
     /// Orbitals below and above the frontier to list as an active space.
     pub window: Option<(usize, usize)>,
+    /// Transitions at the frontier: their moments cost several times the overlap.
+    pub frontier_transitions: bool,
 }
 
 /// Running number and symbol of a set.
@@ -191,6 +193,9 @@ pub fn label_document(
     if lowdin.is_none() {
         cautions.push("populations were not computed for this size of basis; ask for them with --character".to_owned());
     }
+    if !wanted.frontier_transitions {
+        cautions.push("frontier transitions were not computed for this size of basis; `transitions` does".to_owned());
+    }
     let sets = builder.sets(thresholds);
     let mut geometry = geometry(molecule, &labelled.detection, &labelled.symmetry, thresholds.tolerance_bohr);
     geometry.placement = placement_entry(molecule, labelled);
@@ -204,7 +209,7 @@ pub fn label_document(
         d_block: builder.d_block(),
         active_window: wanted.window.map(|(below, above)| builder.window(below, above)).unwrap_or_default(),
         sets: Some(sets),
-        transitions: frontier_transitions(molecule, labelled),
+        transitions: wanted.frontier_transitions.then(|| frontier_transitions(molecule, labelled)).flatten(),
         jahn_teller: Vec::new(),
         audit: None,
         thresholds: Some(ThresholdEntry {

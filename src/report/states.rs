@@ -366,7 +366,7 @@ impl Stage<'_> {
     /// Rules between terms of one configuration, or from those of one to those of another.
     ///
     /// # Errors
-    /// As [`states::transitions`].
+    /// As [`states::transitions()`].
     pub fn transitions(
         &self,
         from: &Configuration,

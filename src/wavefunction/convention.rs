@@ -1,6 +1,6 @@
 //! What a file's numbers mean: normalisation, order and sign of functions, found by trial.
 //!
-//! The conventions of dialects are data: [`CANDIDATES`] in words of mathematics. Whichever makes the orbitals
+//! The conventions of dialects are data, in words of mathematics. Whichever makes the orbitals
 //! orthonormal is taken; titles are not read. Not here: where the facts come from (`grammar-notes/conventions.md`).
 
 use super::basis::{Basis, Primitives};

@@ -60,6 +60,8 @@ pub fn moments(basis: &Basis, origin: &Point3<f64>, bra: ArrayView2<'_, f64>, ke
 /// ⟨μ|O|j⟩ of all functions μ: for each operator n_functions × n_ket.
 fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64>) -> Vec<Array2<f64>> {
     let mut halves: Vec<Array2<f64>> = vec![Array2::zeros((basis.n_functions(), ket.nrows())); N_OPERATORS];
+    // One row a function, so that sums run along memory.
+    let columns = ket.t().as_standard_layout().into_owned();
     // One piece of every operator's matrix a shell: rows are written by one thread each.
     let mut pieces: Vec<Vec<ArrayViewMut2<'_, f64>>> = basis.shells().iter().map(|_| Vec::new()).collect();
     for half in &mut halves {
@@ -82,36 +84,36 @@ fn half_transformed(basis: &Basis, origin: &Point3<f64>, ket: ArrayView2<'_, f64
             }
             for (block, piece) in blocks.iter_mut().zip(&mut pieces) {
                 block.store(a, b, strip.view_mut());
-                ndarray::linalg::general_mat_mul(1.0, &strip, &ket.slice(s![.., b.range()]).t(), 1.0, piece);
+                // By hand: a library's product costs more to call than these few rows take.
+                for (strip_row, mut row) in strip.outer_iter().zip(piece.outer_iter_mut()) {
+                    for (value, column) in strip_row.iter().zip(columns.slice(s![b.range(), ..]).outer_iter()) {
+                        row.scaled_add(*value, &column);
+                    }
+                }
             }
         }
     });
     halves
 }
 
-/// One direction: overlap, moment, second moment and derivative of the ket, degree by degree.
+/// One direction of a pair of primitives: overlaps degree by degree, from which the other integrals follow.
 struct Direction {
     overlap: [[f64; W]; N],
-    moment: [[f64; N]; N],
-    second: [[f64; N]; N],
-    derivative: [[f64; N]; N],
+    /// The ket's centre less the origin.
+    from_origin: f64,
+    /// Exponent of the ket.
+    beta: f64,
 }
 
 impl Direction {
-    /// `from_origin` is the ket's centre less the origin.
-    fn new(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64, beta: f64, from_origin: f64) -> Self {
-        let overlap = one_axis::<W>(la, lb + 2, from_a, from_b, half);
-        let mut direction = Self { overlap, moment: [[0.0; N]; N], second: [[0.0; N]; N], derivative: [[0.0; N]; N] };
-        for (i, row) in overlap.iter().enumerate().take(la + 1) {
-            for j in 0..=lb {
-                // x − O = (x − B) + (B − O).
-                direction.moment[i][j] = row[j + 1] + from_origin * row[j];
-                direction.second[i][j] = row[j + 2] + from_origin * (2.0 * row[j + 1] + from_origin * row[j]);
-                let lowered = if j > 0 { j as f64 * row[j - 1] } else { 0.0 };
-                direction.derivative[i][j] = lowered - 2.0 * beta * row[j + 1];
-            }
-        }
-        direction
+    /// Overlap, moment, second moment and derivative of the ket for degrees i and j.
+    fn integrals(&self, i: usize, j: usize) -> [f64; 4] {
+        let (row, o) = (&self.overlap[i], self.from_origin);
+        // x − O = (x − B) + (B − O).
+        let moment = row[j + 1] + o * row[j];
+        let second = row[j + 2] + o * (2.0 * row[j + 1] + o * row[j]);
+        let lowered = if j > 0 { j as f64 * row[j - 1] } else { 0.0 };
+        [row[j], moment, second, lowered - 2.0 * self.beta * row[j + 1]]
     }
 }
 
@@ -127,9 +129,10 @@ fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origi
             }
             any = true;
         }
-        let directions: [Direction; 3] = std::array::from_fn(|axis| {
-            let (from_a, from_b) = (pair.from_a[axis], pair.from_b[axis]);
-            Direction::new(a.l, b.l, from_a, from_b, pair.half, pair.beta, from_origin[axis])
+        let directions: [Direction; 3] = std::array::from_fn(|axis| Direction {
+            overlap: one_axis::<W>(a.l, b.l + 2, pair.from_a[axis], pair.from_b[axis], pair.half),
+            from_origin: from_origin[axis],
+            beta: pair.beta,
         });
         let mut at = 0;
         for bra in bras {
@@ -147,10 +150,9 @@ fn fill(blocks: &mut [Block; N_OPERATORS], a: &BasisShell, b: &BasisShell, origi
 
 /// All operators between two monomials, in the order of [`Moments`].
 fn one_pair(directions: &[Direction; 3], bra: &[usize; 3], ket: &[usize; 3]) -> [f64; N_OPERATORS] {
-    let overlap: [f64; 3] = std::array::from_fn(|k| directions[k].overlap[bra[k]][ket[k]]);
-    let moment: [f64; 3] = std::array::from_fn(|k| directions[k].moment[bra[k]][ket[k]]);
-    let second: [f64; 3] = std::array::from_fn(|k| directions[k].second[bra[k]][ket[k]]);
-    let derivative: [f64; 3] = std::array::from_fn(|k| directions[k].derivative[bra[k]][ket[k]]);
+    let [x, y, z] = std::array::from_fn(|axis| directions[axis].integrals(bra[axis], ket[axis]));
+    let part = |which: usize| [x[which], y[which], z[which]];
+    let (overlap, moment, second, derivative) = (part(0), part(1), part(2), part(3));
     let others = |k: usize| overlap[(k + 1) % 3] * overlap[(k + 2) % 3];
     let mut values = [0.0; N_OPERATORS];
     for k in 0..3 {
