@@ -5,10 +5,11 @@
 
 use super::density::{Electrons, Occupied};
 use super::{AuditError, Limits};
-use crate::labelling::{Labelled, Thresholds, relabelled};
+use crate::group::{GroupName, PointGroup};
+use crate::labelling::{LabelError, Labelled, Thresholds, relabelled};
 use crate::model::Molecule;
-use crate::wavefunction::{Turning, product};
-use nalgebra::{Matrix3, Rotation3, Vector3};
+use crate::wavefunction::{Turning, moments, product};
+use nalgebra::{Matrix3, Rotation3, SymmetricEigen, Vector3};
 
 /// Planes tried before the best one is refined: more than twice the highest harmonic of s to i functions.
 const PLANES: usize = 64;
@@ -26,8 +27,7 @@ pub fn adapted(
     thresholds: &Thresholds,
     limits: &Limits,
 ) -> Result<Labelled, AuditError> {
-    let linear = labelled.symmetry.group.is_continuous() && molecule.atoms.len() > 1;
-    if !linear {
+    if !matches!(labelled.symmetry.group.name(), GroupName::Cinfv | GroupName::Dinfh) {
         return Ok(labelled);
     }
     let lost = |angle: f64| lost_by_plane(&labelled, electrons, molecule.atoms.len(), angle);
@@ -44,6 +44,45 @@ pub fn adapted(
     let mut symmetry = labelled.symmetry.clone();
     symmetry.frame.axes = turn * symmetry.frame.axes;
     "z: along the molecule; x: in the plane that the density keeps best".clone_into(&mut symmetry.frame.convention);
+    Ok(relabelled(molecule, labelled, symmetry, thresholds)?)
+}
+
+/// The same orbitals of an atom in D∞h about the axis in which its density differs most from round.
+///
+/// # Errors
+/// [`AuditError::Label`] when the operations cannot be set up anew.
+pub fn about_an_axis(
+    molecule: &Molecule,
+    labelled: Labelled,
+    electrons: &Electrons,
+    thresholds: &Thresholds,
+) -> Result<Labelled, AuditError> {
+    let basis = &labelled.settled.basis;
+    let centre = labelled.symmetry.frame.centre;
+    let mut second = Matrix3::zeros();
+    for spin in [&electrons.alpha, &electrons.beta] {
+        let rows = spin.coefficients.view();
+        let moments = moments(basis, &centre, rows, rows).second;
+        let mean = |at: usize| -> f64 { moments[at].diag().iter().zip(&spin.occupations).map(|(m, n)| m * n).sum() };
+        let [xx, yy, zz, xy, xz, yz] = [0, 1, 2, 3, 4, 5].map(mean);
+        second += Matrix3::new(xx, xy, xz, xy, yy, yz, xz, yz, zz);
+    }
+    let eigen = SymmetricEigen::new(second);
+    let mut order = [0, 1, 2];
+    order.sort_by(|&a, &b| eigen.eigenvalues[a].total_cmp(&eigen.eigenvalues[b]));
+    let [low, middle, high] = order.map(|at| eigen.eigenvalues[at]);
+    // The axis is the direction that stands apart from the two others.
+    let (z, x) = if high - middle > middle - low { (order[2], order[0]) } else { (order[0], order[2]) };
+    let (z, x): (Vector3<f64>, Vector3<f64>) =
+        (eigen.eigenvectors.column(z).into(), eigen.eigenvectors.column(x).into());
+    let group = PointGroup::standard(GroupName::Dinfh).map_err(LabelError::Group)?;
+    let mut symmetry = labelled.symmetry.clone();
+    symmetry.frame.axes = Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()]);
+    symmetry.frame.convention = "z: where the density of the atom stands apart".to_owned();
+    symmetry.permutations = vec![(0..molecule.atoms.len()).collect(); group.elements().len()];
+    symmetry.rotational_symmetry_number = 2;
+    symmetry.other_settings = Vec::new();
+    symmetry.group = group;
     Ok(relabelled(molecule, labelled, symmetry, thresholds)?)
 }
 

@@ -6,7 +6,7 @@
 use super::AuditError;
 use crate::labelling::Labelled;
 use crate::model::{Molecule, OrbitalSet};
-use crate::wavefunction::Rows;
+use crate::wavefunction::{Operations, Rows};
 use ndarray::{Array1, Array2, ArrayView1, Axis};
 use rayon::prelude::*;
 
@@ -218,17 +218,20 @@ pub fn densities(electrons: &Electrons, labelled: &Labelled) -> Densities {
         let elements = labelled.operations.elements(element, bra.rows(), ket.rows());
         weighted(&elements, bra.occupations.view(), ket.occupations.view())
     };
-    let products: Vec<Products> = (0..labelled.operations.count())
-        .into_par_iter()
-        .map(|element| {
-            let aa = product(element, alpha, alpha);
-            if same {
-                return Products { aa, ab: aa, ba: aa, bb: aa };
-            }
-            let (ab, ba) = (product(element, beta, alpha), product(element, alpha, beta));
-            Products { aa, ab, ba, bb: product(element, beta, beta) }
-        })
-        .collect();
+    let of = |element: usize| {
+        let aa = product(element, alpha, alpha);
+        if same {
+            return Products { aa, ab: aa, ba: aa, bb: aa };
+        }
+        let (ab, ba) = (product(element, beta, alpha), product(element, alpha, beta));
+        Products { aa, ab, ba, bb: product(element, beta, beta) }
+    };
+    let elements = 0..labelled.operations.count();
+    let products: Vec<Products> = match labelled.operations {
+        Operations::Permuting(_) => elements.into_par_iter().map(of).collect(),
+        // Each holds a matrix of all functions: one at a time, which runs on all cores itself.
+        Operations::Turned(_) => elements.map(of).collect(),
+    };
     let identity = products[0];
     let retention = products.iter().map(|&here| Retention::new(here, identity)).collect();
     Densities { products, retention }

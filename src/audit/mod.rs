@@ -11,7 +11,7 @@ pub mod mixing;
 pub mod spin;
 pub mod verdict;
 
-use crate::group::{Site, Symmetry};
+use crate::group::{GroupName, Site, Symmetry};
 use crate::labelling::descent::Descent;
 use crate::labelling::{LabelError, Labelled, Thresholds, sites};
 use crate::model::{Molecule, Spin};
@@ -95,6 +95,9 @@ pub struct Audit {
     pub mixed: Vec<Mixed>,
     /// Orbitals of degenerate irreps that are no standard partner.
     pub turned_partners: usize,
+    /// Of an atom whose density is not round: electrons that the worst rotation carries out of place, at least. All else
+    /// is then told in D∞h about the density's own axis.
+    pub lost_sphere: Option<f64>,
     /// Degenerate shells that are partly filled.
     pub open_shells: Vec<OpenShell>,
     /// Limits used.
@@ -105,7 +108,14 @@ impl Audit {
     /// Whether no density has lost an operation.
     #[must_use]
     pub fn is_invariant(&self) -> bool {
-        [&self.kept.total, &self.kept.alpha, &self.kept.beta, &self.kept.spin].into_iter().all(Kept::is_whole)
+        let densities = [&self.kept.total, &self.kept.alpha, &self.kept.beta, &self.kept.spin];
+        self.lost_sphere.is_none() && densities.into_iter().all(Kept::is_whole)
+    }
+
+    /// The group that a density which has lost nothing has.
+    #[must_use]
+    pub fn whole_group(&self, labelled: &Labelled) -> GroupName {
+        if self.lost_sphere.is_some() { GroupName::K } else { labelled.symmetry.group.name() }
     }
 
     /// The smallest of the subgroups: what both spins keep.
@@ -130,6 +140,8 @@ pub fn audit(
     limits: &Limits,
 ) -> Result<(Labelled, Audit), AuditError> {
     let electrons = Electrons::of(molecule, &labelled)?;
+    let open_shells = verdict::open_shells(&labelled, &electrons.alpha, &electrons.beta);
+    let (labelled, lost_sphere) = round_or_not(molecule, labelled, &electrons, thresholds, limits)?;
     let labelled = axis::adapted(molecule, labelled, &electrons, thresholds, limits)?;
     let densities = density::densities(&electrons, &labelled);
     let kept = kept_groups(&labelled.symmetry, &densities, limits)?;
@@ -149,7 +161,8 @@ pub fn audit(
         spin: SpinReport::of(&electrons, &labelled.settled.basis, molecule.atoms.len(), limits.magnetic),
         mixed: mixing::mixed(molecule, &labelled, limits),
         turned_partners: mixing::turned_partners(&labelled),
-        open_shells: verdict::open_shells(&labelled, &electrons.alpha, &electrons.beta),
+        open_shells,
+        lost_sphere,
         densities,
         kept,
         swaps,
@@ -163,6 +176,28 @@ pub fn audit(
         audit.descent = Some(Descent::to(&labelled.symmetry, &all.members, &places, &sites::bonds(molecule))?);
     }
     Ok((labelled, audit))
+}
+
+/// An atom whose density some rotation changes is told in D∞h, with how much the worst one changes it.
+fn round_or_not(
+    molecule: &Molecule,
+    labelled: Labelled,
+    electrons: &Electrons,
+    thresholds: &Thresholds,
+    limits: &Limits,
+) -> Result<(Labelled, Option<f64>), AuditError> {
+    if labelled.symmetry.group.name() != GroupName::K {
+        return Ok((labelled, None));
+    }
+    let products = density::densities(electrons, &labelled).products;
+    let worst = |value: fn(&Products) -> f64| {
+        products.iter().map(|here| electrons_carried(value(here), value(&products[0]))).fold(0.0, f64::max)
+    };
+    let lost = worst(|here| here.aa).max(worst(|here| here.bb));
+    if lost <= limits.carried {
+        return Ok((labelled, None));
+    }
+    Ok((axis::about_an_axis(molecule, labelled, electrons, thresholds)?, Some(lost)))
 }
 
 /// A loss of the scalar product as electrons.

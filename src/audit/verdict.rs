@@ -36,8 +36,10 @@ pub enum Degeneracy {
 /// A degenerate irrep of which some partners are filled and others not.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct OpenShell {
-    /// Index of the irrep.
-    pub irrep: usize,
+    /// The irrep, of an atom's full group where the axes are its density's.
+    pub name: IrrepName,
+    /// Its dimension.
+    pub dimension: usize,
     /// Electrons in the shell.
     pub electrons: usize,
     /// Alpha electrons in orbitals of the irrep, by weight.
@@ -96,7 +98,14 @@ pub fn open_shells(labelled: &Labelled, alpha: &Occupied, beta: &Occupied) -> Ve
             IrrepName::Mulliken { .. } if of_group.dimension == 2 && electrons == 2 => Degeneracy::Undecided,
             IrrepName::Mulliken { .. } => Degeneracy::JahnTeller,
         };
-        open.push(OpenShell { irrep, electrons, alpha: a, beta: b, degeneracy });
+        open.push(OpenShell {
+            name: of_group.name,
+            dimension: of_group.dimension,
+            electrons,
+            alpha: a,
+            beta: b,
+            degeneracy,
+        });
     }
     open
 }
@@ -134,7 +143,7 @@ impl Audit {
             Verdict::Broken => {}
         }
         origins.extend(self.open_shells.iter().map(|shell| Origin::OpenShell(*shell)));
-        if self.kept.total.is_whole() {
+        if self.kept.total.is_whole() && self.lost_sphere.is_none() {
             origins.push(Origin::SpinPolarisation);
         } else if origins.is_empty() {
             origins.push(Origin::Density);

@@ -21,6 +21,10 @@ pub fn deliver(path: Option<&Path>, bytes: &[u8], out: &mut dyn Write) -> Result
 }
 
 fn replace(path: &Path, bytes: &[u8]) -> io::Result<()> {
+    // A device or a pipe is written into; renaming a file over it would take its place.
+    if std::fs::metadata(path).is_ok_and(|metadata| !metadata.is_file() && !metadata.is_dir()) {
+        return std::fs::OpenOptions::new().write(true).open(path)?.write_all(bytes);
+    }
     let folder = match path.parent() {
         Some(folder) if !folder.as_os_str().is_empty() => folder,
         _ => Path::new("."),

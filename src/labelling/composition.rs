@@ -22,6 +22,10 @@ pub struct Share {
     pub share: f64,
 }
 
+fn alike(one: &Atom, other: &Atom) -> bool {
+    (one.element, one.ghost) == (other.element, other.ghost)
+}
+
 /// Groups functions by atoms of one kind and by angular momentum.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Grouping {
@@ -79,9 +83,9 @@ pub fn ranges(indices: &[usize]) -> String {
 }
 
 impl Grouping {
-    /// Orbits of atoms under the operations, then (orbit, l) groups of functions.
+    /// Orbits of atoms under the operations, those of one element that are truly turned together, then (orbit, l) groups of functions.
     #[must_use]
-    pub fn new(molecule: &Molecule, basis: &Basis, symmetry: &Symmetry) -> Self {
+    pub fn new(molecule: &Molecule, basis: &Basis, symmetry: &Symmetry, turned: &[usize]) -> Self {
         let n_atoms = molecule.atoms.len();
         let mut orbit_of_atom = vec![usize::MAX; n_atoms];
         let mut orbits: Vec<Vec<usize>> = Vec::new();
@@ -90,6 +94,9 @@ impl Grouping {
                 continue;
             }
             let mut orbit: Vec<usize> = symmetry.permutations.iter().map(|permutation| permutation[atom]).collect();
+            if turned.binary_search(&atom).is_ok() {
+                orbit.extend(turned.iter().filter(|&&other| alike(&molecule.atoms[other], &molecule.atoms[atom])));
+            }
             orbit.sort_unstable();
             orbit.dedup();
             for &member in &orbit {
@@ -99,12 +106,8 @@ impl Grouping {
         }
         let name = |orbit: &Vec<usize>| {
             let atom = &molecule.atoms[orbit[0]];
-            let alike = |other: &Vec<usize>| {
-                let first = &molecule.atoms[other[0]];
-                (first.element, first.ghost) == (atom.element, atom.ghost)
-            };
             let symbol = elements::label(atom);
-            if orbits.iter().filter(|other| alike(other)).count() > 1 {
+            if orbits.iter().filter(|other| alike(&molecule.atoms[other[0]], atom)).count() > 1 {
                 format!("{symbol} {}", ranges(orbit))
             } else {
                 symbol

@@ -190,6 +190,13 @@ pub fn audit_document(
     document
 }
 
+/// Electrons that the worst operation carries out of place in any density.
+fn carried_worst(audit: &Audit) -> f64 {
+    let kept = &audit.kept;
+    let all = [&kept.total, &kept.alpha, &kept.beta, &kept.spin];
+    all.iter().map(|kept| kept.carried_worst).fold(audit.lost_sphere.unwrap_or(0.0), f64::max)
+}
+
 fn cautions(audit: &Audit) -> Vec<String> {
     let text = match audit.electrons.shells {
         Shells::RestrictedOpen => "one set of orbitals, some with one electron: taken as of parallel spins",
@@ -229,7 +236,7 @@ fn entry(molecule: &Molecule, labelled: &Labelled, audit: &Audit) -> AuditEntry 
             spin_density: kept.spin.name.to_string(),
         },
         operations_lost: lost.into_iter().map(symbol).collect(),
-        electrons_carried_max: all.iter().map(|kept| kept.carried_worst).fold(0.0, f64::max),
+        electrons_carried_max: carried_worst(audit),
         swaps_spin: !audit.swaps.is_empty(),
         s_squared: audit.spin.s_squared,
         s_squared_ideal: audit.spin.ideal,
@@ -345,9 +352,9 @@ fn subgroup(labelled: &Labelled, audit: &Audit) -> Option<SubgroupEntry> {
 
 /// One line: the word, what it means here, the numbers behind it.
 fn summary(labelled: &Labelled, audit: &Audit) -> String {
-    let group = pretty(&labelled.symmetry.group.name().to_string());
+    let group = pretty(&audit.whole_group(labelled).to_string());
     let limits = &audit.limits;
-    let worst = audit.kept_by_all().carried_worst;
+    let worst = carried_worst(audit);
     let invariant =
         format!("all densities keep {group} (no operation carries more than {worst:.1e} electrons out of place)");
     match audit.verdict() {
@@ -380,7 +387,7 @@ fn summary(labelled: &Labelled, audit: &Audit) -> String {
             let kept = &audit.kept;
             let named = [("total", &kept.total), ("alpha", &kept.alpha), ("beta", &kept.beta), ("spin", &kept.spin)];
             let part = |(name, kept): &(&str, &Kept)| {
-                if kept.is_whole() {
+                if kept.is_whole() && audit.lost_sphere.is_none() {
                     format!("{name} all")
                 } else {
                     format!("{name} {}", pretty(&kept.name.to_string()))
@@ -407,7 +414,7 @@ fn origin_text(labelled: &Labelled, origin: &Origin) -> String {
             labelled.symmetry.deviation.max * crate::model::ANGSTROM_PER_BOHR,
             pretty(&group.name().to_string())
         ),
-        Origin::OpenShell(shell) => open_shell_text(labelled, shell),
+        Origin::OpenShell(shell) => open_shell_text(shell),
         Origin::SpinPolarisation => {
             "spin: the total density is whole; only the alpha and beta densities break the symmetry".to_owned()
         }
@@ -422,12 +429,11 @@ fn origin_text(labelled: &Labelled, origin: &Origin) -> String {
     }
 }
 
-fn open_shell_text(labelled: &Labelled, shell: &OpenShell) -> String {
-    let irrep = &labelled.symmetry.group.irreps()[shell.irrep];
-    let name = pretty(&irrep.name.symbol());
+fn open_shell_text(shell: &OpenShell) -> String {
+    let name = pretty(&shell.name.symbol());
     let held = format!(
         "open degenerate shell {name}^{}: {name} orbitals hold {:.2} alpha and {:.2} beta electrons, sets of {}",
-        shell.electrons, shell.alpha, shell.beta, irrep.dimension
+        shell.electrons, shell.alpha, shell.beta, shell.dimension
     );
     let follows = match shell.degeneracy {
         Degeneracy::JahnTeller => "one determinant fills single real components: a Jahn–Teller situation",

@@ -187,7 +187,7 @@ pub fn label_document(
     wanted: Wanted,
 ) -> Document {
     let group = &labelled.symmetry.group;
-    let grouping = Grouping::new(molecule, &labelled.settled.basis, &labelled.symmetry);
+    let grouping = Grouping::new(molecule, &labelled.settled.basis, &labelled.symmetry, &labelled.derivation.turned);
     let builder = Builder { molecule, labelled, group, grouping: &grouping, lowdin };
     let mut cautions = electron_cautions(molecule);
     if lowdin.is_none() {

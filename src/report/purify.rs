@@ -62,6 +62,9 @@ pub struct Outcome<'a> {
     pub verdict: Option<&'a AuditEntry>,
 }
 
+/// Orbitals that overlap by more are worth a caution.
+const FINE: f64 = 1e-6;
+
 /// The report as data.
 #[must_use]
 pub fn purify_document(outcome: Outcome<'_>) -> PurifyDocument {
@@ -76,6 +79,14 @@ pub fn purify_document(outcome: Outcome<'_>) -> PurifyDocument {
     } else if outcome.verdict.is_some_and(|verdict| verdict.verdict == "mixed") {
         cautions
             .push("orbitals were mixed: energies are expectation values over the old ones, no eigenvalues".to_owned());
+    }
+    if outcome.moved_bohr.is_none() && changes.residual > FINE {
+        cautions.push(format!(
+            "the nuclei are up to {:.4} Å off, so orbitals of different irreps overlap by up to {:.0e}; --geometry moves the \
+             nuclei and makes them orthonormal",
+            outcome.again.symmetry.deviation.max * ANGSTROM_PER_BOHR,
+            changes.residual
+        ));
     }
     PurifyDocument {
         schema: super::document::SCHEMA,
@@ -95,6 +106,9 @@ pub fn purify_document(outcome: Outcome<'_>) -> PurifyDocument {
     }
 }
 
+/// Losses below this are rounding, and differ from machine to machine.
+const ROUNDING: f64 = 1e-9;
+
 /// The report for people.
 #[must_use]
 pub fn purify_text(document: &PurifyDocument) -> String {
@@ -107,17 +121,36 @@ pub fn purify_text(document: &PurifyDocument) -> String {
         &mut out,
         "Changed",
         &format!(
-            "largest loss of an orbital 1 − Σ⟨old|new⟩² = {:.1e} ({spin} {}); density by {:.1e} electrons",
-            document.overlap_loss_max, document.overlap_loss_orbital, document.density_change_electrons
+            "{}; density by {} electrons",
+            if document.overlap_loss_max < ROUNDING {
+                format!("no orbital loses more than {ROUNDING:.0e} = 1 − Σ⟨old|new⟩²")
+            } else {
+                format!(
+                    "largest loss of an orbital 1 − Σ⟨old|new⟩² = {:.1e} ({spin} {})",
+                    document.overlap_loss_max, document.overlap_loss_orbital
+                )
+            },
+            if document.density_change_electrons < ROUNDING {
+                format!("less than {ROUNDING:.0e}")
+            } else {
+                format!("{:.1e}", document.density_change_electrons)
+            }
         ),
     );
     head(
         &mut out,
         "Now",
         &format!(
-            "lowest purity {:.10}; orthonormal to {:.0e}; {} sets with partners aligned to the standard components, {} \
+            "lowest purity {:.9}; orthonormal to {}; {} sets with partners aligned to the standard components, {} \
              orbitals of degenerate irreps without partners to align",
-            document.purity_min, document.orthonormality_residual, document.aligned_sets, document.loose_orbitals
+            document.purity_min,
+            if document.orthonormality_residual < ROUNDING {
+                format!("{ROUNDING:.0e}")
+            } else {
+                format!("{:.0e}", document.orthonormality_residual)
+            },
+            document.aligned_sets,
+            document.loose_orbitals
         ),
     );
     match document.nuclei_moved_max_angstrom {

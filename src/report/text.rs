@@ -92,11 +92,13 @@ pub(super) fn source_line(source: &Source) -> String {
 pub fn geometry_head(geometry: &Geometry) -> String {
     let mut out = String::new();
     let order = geometry.order.map_or("continuous".to_owned(), |order| format!("order {order}"));
+    let some_turned = geometry.placement.as_ref().is_some_and(|placement| placement.truly_turned.is_some());
+    let who = if some_turned { "atoms that land" } else { "nuclei" };
     head(
         &mut out,
         "Point group",
         &format!(
-            "{}  ({order}; nuclei within {:.4} Å of it, rms {:.4} Å; tolerance {} Å)",
+            "{}  ({order}; {who} within {:.4} Å of it, rms {:.4} Å; tolerance {} Å)",
             pretty(&geometry.point_group),
             geometry.deviation_max_angstrom,
             geometry.deviation_rms_angstrom,

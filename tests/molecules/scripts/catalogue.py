@@ -122,6 +122,7 @@ PYSCF = {
     "broken_benzene_cation": ("C6H6+ at hexagonal nuclei", "UHF/STO-3G", "D6h", "Jahn-Teller situation, e1g^3"),
     "broken_chromium_fluoride_d1": ("[CrF6]-, d1", "UHF/STO-3G", "Oh", "Jahn-Teller situation, t2g^1"),
     "broken_helium_dimer_cation": ("He2+ at 2.4 A", "UHF/6-31G**", "Dinfh", "hole on one atom"),
+    "broken_boron_atom": ("B atom", "UHF/6-31G*", "Kh", "one component of p filled"),
     "broken_nitric_oxide": ("NO", "UHF/6-31G*", "Cinfv", "one component of pi filled"),
     "broken_ferrocene_restricted": ("Fe(C5H5)2 staggered", "RHF/STO-3G", "D5d", "a restricted solution below the symmetric one"),
     "broken_ethene_by_hand": ("C2H4", "RHF/6-31G*", "D2h", "HOMO turned into an empty orbital by 0.2 rad"),

@@ -65,6 +65,10 @@ def nitric_oxide():
     return solve(molecule(g.diatomic("N", "O", 1.151), "6-31g*", spin=1, seed=308), "U"), {}
 
 
+def boron():
+    return solve(molecule([("B", (0, 0, 0))], "6-31g*", spin=1, seed=318), "U"), {}
+
+
 def ferrocene_lower():
     mol = molecule(g.sandwich("Fe", 36), "sto-3g", seed=309)
     return solve(mol, "R", guess="atom", newton=True), dict(virtuals=4, tol=1e-6)
@@ -144,6 +148,7 @@ FILES = {
     "broken_chromium_fluoride_d1": chromium_d1,
     "broken_helium_dimer_cation": helium_cation,
     "broken_nitric_oxide": nitric_oxide,
+    "broken_boron_atom": boron,
     "broken_ferrocene_restricted": ferrocene_lower,
     "broken_ethene_by_hand": empty_and_filled,
     "intact_methyl_radical": methyl,
