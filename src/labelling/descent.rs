@@ -71,6 +71,14 @@ impl Descent {
         expectations.select(Axis(1), &self.subgroup.embedding).dot(&weights::projection(&self.subgroup.group))
     }
 
+    /// Irreps of the group above that functions up to angular momentum `l_max` can have; all of a finite group.
+    pub fn parents_up_to(&self, l_max: usize) -> impl Iterator<Item = (usize, &IrrepName)> {
+        self.parent_irreps.iter().enumerate().filter(move |(_, name)| match name {
+            IrrepName::Linear { m, .. } => usize::from(*m) <= l_max,
+            _ => true,
+        })
+    }
+
     /// `B2g + Eg`, as in printed tables.
     #[must_use]
     pub fn correlation_text(&self, irrep: usize) -> String {

@@ -5,6 +5,7 @@
 
 use super::build;
 use super::document::{Document, Weight};
+use super::placement::highest_l;
 use super::unicode::pretty;
 use crate::audit::density::Shells;
 use crate::audit::kept::Kept;
@@ -314,11 +315,9 @@ fn subgroup(labelled: &Labelled, audit: &Audit) -> Option<SubgroupEntry> {
     let descent = audit.descent.as_ref()?;
     let above = &labelled.symmetry.group;
     let below = &descent.subgroup.group;
-    let correlation = above
-        .irreps()
-        .iter()
-        .enumerate()
-        .map(|(at, irrep)| (irrep.name.to_string(), json!(descent.correlation_text(at))))
+    let correlation = descent
+        .parents_up_to(highest_l(labelled))
+        .map(|(at, name)| (name.to_string(), json!(descent.correlation_text(at))))
         .collect();
     let mut orbitals = Vec::new();
     for spin in &labelled.spins {

@@ -48,6 +48,11 @@ fn named(molecule: &Molecule, atoms: &[usize]) -> String {
     order.iter().map(|label| format!("{label} {}", ranges(&of_element[label]))).collect::<Vec<_>>().join(", ")
 }
 
+/// Highest angular momentum of the basis.
+pub(super) fn highest_l(labelled: &Labelled) -> usize {
+    labelled.settled.basis.shells().iter().map(|shell| shell.l).max().unwrap_or(0)
+}
+
 /// None for the group that the nuclei have.
 #[must_use]
 pub fn placement_entry(molecule: &Molecule, labelled: &Labelled) -> Option<PlacementEntry> {
@@ -61,7 +66,7 @@ pub fn placement_entry(molecule: &Molecule, labelled: &Labelled) -> Option<Place
         named(molecule, &others)
     });
     let correlation = derivation.descent.as_ref().map(|descent| {
-        let irreps = descent.parent_irreps.iter().enumerate();
+        let irreps = descent.parents_up_to(highest_l(labelled));
         irreps.map(|(at, name)| (name.to_string(), json!(descent.correlation_text(at)))).collect()
     });
     Some(PlacementEntry {
@@ -118,5 +123,10 @@ pub(super) fn placement_lines(out: &mut String, entry: &PlacementEntry, group: &
             .map(|(above, below)| format!("{} → {}", pretty(above), pretty(below.as_str().unwrap_or_default())))
             .collect();
         head(out, "Correlation", &parts.join(", "));
+        head(
+            out,
+            "",
+            &format!("partners that the file turns among themselves stay together; purify --group {group} parts them"),
+        );
     }
 }
