@@ -251,7 +251,7 @@ fn exit_status_and_document_follow_the_contract() {
 #[test]
 fn without_occupations_there_is_no_verdict() {
     let text = String::from_utf8(support::files::bytes("water_sto3g")).unwrap();
-    let without: String = text.lines().filter(|line| !line.contains("Occup")).map(|line| format!("{line}\n")).collect();
+    let without = text.lines().filter(|line| !line.contains("Occup")).collect::<Vec<_>>().join("\n");
     let folder = tempfile::tempdir().unwrap();
     let file = folder.path().join("bare.molden");
     std::fs::write(&file, without).unwrap();

@@ -78,7 +78,7 @@ pub fn about_an_axis(
     let group = PointGroup::standard(GroupName::Dinfh).map_err(LabelError::Group)?;
     let mut symmetry = labelled.symmetry.clone();
     symmetry.frame.axes = Matrix3::from_rows(&[x.transpose(), z.cross(&x).transpose(), z.transpose()]);
-    symmetry.frame.convention = "z: where the density of the atom stands apart".to_owned();
+    "z: where the density of the atom stands apart".clone_into(&mut symmetry.frame.convention);
     symmetry.permutations = vec![(0..molecule.atoms.len()).collect(); group.elements().len()];
     symmetry.rotational_symmetry_number = 2;
     symmetry.other_settings = Vec::new();
