@@ -210,3 +210,16 @@ fn a_reference_library_finds_orthonormal_orbitals_of_the_same_density() {
         assert!((ours - theirs).abs() < 1e-10, "{name}: {ours:e}, {theirs:e}");
     }
 }
+
+#[test]
+fn sets_come_apart_in_a_subgroup_without_loss() {
+    let folder = tempfile::tempdir().unwrap();
+    for (name, group) in
+        [("sf6_sto3g", "D4h"), ("benzene_sto3g", "D2h"), ("turned_methane", "C2v"), ("oxygen_triplet_631gs", "D2h")]
+    {
+        let (report, _) = purified(&path(name), &["--group", group], folder.path());
+        assert!((report["purity_min"].as_f64().unwrap() - 1.0).abs() < 1e-8, "{name}");
+        assert!(report["overlap_loss_max"].as_f64().unwrap() < 1e-8, "{name}: {}", report["overlap_loss_max"]);
+        assert!(report["density_change_electrons"].as_f64().unwrap() < 1e-8, "{name}");
+    }
+}

@@ -140,7 +140,12 @@ pub fn audit(
     limits: &Limits,
 ) -> Result<(Labelled, Audit), AuditError> {
     let electrons = Electrons::of(molecule, &labelled)?;
-    let open_shells = verdict::open_shells(&labelled, &electrons.alpha, &electrons.beta);
+    // Of atoms that land nowhere the weights say nothing of shells.
+    let open_shells = if labelled.derivation.turned.is_empty() {
+        verdict::open_shells(&labelled, &electrons.alpha, &electrons.beta)
+    } else {
+        Vec::new()
+    };
     let (labelled, lost_sphere) = round_or_not(molecule, labelled, &electrons, thresholds, limits)?;
     let labelled = axis::adapted(molecule, labelled, &electrons, thresholds, limits)?;
     let densities = density::densities(&electrons, &labelled);

@@ -17,6 +17,14 @@ const LEFT: f64 = 1e-4;
 /// A set is complete within a space when at least this much of its first partner lies in it.
 const COMPLETE: f64 = 0.99;
 
+/// A set whose orbitals miss their irrep by less is pure.
+const PURE: f64 = 1e-6;
+/// Orbitals within this energy may be mixed at will, hartree.
+const ONE_ENERGY: f64 = 1e-3;
+
+/// How much of a direction lies in its irrep, the irrep, and that part.
+type Direction = (f64, usize, Array1<f64>);
+
 /// Orbitals with more electrons, already adapted.
 #[derive(Default)]
 pub struct Above {
@@ -78,17 +86,34 @@ impl Shell<'_> {
             let here: Vec<usize> =
                 set.orbitals.iter().copied().filter(|orbital| self.orbitals.binary_search(orbital).is_ok()).collect();
             match set.irrep {
-                Some(irrep) if here.len() == set.orbitals.len() && here.len() == set.degeneracy => {
+                Some(irrep)
+                    if here.len() == set.degeneracy && here.len() == set.orbitals.len() && self.stands_alone(&here) =>
+                {
                     adapted.groups.push(here.clone());
                     self.of_set(irrep, &here, &mut found)?;
                 }
                 _ => rest.extend(here),
             }
         }
-        rest.sort_unstable();
-        if !rest.is_empty() {
-            adapted.groups.push(rest.clone());
-            self.of_rest(&rest, &mut found)?;
+        // What is mixed at one energy comes apart there; only what does not is mixed with all the rest.
+        let mut left = Vec::new();
+        for cluster in self.at_one_energy(rest) {
+            let directions = self.directions(&cluster)?;
+            if directions.len() == cluster.len() && directions.iter().all(|entry| entry.0 > COMPLETE) {
+                self.of_directions(&cluster, directions, &mut found)?;
+                adapted.groups.push(cluster);
+            } else {
+                left.extend(cluster);
+            }
+        }
+        left.sort_unstable();
+        if !left.is_empty() {
+            let directions = self.directions(&left)?;
+            if directions.len() < left.len() {
+                return Err(self.dependent(0.0));
+            }
+            self.of_directions(&left, directions, &mut found)?;
+            adapted.groups.push(left);
         }
         for irrep in 0..self.projector.group.irreps().len() {
             self.place(irrep, &mut found, above, &mut adapted)?;
@@ -135,11 +160,36 @@ impl Shell<'_> {
         product(product(bras.view(), self.overlap.view()).view(), kets.t())
     }
 
-    /// Pure orbitals for those that belong to no complete set: the directions that lie most within single irreps.
-    fn of_rest(&self, rest: &[usize], found: &mut Found) -> Result<(), PurifyError> {
+    /// Whether a set is pure, or impure with no other impure orbital at its energy to come apart from.
+    fn stands_alone(&self, orbitals: &[usize]) -> bool {
+        let impure = |&i: &usize| self.labels.orbitals[i].purity < 1.0 - PURE;
+        let energy = |i: usize| self.set.orbitals[i].energy;
+        let beside = |&other: &usize| {
+            let near =
+                |&i: &usize| matches!((energy(i), energy(other)), (Some(a), Some(b)) if (a - b).abs() <= ONE_ENERGY);
+            !orbitals.contains(&other) && impure(&other) && orbitals.iter().any(near)
+        };
+        !orbitals.iter().any(|i| impure(i)) || !self.orbitals.iter().any(beside)
+    }
+
+    /// Orbitals in runs of nearly one energy; all of them together where energies are missing.
+    fn at_one_energy(&self, mut orbitals: Vec<usize>) -> Vec<Vec<usize>> {
+        let energy = |i: usize| self.set.orbitals[i].energy.unwrap_or(0.0);
+        orbitals.sort_by(|&a, &b| energy(a).total_cmp(&energy(b)).then(a.cmp(&b)));
+        let mut clusters: Vec<Vec<usize>> =
+            orbitals.chunk_by(|&a, &b| energy(b) - energy(a) <= ONE_ENERGY).map(<[usize]>::to_vec).collect();
+        for cluster in &mut clusters {
+            cluster.sort_unstable();
+        }
+        clusters
+    }
+
+    /// The directions in the span of some orbitals that lie most within single irreps, with how much of them does: as many
+    /// as there are orbitals, fewer where projection leaves nothing more.
+    fn directions(&self, rest: &[usize]) -> Result<Vec<Direction>, PurifyError> {
         let members = self.set.coefficients.select(Axis(0), rest);
         let images: Vec<Array2<f64>> = rest.iter().map(|&i| self.projector.images(self.row(i))).collect();
-        let mut directions: Vec<(f64, usize, Array1<f64>)> = Vec::new();
+        let mut directions: Vec<Direction> = Vec::new();
         for irrep in 0..self.projector.group.irreps().len() {
             let parts = stacked(images.iter().map(|images| self.projector.onto_irrep(irrep, images)), self.width());
             let (values, vectors) = eigen(&self.between(&members, &parts))?;
@@ -149,10 +199,13 @@ impl Shell<'_> {
         }
         // Values are compared to nine digits, so that rounding does not decide between irreps.
         directions.sort_by(|a, b| (b.0 * 1e9).round().total_cmp(&(a.0 * 1e9).round()).then(a.1.cmp(&b.1)));
-        if directions.len() < rest.len() {
-            return Err(self.dependent(0.0));
-        }
         directions.truncate(rest.len());
+        Ok(directions)
+    }
+
+    /// Pure orbitals in the places of `rest`, in order of energy.
+    fn of_directions(&self, rest: &[usize], directions: Vec<Direction>, found: &mut Found) -> Result<(), PurifyError> {
+        let members = self.set.coefficients.select(Axis(0), rest);
         let mut items: Vec<(usize, bool, Array1<f64>, Option<f64>)> = Vec::new();
         for irrep in 0..self.projector.group.irreps().len() {
             let rows: Vec<Array1<f64>> =

@@ -386,7 +386,9 @@ fn summary(labelled: &Labelled, audit: &Audit) -> String {
             let kept = &audit.kept;
             let named = [("total", &kept.total), ("alpha", &kept.alpha), ("beta", &kept.beta), ("spin", &kept.spin)];
             let part = |(name, kept): &(&str, &Kept)| {
-                if kept.is_whole() && audit.lost_sphere.is_none() {
+                if *name == "spin" && audit.densities.retention[0].spin.is_none() {
+                    "no spin density".to_owned()
+                } else if kept.is_whole() && audit.lost_sphere.is_none() {
                     format!("{name} all")
                 } else {
                     format!("{name} {}", pretty(&kept.name.to_string()))
@@ -407,12 +409,15 @@ fn summary(labelled: &Labelled, audit: &Audit) -> String {
 fn origin_text(labelled: &Labelled, origin: &Origin) -> String {
     let group = &labelled.symmetry.group;
     match origin {
-        Origin::Geometry { nuclei } => format!(
-            "geometry: the nuclei themselves are exactly only {}, up to {:.4} Å from {}",
-            pretty(&nuclei.to_string()),
-            labelled.symmetry.deviation.max * crate::model::ANGSTROM_PER_BOHR,
-            pretty(&group.name().to_string())
-        ),
+        Origin::Geometry { nuclei } => {
+            let off = if labelled.derivation.turned.is_empty() {
+                let off = labelled.symmetry.deviation.max * crate::model::ANGSTROM_PER_BOHR;
+                format!("up to {off:.4} Å from {}", pretty(&group.name().to_string()))
+            } else {
+                format!("{} atoms land on no like atom under {}", labelled.derivation.turned.len(), pretty(&group.name().to_string()))
+            };
+            format!("geometry: the nuclei themselves are exactly only {}; {off}", pretty(&nuclei.to_string()))
+        }
         Origin::OpenShell(shell) => open_shell_text(shell),
         Origin::SpinPolarisation => {
             "spin: the total density is whole; only the alpha and beta densities break the symmetry".to_owned()
