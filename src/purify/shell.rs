@@ -169,7 +169,7 @@ impl Shell<'_> {
                 |&i: &usize| matches!((energy(i), energy(other)), (Some(a), Some(b)) if (a - b).abs() <= ONE_ENERGY);
             !orbitals.contains(&other) && impure(&other) && orbitals.iter().any(near)
         };
-        !orbitals.iter().any(|i| impure(i)) || !self.orbitals.iter().any(beside)
+        !orbitals.iter().any(impure) || !self.orbitals.iter().any(beside)
     }
 
     /// Orbitals in runs of nearly one energy; all of them together where energies are missing.
