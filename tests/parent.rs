@@ -199,6 +199,13 @@ fn an_atom_has_every_group() {
     let (_, labelled) = standard("zinc_ion_def2svp", Some("Oh"), None);
     assert_eq!(group_name(&labelled), "Oh");
     weights_add_up("zinc_ion_def2svp", &labelled);
+    // The d functions, turned at will by the engine, hold each irrep of the axis once.
+    let (_, axial) = standard("zinc_ion_def2svp", Some("Dinfh"), None);
+    assert_eq!(group_name(&axial), "Dinfh");
+    weights_add_up("zinc_ion_def2svp", &axial);
+    let continuous = Choice { group: Some("Dinfh".parse().unwrap()), ..Choice::default() };
+    let refused = label_in(&mut molecule("water_631gs"), &Thresholds::STANDARD, &continuous);
+    assert!(refused.unwrap_err().to_string().contains("infinitely many"));
     let refused = label_in(
         &mut molecule("cobalt_ammine_d3_sto3g"),
         &Thresholds::STANDARD,

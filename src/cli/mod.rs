@@ -87,7 +87,10 @@ impl CliError {
     fn status(&self) -> Status {
         match self {
             Self::Usage(_)
-            | Self::Label { source: LabelError::Orientation { .. } | LabelError::SphericalFrame, .. } => Status::Usage,
+            | Self::Label {
+                source: LabelError::Orientation { .. } | LabelError::SphericalFrame | LabelError::Continuous { .. },
+                ..
+            } => Status::Usage,
             Self::Refused(_) | Self::Label { source: LabelError::Convention(_), .. } => Status::NumbersFail,
             Self::Write { source, .. } if source.kind() == io::ErrorKind::BrokenPipe => Status::Done,
             Self::Read { .. } | Self::Write { .. } | Self::Input { .. } | Self::Label { .. } => Status::BadInput,

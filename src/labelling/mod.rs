@@ -141,6 +141,16 @@ pub enum LabelError {
     /// The atoms of a frame are all at one place.
     #[error("the atoms of the frame are at one place: any group fits them; name one with --group, or add atoms")]
     SphericalFrame,
+    /// A continuous group that the atoms do not come near to.
+    #[error(
+        "{wanted} has infinitely many operations; it can be asked for only where the atoms nearly have it, and they have {found}"
+    )]
+    Continuous {
+        /// The group asked for.
+        wanted: GroupName,
+        /// That of the atoms.
+        found: GroupName,
+    },
     /// A subgroup has fewer orientations.
     #[error("{group} has {} orientations here, asked for number {asked}: {}", orientations.len(), orientations.join("; "))]
     Orientation {

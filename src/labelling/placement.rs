@@ -117,9 +117,13 @@ impl Scene {
         let found = self.detection.at(tolerance_bohr);
         let derivation = Derivation { found: Some(found.name), ..Derivation::default() };
         let Some(wanted) = choice.group.filter(|wanted| *wanted != found.name) else {
+            if choice.orientation > 0 {
+                let (asked, orientations) = (choice.orientation + 1, vec!["that of the atoms".to_owned()]);
+                return Err(LabelError::Orientation { asked, group: found.name, orientations });
+            }
             return Ok((self.at(found)?, derivation));
         };
-        if found.name == GroupName::K && !wanted.is_continuous() {
+        if found.name == GroupName::K {
             return Ok((self.on_an_atom(wanted)?, derivation));
         }
         let symmetry = self.at(found)?;
@@ -139,6 +143,9 @@ impl Scene {
         }
         if let Some(rung) = self.detection.ladder.iter().find(|rung| rung.name == wanted) {
             return Ok((self.at(rung)?, derivation));
+        }
+        if wanted.is_continuous() {
+            return Err(LabelError::Continuous { wanted, found: found.name });
         }
         let (symmetry, misfit) = self.fitted(wanted, &symmetry)?;
         Ok((symmetry, Derivation { misfit_bohr: Some(misfit), ..derivation }))
