@@ -2,12 +2,12 @@
 
 use super::arguments::{Audit, Format};
 use super::placing::choice;
-use super::verbs::{json, read};
-use super::{CliError, Status, input, output, use_threads};
+use super::verbs::{json, molden};
+use super::{CliError, Status, output, use_threads};
 use crate::audit::verdict::Verdict;
 use crate::audit::{self, AuditError, Limits};
 use crate::labelling::{self, Thresholds};
-use crate::model::{self, ANGSTROM_PER_BOHR};
+use crate::model::ANGSTROM_PER_BOHR;
 use crate::report::audit::audit_document;
 use crate::report::audit_text::audit_text;
 use std::io::Write;
@@ -15,8 +15,7 @@ use std::io::Write;
 pub fn audit(arguments: &Audit, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
-    let bytes = input::open(path)?;
-    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let (_, mut molecule) = molden(path, &arguments.common, errors)?;
     let thresholds = Thresholds {
         tolerance_bohr: arguments.tolerance / ANGSTROM_PER_BOHR,
         degeneracy_hartree: arguments.degeneracy,

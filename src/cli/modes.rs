@@ -1,11 +1,11 @@
 //! The verb `modes`: place the nuclei, assign the file's modes where it has some, deliver.
 
 use super::arguments::{Format, Modes};
-use super::verbs::{json, read, rows};
-use super::{CliError, Status, input, output, use_threads};
+use super::verbs::{json, molden_or_xyz, rows};
+use super::{CliError, Status, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{LabelError, sites};
-use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
+use crate::model::{ANGSTROM_PER_BOHR, Molecule};
 use crate::modes::{ModeThresholds, assign, assignment};
 use crate::report::csv;
 use crate::report::modes::modes_document;
@@ -15,9 +15,7 @@ use std::io::Write;
 pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
-    let bytes = input::open(path)?;
-    let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
-    let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
+    let molecule = molden_or_xyz(path, &arguments.common, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
     let atoms = molecule
@@ -25,7 +23,13 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
         .as_ref()
         .map_or_else(|| molecule.atoms.clone(), |vibrations| assignment::atoms_of_modes(&molecule.atoms, vibrations));
     // Basis functions play no part in how nuclei move.
-    let nuclei = Molecule { atoms, shells: Vec::new(), orbital_sets: Vec::new(), ..molecule.clone() };
+    let nuclei = Molecule {
+        atoms,
+        shells: Vec::new(),
+        orbital_sets: Vec::new(),
+        title: molecule.title.clone(),
+        vibrations: None,
+    };
     let Placement { detection, symmetry, .. } =
         placement::place(&nuclei, tolerance_bohr, &Choice::default()).map_err(failed)?;
     let thresholds = ModeThresholds::STANDARD;

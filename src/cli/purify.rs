@@ -2,8 +2,8 @@
 
 use super::arguments::{Format, Purify};
 use super::placing::choice;
-use super::verbs::{json, read};
-use super::{CliError, Status, input, output, use_threads};
+use super::verbs::{json, molden};
+use super::{CliError, Status, output, use_threads};
 use crate::audit::{self, Limits};
 use crate::grammar::write::{Replacement, rewrite};
 use crate::labelling::{self, LabelError, Labelled, Thresholds};
@@ -21,8 +21,7 @@ pub fn purify(arguments: &Purify, out: &mut dyn Write, errors: &mut dyn Write) -
     use_threads(&arguments.common)?;
     let path = &arguments.file;
     let name = path.display().to_string();
-    let bytes = input::open(path)?;
-    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let (bytes, mut molecule) = molden(path, &arguments.common, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
     let placed = choice(&arguments.placing, &molecule)?;

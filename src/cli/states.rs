@@ -1,14 +1,14 @@
 //! `states`: terms of a configuration that is typed, or read from a file's occupations.
 
 use super::arguments::{Format, States, Table};
-use super::verbs::{json, read};
-use super::{CliError, Status, input, output, use_threads};
+use super::verbs::{json, molden};
+use super::{CliError, Status, output, use_threads};
 use crate::group::double_name::half;
 use crate::group::irrep_name::Parity;
 use crate::group::{DoubleGroup, GroupName, IrrepName, PointGroup};
 use crate::labelling::configuration::{Obstacle, open_shells};
 use crate::labelling::{self, Thresholds};
-use crate::model::{self, ANGSTROM_PER_BOHR, Spin};
+use crate::model::{ANGSTROM_PER_BOHR, Spin};
 use crate::modes;
 use crate::report::double_table;
 use crate::report::states::{Stage, StatesDocument};
@@ -189,8 +189,7 @@ fn free_term(text: &str) -> Result<(String, u16, Parity), CliError> {
 
 fn of_file(arguments: &States, errors: &mut dyn Write) -> Result<StatesDocument, CliError> {
     let path = Path::new(&arguments.target);
-    let bytes = input::open(path)?;
-    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let (_, mut molecule) = molden(path, &arguments.common, errors)?;
     let thresholds = Thresholds {
         tolerance_bohr: arguments.tolerance / ANGSTROM_PER_BOHR,
         degeneracy_hartree: arguments.degeneracy,

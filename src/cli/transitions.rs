@@ -2,10 +2,10 @@
 
 use super::arguments::{Format, Transitions};
 use super::placing::choice;
-use super::verbs::{json, read, rows};
-use super::{CliError, Status, input, output, use_threads};
+use super::verbs::{json, molden, rows};
+use super::{CliError, Status, output, use_threads};
 use crate::labelling::{self, Thresholds};
-use crate::model::{self, ANGSTROM_PER_BOHR};
+use crate::model::ANGSTROM_PER_BOHR;
 use crate::report::text::EV_PER_HARTREE;
 use crate::report::transitions_text::transitions_text;
 use crate::report::{build, csv};
@@ -15,8 +15,7 @@ use std::io::Write;
 pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
-    let bytes = input::open(path)?;
-    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let (_, mut molecule) = molden(path, &arguments.common, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
     let placed = choice(&arguments.placing, &molecule)?;

@@ -1,12 +1,12 @@
 //! One function a verb: open, call the layers below, deliver.
 
 use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::input::{self, Bytes};
 use super::placing::choice;
-use super::{CliError, Status, draw, input, output, use_threads};
-use crate::diagnostic::Diagnostic;
+use super::{CliError, Status, draw, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{self, LabelError, Thresholds};
-use crate::model::{self, ANGSTROM_PER_BOHR, Molecule};
+use crate::model::{self, ANGSTROM_PER_BOHR, Molecule, Reading};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
 use crate::report::text::{self, TextOptions};
@@ -18,18 +18,32 @@ use std::path::Path;
 /// Populations need the square root of the overlap matrix, n³: above this many functions only on demand.
 const CHARACTER_LIMIT: usize = 1200;
 
-/// What is read, or all findings drawn.
-pub(super) fn read(
-    result: Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>,
+/// Bytes and meaning of a Molden file; warnings go to `errors`.
+pub(super) fn molden(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<(Bytes, Molecule), CliError> {
+    let bytes = input::open(path)?;
+    let molecule = meaning(model::read_molden(&bytes), path, &bytes, common, errors)?;
+    Ok((bytes, molecule))
+}
+
+/// Nuclei, and whatever else there is, of a Molden or plain XYZ file; warnings go to `errors`.
+pub(super) fn molden_or_xyz(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<Molecule, CliError> {
+    let bytes = input::open(path)?;
+    let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
+    meaning(result, path, &bytes, common, errors)
+}
+
+/// What was read, or all findings drawn.
+fn meaning(
+    result: Reading,
     path: &Path,
     bytes: &[u8],
-    quiet: bool,
+    common: &Common,
     errors: &mut dyn Write,
 ) -> Result<Molecule, CliError> {
     let name = path.display().to_string();
     match result {
         Ok((molecule, warnings)) => {
-            if !quiet && !warnings.is_empty() {
+            if !common.quiet && !warnings.is_empty() {
                 // A closed standard error must not stop the result.
                 let _ = writeln!(errors, "{}", draw(&warnings, &name, bytes));
             }
@@ -42,8 +56,7 @@ pub(super) fn read(
 pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
-    let bytes = input::open(path)?;
-    let mut molecule = read(model::read_molden(&bytes), path, &bytes, arguments.common.quiet, errors)?;
+    let (bytes, mut molecule) = molden(path, &arguments.common, errors)?;
     let thresholds = Thresholds {
         tolerance_bohr: arguments.tolerance / ANGSTROM_PER_BOHR,
         degeneracy_hartree: arguments.degeneracy,
@@ -71,9 +84,7 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
 pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
-    let bytes = input::open(path)?;
-    let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
-    let molecule = read(result, path, &bytes, arguments.common.quiet, errors)?;
+    let molecule = molden_or_xyz(path, &arguments.common, errors)?;
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let Placement { detection, symmetry, .. } = placement::place(&molecule, tolerance_bohr, &Choice::default())
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
