@@ -50,7 +50,13 @@ pub fn rewrite(
         let start = line_start(bytes, orbital.header.start);
         edits.push((start..orbital.numbers.end, block(new, orbital.beta, line_end)));
     }
-    let mut out = Vec::with_capacity(2 * bytes.len());
+    splice(bytes, &edits)
+}
+
+/// The bytes with each span replaced by its text; spans ascend and do not overlap.
+#[must_use]
+pub fn splice(bytes: &[u8], edits: &[(Span, String)]) -> Vec<u8> {
+    let mut out = Vec::with_capacity(bytes.len() + edits.iter().map(|edit| edit.1.len()).sum::<usize>());
     let mut at = 0;
     for (span, text) in edits {
         out.extend_from_slice(&bytes[at..span.start]);

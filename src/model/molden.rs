@@ -342,13 +342,5 @@ pub fn write_labels(bytes: &[u8], molecule: &Molecule, labels: &[Vec<String>]) -
         }
     }
     edits.sort_by_key(|edit| edit.0.start);
-    let mut out = Vec::with_capacity(bytes.len() + 16 * edits.len());
-    let mut at = 0;
-    for (span, text) in edits {
-        out.extend_from_slice(&bytes[at..span.start]);
-        out.extend_from_slice(text.as_bytes());
-        at = span.end;
-    }
-    out.extend_from_slice(&bytes[at..]);
-    out
+    grammar::write::splice(bytes, &edits)
 }
