@@ -6,13 +6,13 @@ use super::document::{
 };
 use super::placement::placement_entry;
 use super::transitions::{self, Context, TransitionEntry};
-use crate::group::{Detection, GroupName, IrrepName, PointGroup, Symmetry};
+use crate::group::{Detection, GroupName, IrrepName, PointGroup, Rung, Symmetry};
 use crate::labelling::composition::{Grouping, Share, ranges};
 use crate::labelling::descent::sum_of_irreps;
 use crate::labelling::frontier::{self, Configuration};
 use crate::labelling::sets::content;
 use crate::labelling::{Labelled, SetLabel, Thresholds, d_block};
-use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
+use crate::model::{ANGSTROM_PER_BOHR, Atom, Molecule, elements};
 use crate::selection::{self, Choice, SelectError};
 use ndarray::{Array2, Axis};
 use serde_json::{Map, json};
@@ -45,8 +45,9 @@ pub fn source(file: &str, molecule: &Molecule) -> Source {
     let nuclei: f64 = molecule
         .atoms
         .iter()
-        .filter(|atom| !atom.ghost)
-        .map(|atom| f64::from(atom.element) - f64::from(atom.core_electrons))
+        .zip(cores_left_out(molecule))
+        .filter(|(atom, _)| !atom.ghost)
+        .map(|(atom, left_out)| f64::from(atom.element) - f64::from(atom.core_electrons + left_out))
         .sum();
     Source {
         file: file.to_owned(),
@@ -96,20 +97,22 @@ fn axes_in_words(molecule: &Molecule, symmetry: &Symmetry) -> String {
     text
 }
 
-/// Electrons of the noble-gas cores of the real atoms.
-fn core_electrons(molecule: &Molecule) -> u32 {
-    const NOBLE: [u8; 7] = [2, 10, 18, 36, 54, 86, 118];
-    let core = |element: u8| NOBLE.iter().rev().find(|noble| **noble < element).copied().unwrap_or(0);
-    molecule.atoms.iter().filter(|atom| !atom.ghost).map(|atom| u32::from(core(atom.element))).sum()
-}
-
-/// Whether no atom with a core has a function steep enough for it: a 1s function needs exponents up to Z² and beyond.
-fn valence_only(molecule: &Molecule) -> bool {
-    molecule.shells.iter().all(|shell| {
-        let element = molecule.atoms[shell.atom_idx].element;
-        let steepest = shell.exponents.iter().copied().fold(0.0, f64::max);
-        element <= 2 || steepest < f64::from(element).powi(2)
-    })
+/// Electrons of each atom's noble-gas core that the file leaves out without saying so.
+///
+/// An atom with fewer s shells than its neutral atom fills cannot hold its core (valence-only bases).
+fn cores_left_out(molecule: &Molecule) -> Vec<u32> {
+    const NOBLE: [u8; 6] = [2, 10, 18, 36, 54, 86];
+    let mut s_shells = vec![0; molecule.atoms.len()];
+    for shell in molecule.shells.iter().filter(|shell| shell.l == 0) {
+        s_shells[shell.atom_idx] += 1;
+    }
+    let left_out = |(atom, s_shells): (&Atom, usize)| {
+        let filled = elements::occupied_shells(atom.element).iter().filter(|shell| shell.1 == 0).count();
+        let core = NOBLE.iter().rev().find(|noble| **noble < atom.element).copied().unwrap_or(0);
+        // Atoms without any function (point charges, dummies) tell nothing.
+        if atom.core_electrons == 0 && (1..filled).contains(&s_shells) { u32::from(core) } else { 0 }
+    };
+    molecule.atoms.iter().zip(s_shells).map(left_out).collect()
 }
 
 /// What Σ occupations and the nuclear charges say against each other.
@@ -122,18 +125,49 @@ fn electron_cautions(molecule: &Molecule) -> Vec<String> {
     if (electrons - electrons.round()).abs() > 1e-3 {
         cautions.push(format!("the occupations sum to {electrons:.4}, which is no whole number of electrons"));
     }
-    let core = f64::from(core_electrons(molecule));
-    if core > 0.0 && (charge - core).abs() < 1e-3 && valence_only(molecule) {
+    let left_out: u32 = cores_left_out(molecule).iter().sum();
+    if left_out > 0 {
         cautions.push(format!(
-            "the nuclei have {core} charges more than there are electrons: just their noble-gas cores, so the basis \
-             seems to be for valence electrons only and the charge given is that of the cores"
+            "some atoms have fewer s shells than they fill: a basis for valence electrons only, so {left_out} core \
+             electrons are counted as left out"
         ));
-    } else if charge.abs() > 8.0 {
+    }
+    if charge.abs() > 8.0 {
         cautions.push(format!(
             "nuclei less electrons give a charge of {charge:+.0}: occupations or atomic numbers may be wrong"
         ));
     }
     cautions
+}
+
+/// A group this many times the tolerance away is worth a word.
+const NEAR: f64 = 3.0;
+
+/// What to know before trusting the group: a higher one close by, nuclei that reach the tolerance, a search cut short.
+fn geometry_warnings(detection: &Detection, symmetry: &Symmetry, tolerance_bohr: f64) -> Vec<String> {
+    let angstrom = |bohr: f64| bohr * ANGSTROM_PER_BOHR;
+    let mut warnings = Vec::new();
+    let higher = |rung: &&Rung| rung.deviation.max > tolerance_bohr && rung.deviation.max <= NEAR * tolerance_bohr;
+    if let Some(rung) = detection.ladder.iter().find(higher) {
+        warnings.push(format!(
+            "the nuclei have {} at {:.4} Å, just beyond the tolerance: labels in it with a larger --tolerance",
+            rung.name,
+            angstrom(rung.deviation.max)
+        ));
+    }
+    if symmetry.deviation.max > 0.5 * tolerance_bohr && symmetry.deviation.max <= tolerance_bohr {
+        warnings.push(format!(
+            "the nuclei use {:.0} % of the tolerance: a tighter --tolerance gives a lower group",
+            100.0 * symmetry.deviation.max / tolerance_bohr
+        ));
+    }
+    if detection.searched_bohr < tolerance_bohr {
+        warnings.push(format!(
+            "so many nuclei look alike that groups were searched up to {:.4} Å only, below the tolerance",
+            angstrom(detection.searched_bohr)
+        ));
+    }
+    warnings
 }
 
 /// The geometry block.
@@ -172,7 +206,7 @@ pub fn geometry(molecule: &Molecule, detection: &Detection, symmetry: &Symmetry,
             })
             .collect(),
         placement: None,
-        warnings: Vec::new(),
+        warnings: geometry_warnings(detection, symmetry, tolerance_bohr),
     }
 }
 

@@ -64,7 +64,7 @@ pub struct Source {
     pub formula: String,
     /// Σ occupations, null where the file gives none.
     pub electrons: Option<f64>,
-    /// Nuclear charge less core electrons less Σ occupations.
+    /// Nuclear charge less core electrons (of pseudopotentials, or plainly left out of the basis) less Σ occupations.
     pub charge: Option<f64>,
 }
 
