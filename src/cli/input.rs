@@ -4,19 +4,35 @@
 
 use super::CliError;
 use flate2::read::MultiGzDecoder;
-use memmap2::Mmap;
+use memmap2::{Mmap, UncheckedAdvice};
 use std::fs::File;
-use std::io::{self, Read};
-use std::ops::Deref;
+use std::io::{self, Read, Write};
+use std::ops::{Deref, Range};
 use std::path::Path;
 
 /// The bytes of an input, mapped or owned.
 #[derive(Debug)]
 pub enum Bytes {
-    /// A file mapped into memory.
+    /// A file mapped into memory; its own, or one that a long stream was put down in.
     Mapped(Mmap),
-    /// Standard input, or something unpacked.
+    /// A short stream.
     Owned(Vec<u8>),
+}
+
+impl Bytes {
+    /// Gives the pages of a stretch back: memory stays that of the numbers however long the file is.
+    pub fn release(&self, span: Range<usize>) {
+        #[cfg(unix)]
+        if let Self::Mapped(map) = self
+            && span.start < span.end
+            && span.end <= map.len()
+        {
+            #[expect(unsafe_code, reason = "part of the memory map: without it a whole file would stay in memory")]
+            // SAFETY: the map is shared and read-only, so dropped pages are read from the file again when they are
+            // touched, with the same bytes. A system that refuses the advice loses nothing but memory.
+            let _ = unsafe { map.unchecked_advise_range(UncheckedAdvice::DontNeed, span.start, span.len()) };
+        }
+    }
 }
 
 impl Deref for Bytes {
@@ -43,36 +59,45 @@ const UNPACKED_FLOOR: u64 = 1 << 20;
 /// [`CliError::Read`] when it cannot be opened, read or unpacked, or unpacks to an absurd size.
 pub fn open(path: &Path) -> Result<Bytes, CliError> {
     let failed = |source: io::Error| CliError::Read { path: path.to_owned(), source };
-    let bytes = if path.as_os_str() == "-" {
-        let mut bytes = Vec::new();
-        io::stdin().lock().read_to_end(&mut bytes).map_err(failed)?;
-        Bytes::Owned(bytes)
-    } else {
-        map(path).map_err(failed)?
-    };
-    if bytes.starts_with(&GZIP) { unpack(&bytes).map(Bytes::Owned).map_err(failed) } else { Ok(bytes) }
+    let bytes = if path.as_os_str() == "-" { stream(io::stdin().lock()) } else { file(path) }.map_err(failed)?;
+    if bytes.starts_with(&GZIP) { unpack(&bytes).map_err(failed) } else { Ok(bytes) }
 }
 
-fn map(path: &Path) -> io::Result<Bytes> {
-    let mut file = File::open(path)?;
-    let metadata = file.metadata()?;
-    if !metadata.is_file() || metadata.len() == 0 {
-        // A pipe, a device, or nothing to map.
-        let mut bytes = Vec::new();
-        file.read_to_end(&mut bytes)?;
+/// A stream longer than this is put down in a file without a name, and mapped.
+const STREAM_IN_MEMORY: u64 = 16 << 20;
+
+fn stream(mut source: impl Read) -> io::Result<Bytes> {
+    let mut bytes = Vec::new();
+    source.by_ref().take(STREAM_IN_MEMORY).read_to_end(&mut bytes)?;
+    if (bytes.len() as u64) < STREAM_IN_MEMORY {
         return Ok(Bytes::Owned(bytes));
     }
-    #[expect(unsafe_code, reason = "the memory map: the one way to read a file larger than memory allows twice")]
-    // SAFETY: the map is read-only and private to this process. Should another process shorten the file
-    // meanwhile the kernel ends this one with SIGBUS: no undefined value is ever used as Rust data beyond bytes.
-    let map = unsafe { Mmap::map(&file)? };
-    Ok(Bytes::Mapped(map))
+    let mut file = tempfile::tempfile()?;
+    file.write_all(&bytes)?;
+    drop(bytes);
+    io::copy(&mut source, &mut file)?;
+    map(&file).map(Bytes::Mapped)
 }
 
-fn unpack(packed: &[u8]) -> io::Result<Vec<u8>> {
+fn file(path: &Path) -> io::Result<Bytes> {
+    let file = File::open(path)?;
+    let metadata = file.metadata()?;
+    // A pipe or a device is a stream, and nothing cannot be mapped.
+    if !metadata.is_file() || metadata.len() == 0 { stream(file) } else { map(&file).map(Bytes::Mapped) }
+}
+
+fn map(file: &File) -> io::Result<Mmap> {
+    #[expect(unsafe_code, reason = "the memory map: the one way to read a file larger than memory allows twice")]
+    // SAFETY: the map is read-only. Should another process shorten the file meanwhile the kernel ends this one with
+    // SIGBUS: no undefined value is ever used as Rust data beyond bytes.
+    unsafe {
+        Mmap::map(file)
+    }
+}
+
+fn unpack(packed: &[u8]) -> io::Result<Bytes> {
     let limit = UNPACKED_FLOOR + UNPACKED_RATIO * packed.len() as u64;
-    let mut bytes = Vec::new();
-    MultiGzDecoder::new(packed).take(limit + 1).read_to_end(&mut bytes)?;
+    let bytes = stream(MultiGzDecoder::new(packed).take(limit + 1))?;
     if bytes.len() as u64 > limit {
         return Err(io::Error::new(
             io::ErrorKind::InvalidData,

@@ -103,7 +103,7 @@ fn on_nuclei(molecule: &Molecule, labelled: &Labelled, nuclei: Option<&[[f64; 3]
 
 /// The file with the new orbitals in its own convention.
 fn write(bytes: &[u8], labelled: &Labelled, spins: &[PureSpin], nuclei: Option<&[[f64; 3]]>) -> Vec<u8> {
-    let (raw, _) = crate::grammar::read(bytes);
+    let (raw, _) = crate::grammar::read(bytes, &|_| ());
     let in_file: Vec<Array2<f64>> =
         spins.iter().map(|spin| labelled.settled.to_file(spin.coefficients.view())).collect();
     let rows: Vec<Vec<Vec<f64>>> =

@@ -21,14 +21,18 @@ const CHARACTER_LIMIT: usize = 1200;
 /// Bytes and meaning of a Molden file; warnings go to `errors`.
 pub(super) fn molden(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<(Bytes, Molecule), CliError> {
     let bytes = input::open(path)?;
-    let molecule = meaning(model::read_molden(&bytes), path, &bytes, common, errors)?;
+    let molecule = meaning(read(&bytes), path, &bytes, common, errors)?;
     Ok((bytes, molecule))
+}
+
+fn read(bytes: &Bytes) -> Reading {
+    model::read_molden_passing(bytes, &|span| bytes.release(span))
 }
 
 /// Nuclei, and whatever else there is, of a Molden or plain XYZ file; warnings go to `errors`.
 pub(super) fn molden_or_xyz(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<Molecule, CliError> {
     let bytes = input::open(path)?;
-    let result = if model::looks_like_molden(&bytes) { model::read_molden(&bytes) } else { model::read_xyz(&bytes) };
+    let result = if model::looks_like_molden(&bytes) { read(&bytes) } else { model::read_xyz(&bytes) };
     meaning(result, path, &bytes, common, errors)
 }
 

@@ -6,6 +6,7 @@
 pub mod atoms;
 pub mod basis;
 pub mod cores;
+pub mod marks;
 pub mod numbers;
 pub mod orbitals;
 pub mod sections;
@@ -17,7 +18,7 @@ use crate::diagnostic::{Diagnostic, Severity, Span};
 use atoms::{LengthUnit, RawAtom};
 use basis::RawShell;
 use cores::RawCore;
-use orbitals::RawOrbital;
+use orbitals::Headers;
 use sections::Section;
 
 /// Findings in the order in which they are met.
@@ -136,10 +137,10 @@ pub struct RawMolden {
     pub shells: Vec<RawShell>,
     /// Pure or Cartesian.
     pub tags: Vec<Tag>,
-    /// `[MO]`.
-    pub orbitals: Vec<RawOrbital>,
-    /// Where `[MO]` stands.
-    pub orbitals_header: Option<Span>,
+    /// `[MO]`, to be gone through with [`RawMolden::headers`].
+    pub orbitals: Option<Section>,
+    /// Equals signs of the file, of which those in `[MO]` belong to keys.
+    equals: Vec<usize>,
     /// `[CORE]`, `[PSEUDO]`, `[NVAL]`.
     pub cores: Vec<RawCore>,
     /// Where the first section on normal modes stands.
@@ -152,6 +153,14 @@ pub struct RawMolden {
     pub mode_atoms: Vec<(Span, [f64; 3])>,
     /// `[FR-NORM-COORD]`.
     pub displacements: Vec<Vec<f64>>,
+}
+
+impl RawMolden {
+    /// The headers of `[MO]`, one orbital after the other.
+    #[must_use]
+    pub fn headers<'a>(&'a self, bytes: &'a [u8]) -> Option<Headers<'a>> {
+        self.orbitals.as_ref().map(|section| Headers::new(bytes, section, &self.equals))
+    }
 }
 
 /// Sections that carry nothing for this program.
@@ -197,12 +206,14 @@ fn tag(name: &str) -> Option<(Kinds, Kinds)> {
     })
 }
 
-/// Reads a whole Molden file but for the coefficients, of which only the places are kept.
+/// Reads a whole Molden file but for `[MO]`, of which only the place is kept; `passed` is told each stretch of the
+/// input that was looked through.
 #[must_use]
-pub fn read(bytes: &[u8]) -> (RawMolden, Findings) {
-    let mut raw = RawMolden::default();
+pub fn read(bytes: &[u8], passed: &dyn Fn(Span)) -> (RawMolden, Findings) {
+    let marks = marks::marks(bytes, passed);
+    let mut raw = RawMolden { equals: marks.equals, ..RawMolden::default() };
     let mut findings = Findings::default();
-    let sections = sections::sections(bytes);
+    let sections = sections::sections(bytes, &marks.brackets);
     if sections.is_empty() {
         findings.error(
             0..bytes.len().min(SHOWN),
@@ -256,10 +267,7 @@ fn read_section(bytes: &[u8], section: &Section, raw: &mut RawMolden, findings: 
             "[STO] holds Slater functions, which are not read: their overlaps between centres have no closed form here",
             "expand them in Gaussians, or ask the engine for a file with [GTO]",
         ),
-        "MO" => {
-            raw.orbitals = orbitals::orbitals(bytes, section, findings);
-            raw.orbitals_header = Some(section.header.clone());
-        }
+        "MO" => raw.orbitals = Some(section.clone()),
         "CORE" | "PSEUDO" | "NVAL" => raw.cores.extend(cores::cores(bytes, section, findings)),
         "FREQ" => raw.frequencies = vibrations::column(bytes, section, findings),
         "INT" => raw.intensities = vibrations::column(bytes, section, findings),

@@ -6,7 +6,6 @@
 //! ```
 //! A section ends where the next line opens with a bracket. Not here: what stands in a section.
 
-use super::numbers::is_blank;
 use crate::diagnostic::Span;
 
 /// One section of the file.
@@ -25,20 +24,12 @@ pub struct Section {
 /// Longest name a bracket can hold; longer ones are no section.
 const NAME_LIMIT: usize = 64;
 
-/// All sections in order.
+/// All sections in order, from the brackets that open a line.
 #[must_use]
-pub fn sections(bytes: &[u8]) -> Vec<Section> {
+pub fn sections(bytes: &[u8], brackets: &[usize]) -> Vec<Section> {
     let mut found: Vec<Section> = Vec::new();
-    // Only back to the bracket before, so that a line of nothing but brackets costs no square.
-    let mut before = 0;
-    for at in memchr::memchr_iter(b'[', bytes) {
-        let newline = memchr::memrchr(b'\n', &bytes[before..at]).map(|step| before + step + 1);
-        let first = before == 0;
-        before = at;
-        let Some(line_start) = newline.or(first.then_some(0)) else { continue };
-        if !bytes[line_start..at].iter().all(|&byte| is_blank(byte)) {
-            continue;
-        }
+    for &at in brackets {
+        let line_start = memchr::memrchr(b'\n', &bytes[..at]).map_or(0, |newline| newline + 1);
         let line_end = memchr::memchr(b'\n', &bytes[at..]).map_or(bytes.len(), |step| at + step);
         let reach = line_end.min(at + NAME_LIMIT);
         let Some(close) = memchr::memchr(b']', &bytes[at..reach]).map(|step| at + step) else { continue };
@@ -68,8 +59,10 @@ mod tests {
     #[test]
     fn sections_end_where_the_next_begins() {
         let text = b"  [Molden Format]\n[Atoms] AU\nH 1 1 0 0 0\n x [no]\n\t[GTO]\r\n";
-        let names: Vec<(String, &[u8])> =
-            sections(text).into_iter().map(|section| (section.name, &text[section.body])).collect();
+        let names: Vec<(String, &[u8])> = sections(text, &crate::grammar::marks::marks(text, &|_| ()).brackets)
+            .into_iter()
+            .map(|section| (section.name, &text[section.body]))
+            .collect();
         assert_eq!(names[1], ("ATOMS".to_owned(), &b"H 1 1 0 0 0\n x [no]\n"[..]));
         assert_eq!(names.iter().map(|entry| entry.0.as_str()).collect::<Vec<_>>(), ["MOLDEN FORMAT", "ATOMS", "GTO"]);
     }

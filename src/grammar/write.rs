@@ -3,8 +3,8 @@
 //! Here: blocks of `[MO]`, coordinates of `[Atoms]`. Not here: in which convention coefficients are written
 //! (`wavefunction::convention`), symmetry labels alone (`model::write_labels`).
 
-use super::RawMolden;
 use super::atoms::LengthUnit;
+use super::{Findings, RawMolden};
 use crate::diagnostic::Span;
 use std::fmt::Write as _;
 
@@ -42,7 +42,8 @@ pub fn rewrite(
         }
     }
     let mut next = [0_usize; 2];
-    for orbital in &raw.orbitals {
+    let orbitals_of_file = raw.headers(bytes).map(|headers| headers.all(&mut Findings::default())).unwrap_or_default();
+    for orbital in &orbitals_of_file {
         // A file may hold beta orbitals alone: they are the first set then.
         let spin = usize::from(orbital.beta && orbitals.len() > 1);
         let Some(new) = orbitals.get(spin).and_then(|of_spin| of_spin.get(next[spin])) else { continue };
@@ -131,7 +132,7 @@ mod tests {
     fn only_orbitals_and_coordinates_change() {
         let text = b"[Molden Format]\n[Atoms] Angs\nH 1 1 0.0 0.0 0.5 kept\n[GTO]\n1 0\ns 1\n1.0 1.0\n\n[MO]\n\
                      Ene= 1.0\nOccup= 2\n1 1.0\n[FREQ]\n 12.0\n";
-        let (raw, findings) = crate::grammar::read(text);
+        let (raw, findings) = crate::grammar::read(text, &|_| ());
         assert!(!findings.any_error());
         let new = Replacement { symmetry: "1a1", energy: Some(-0.5), occupation: Some(2.0), coefficients: &[0.25] };
         let out = rewrite(text, &raw, &[vec![new]], Some(&[[0.0, 0.0, 2.0]]), 0.5);

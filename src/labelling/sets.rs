@@ -6,8 +6,8 @@
 use super::{OrbitalLabel, SetLabel, Thresholds};
 use crate::group::PointGroup;
 use crate::model::{Orbital, Spin};
-use crate::wavefunction::{Operations, Rows};
-use ndarray::Array2;
+use crate::wavefunction::{Operations, Pair, Rows};
+use ndarray::{Array2, ArrayView1};
 use rayon::prelude::*;
 use std::collections::BTreeMap;
 
@@ -56,31 +56,34 @@ fn energies_tell(orbitals: &[Orbital]) -> bool {
 /// differ by no more than `thresholds.window_hartree`; orbitals without a label are joined only at one
 /// energy. Energy alone never joins: accidental degeneracy leaves two sets.
 #[must_use]
-pub fn join(
-    connected: &Connected<'_>,
-    group: &PointGroup,
-    labels: &[OrbitalLabel],
+pub fn join<'a>(
+    connected: &'a Connected<'a>,
+    group: &'a PointGroup,
+    labels: &'a [OrbitalLabel],
     spin: Spin,
     thresholds: &Thresholds,
 ) -> Vec<SetLabel> {
     let order = energy_order(connected.orbitals);
     let tell = energies_tell(connected.orbitals);
-    let candidates: Vec<(usize, Vec<usize>)> = (0..order.len())
+    let mut links = Links::new(connected, group, labels);
+    if tell {
+        links.look_at(&plain_sets(connected, group, labels, thresholds, &order));
+    }
+    // By Bessel's inequality ⟨i|R|j⟩² summed over all i is 1: what is found to keep together needs no further looking.
+    let pairs: Vec<Pair> = (0..order.len())
         .into_par_iter()
-        .map(|at| (order[at], candidates(connected, group, labels, thresholds, &order[at..], tell)))
-        .collect();
-    let strengths = connected.operations.connections(connected.rows, &candidates);
-    let links: Vec<(usize, usize, f64)> = candidates
-        .iter()
-        .zip(&strengths)
-        .flat_map(|((ket, bras), strengths)| bras.iter().zip(strengths).map(|(&i, &strength)| (*ket, i, strength)))
-        .filter(|&(ket, i, strength)| match (labels[ket].irrep, labels[i].irrep) {
-            (Some(a), Some(_)) => strength >= LINK_SAME_IRREP / group.irreps()[a].dimension as f64,
-            _ => strength >= LINK_MIXED,
+        .flat_map_iter(|at| {
+            let ket = order[at];
+            // Most are settled by now, and spare the search.
+            let others =
+                links.may_go_on(ket).then(|| candidates(connected, group, labels, thresholds, &order[at..], tell));
+            let links = &links;
+            others.into_iter().flatten().map(move |bra| (bra, ket)).filter(|&pair| links.open(pair))
         })
         .collect();
+    links.look_at(&pairs);
     let mut parents: Vec<usize> = (0..order.len()).collect();
-    for &(i, j, _) in &links {
+    for &(i, j) in &links.found {
         let (a, b) = (root(&parents, i), root(&parents, j));
         parents[a.max(b)] = a.min(b);
     }
@@ -88,15 +91,7 @@ pub fn join(
     for i in 0..order.len() {
         members.entry(root(&parents, i)).or_default().push(i);
     }
-    let mut kept: Vec<f64> = connected
-        .expectations
-        .outer_iter()
-        .map(|row| row.iter().map(|value| value * value).sum::<f64>() / row.len() as f64)
-        .collect();
-    for &(i, j, strength) in &links {
-        kept[i] += strength;
-        kept[j] += strength;
-    }
+    let kept = links.kept;
     let place: BTreeMap<usize, usize> = order.iter().enumerate().map(|(at, &i)| (i, at)).collect();
     let mut sets: Vec<Vec<usize>> = members.into_values().collect();
     sets.sort_by_key(|set| set.iter().map(|i| place[i]).min());
@@ -104,6 +99,85 @@ pub fn join(
         sets.into_iter().map(|set| describe(connected, group, labels, spin, thresholds, set, &kept)).collect(),
         group,
     )
+}
+
+/// Which orbitals hang together, as far as it is known.
+struct Links<'a> {
+    connected: &'a Connected<'a>,
+    group: &'a PointGroup,
+    labels: &'a [OrbitalLabel],
+    /// Sorted.
+    found: Vec<Pair>,
+    /// Mean over the operations of the part of each image that lies in the orbital and those linked to it.
+    kept: Vec<f64>,
+}
+
+impl<'a> Links<'a> {
+    fn new(connected: &'a Connected<'a>, group: &'a PointGroup, labels: &'a [OrbitalLabel]) -> Self {
+        let mean = |row: ArrayView1<'_, f64>| row.iter().map(|value| value * value).sum::<f64>() / row.len() as f64;
+        let kept = connected.expectations.outer_iter().map(mean).collect();
+        Self { connected, group, labels, found: Vec::new(), kept }
+    }
+
+    /// Links the pairs, each new, that the operations connect.
+    fn look_at(&mut self, pairs: &[Pair]) {
+        let strengths = self.connected.operations.connections(self.connected.rows, pairs);
+        for (&(i, j), strength) in pairs.iter().zip(strengths) {
+            let least = match (self.labels[i].irrep, self.labels[j].irrep) {
+                (Some(irrep), Some(_)) => LINK_SAME_IRREP / self.group.irreps()[irrep].dimension as f64,
+                _ => LINK_MIXED,
+            };
+            if strength >= least {
+                self.kept[i] += strength;
+                self.kept[j] += strength;
+                self.found.push((i, j));
+            }
+        }
+        self.found.sort_unstable();
+    }
+
+    /// Whether it makes sense to look at a pair: both may go on, and they are not linked yet.
+    fn open(&self, pair: Pair) -> bool {
+        self.may_go_on(pair.0) && self.may_go_on(pair.1) && self.found.binary_search(&pair).is_err()
+    }
+
+    /// Whether enough of the images lies elsewhere for another link.
+    fn may_go_on(&self, i: usize) -> bool {
+        let least = match self.labels[i].irrep {
+            Some(irrep) => LINK_MIXED.min(LINK_SAME_IRREP / self.group.irreps()[irrep].dimension as f64),
+            None => LINK_MIXED,
+        };
+        1.0 - self.kept[i] >= least
+    }
+}
+
+/// All pairs within every run of as many orbitals of one irrep at one energy as the irrep has partners: nearly all
+/// sets are such.
+fn plain_sets(
+    connected: &Connected<'_>,
+    group: &PointGroup,
+    labels: &[OrbitalLabel],
+    thresholds: &Thresholds,
+    order: &[usize],
+) -> Vec<Pair> {
+    let mut of_irrep: Vec<Vec<usize>> = vec![Vec::new(); group.irreps().len()];
+    for &i in order {
+        if let Some(irrep) = labels[i].irrep {
+            of_irrep[irrep].push(i);
+        }
+    }
+    let energy = |i: usize| connected.orbitals[i].energy.unwrap_or(0.0);
+    let mut pairs = Vec::new();
+    for (irrep, orbitals) in group.irreps().iter().zip(&of_irrep).filter(|(irrep, _)| irrep.dimension > 1) {
+        for run in orbitals.chunk_by(|&a, &b| energy(b) - energy(a) <= thresholds.degeneracy_hartree) {
+            if run.len() == irrep.dimension {
+                pairs.extend(
+                    run.iter().enumerate().flat_map(|(at, &ket)| run[at + 1..].iter().map(move |&bra| (bra, ket))),
+                );
+            }
+        }
+    }
+    pairs
 }
 
 /// Orbitals after the first of `order` that may belong to its set.

@@ -10,7 +10,7 @@ pub mod masses;
 mod molden;
 
 pub use atoms::named_atom;
-pub use molden::{Reading, looks_like_molden, read_molden, read_xyz, write_labels};
+pub use molden::{Reading, looks_like_molden, read_molden, read_molden_passing, read_xyz, write_labels};
 
 use crate::diagnostic::Span;
 use nalgebra::Point3;

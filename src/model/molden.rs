@@ -6,10 +6,11 @@ use super::atoms::{AtomsByNumber, mean_atom, named_atom, set_cores};
 use super::{ANGSTROM_PER_BOHR, Atom, Mode, Molecule, Orbital, OrbitalSet, Shell, Spin, Vibrations};
 use crate::diagnostic::{Diagnostic, Span};
 use crate::grammar::atoms::LengthUnit;
-use crate::grammar::orbitals::{Beyond, RawOrbital, fill_row};
+use crate::grammar::orbitals::{Beyond, Met, RawOrbital, fill_row};
 use crate::grammar::{self, Findings, RawMolden, numbers};
 use nalgebra::Point3;
-use ndarray::{Array2, Axis, parallel::prelude::*};
+use ndarray::Array2;
+use rayon::prelude::*;
 
 /// A result with warnings, or all findings with at least one error.
 pub type Reading = Result<(Molecule, Vec<Diagnostic>), Vec<Diagnostic>>;
@@ -26,15 +27,23 @@ const SHELL_LETTERS: [char; 7] = ['s', 'p', 'd', 'f', 'g', 'h', 'i'];
 /// # Errors
 /// All findings, in the order of the file, when one of them is an error.
 pub fn read_molden(bytes: &[u8]) -> Reading {
-    let (raw, mut findings) = grammar::read(bytes);
-    let molecule = mean(bytes, &raw, &mut findings);
+    read_molden_passing(bytes, &|_| ())
+}
+
+/// As [`read_molden`]; `passed` is told each stretch of the input that is not needed again, but for messages.
+///
+/// # Errors
+/// As [`read_molden`].
+pub fn read_molden_passing(bytes: &[u8], passed: &dyn Fn(Span)) -> Reading {
+    let (raw, mut findings) = grammar::read(bytes, passed);
+    let molecule = mean(bytes, &raw, passed, &mut findings);
     match molecule.filter(|_| !findings.any_error()) {
         Some(molecule) => Ok((molecule, findings.into_sorted())),
         None => Err(findings.into_sorted()),
     }
 }
 
-fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecule> {
+fn mean(bytes: &[u8], raw: &RawMolden, passed: &dyn Fn(Span), findings: &mut Findings) -> Option<Molecule> {
     let text = |span: &Span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned();
     let scale = if raw.unit == Some(LengthUnit::Angstrom) { 1.0 / ANGSTROM_PER_BOHR } else { 1.0 };
     let mut atoms: Vec<Atom> =
@@ -52,6 +61,8 @@ fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecu
     set_cores(bytes, raw, &by_number, &mut atoms, findings);
     let shells = mean_shells(raw, &by_number, findings);
     if findings.any_error() {
+        // What is wrong with the orbitals' keys is worth telling all the same.
+        let _ = raw.headers(bytes).map(|headers| headers.all(findings));
         return None;
     }
     let mut molecule = Molecule {
@@ -61,7 +72,7 @@ fn mean(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Molecu
         orbital_sets: Vec::new(),
         vibrations: mean_vibrations(bytes, raw, findings),
     };
-    molecule.orbital_sets = mean_orbitals(bytes, raw, &molecule.shells, findings);
+    molecule.orbital_sets = mean_orbitals(bytes, raw, &molecule.shells, passed, findings);
     (!findings.any_error()).then_some(molecule)
 }
 
@@ -156,48 +167,30 @@ fn missing_functions(shells: &[Shell], used: usize) -> String {
     }
 }
 
-fn mean_orbitals(bytes: &[u8], raw: &RawMolden, shells: &[Shell], findings: &mut Findings) -> Vec<OrbitalSet> {
-    let n_functions: usize = shells.iter().map(Shell::n_functions).sum();
-    let Some(header) = raw.orbitals_header.clone() else { return Vec::new() };
-    if raw.orbitals.is_empty() {
-        return Vec::new();
+/// Orbitals of one spin as they are read.
+struct Growing {
+    spin: Spin,
+    orbitals: Vec<Orbital>,
+    /// Rows one after the other.
+    coefficients: Vec<f64>,
+    beyond: Option<Beyond>,
+}
+
+impl Growing {
+    fn new(spin: Spin) -> Self {
+        Self { spin, orbitals: Vec::new(), coefficients: Vec::new(), beyond: None }
     }
-    if n_functions == 0 {
-        findings.error(
-            header,
-            "[MO] stands without basis functions: [GTO] is missing or empty",
-            "labels need the functions of the orbitals",
-        );
-        return Vec::new();
-    }
-    let needed = raw.orbitals.len().saturating_mul(n_functions).saturating_mul(8);
-    if needed > bytes.len().saturating_mul(SPARSE_RATIO).saturating_add(SPARSE_FLOOR) {
-        findings.error(
-            header,
-            format!(
-                "{} orbitals over {n_functions} functions need {needed} bytes, too many for a file of {} bytes",
-                raw.orbitals.len(),
-                bytes.len()
-            ),
-            "most coefficients are missing from the file",
-        );
-        return Vec::new();
-    }
-    let mut sets = Vec::new();
-    for (spin, beta) in [(Spin::Alpha, false), (Spin::Beta, true)] {
-        let of_spin: Vec<&RawOrbital> = raw.orbitals.iter().filter(|orbital| orbital.beta == beta).collect();
-        if of_spin.is_empty() {
-            continue;
-        }
-        let mut coefficients = Array2::zeros((of_spin.len(), n_functions));
-        let mistakes: Vec<(Findings, Option<Beyond>)> = coefficients
-            .axis_iter_mut(Axis(0))
-            .into_par_iter()
-            .zip(&of_spin)
-            .map(|(mut row, orbital)| {
+
+    /// Reads the numbers of more orbitals, on all cores.
+    fn extend(&mut self, bytes: &[u8], more: &[&RawOrbital], n_functions: usize, findings: &mut Findings) {
+        let filled = self.coefficients.len();
+        self.coefficients.resize(filled + more.len() * n_functions, 0.0);
+        let mistakes: Vec<(Findings, Option<Beyond>)> = self.coefficients[filled..]
+            .par_chunks_exact_mut(n_functions)
+            .zip(more)
+            .map_init(Met::default, |met, (row, orbital)| {
                 let mut findings = Findings::default();
-                let filled = row.as_slice_mut();
-                let beyond = filled.and_then(|row| fill_row(bytes, orbital.numbers.clone(), row, &mut findings));
+                let beyond = fill_row(bytes, orbital.numbers.clone(), row, met, &mut findings);
                 if findings.is_empty() && beyond.is_none() && row.iter().all(|value| *value == 0.0) {
                     findings.error(
                         orbital.header.clone(),
@@ -208,37 +201,86 @@ fn mean_orbitals(bytes: &[u8], raw: &RawMolden, shells: &[Shell], findings: &mut
                 (findings, beyond)
             })
             .collect();
-        let mut beyond: Option<Beyond> = None;
         for (mistakes, far) in mistakes {
             findings.append(mistakes);
             if let Some(far) = far {
-                let first = beyond.get_or_insert_with(|| far.clone());
+                let first = self.beyond.get_or_insert_with(|| far.clone());
                 first.largest = first.largest.max(far.largest);
             }
         }
-        if let Some(beyond) = beyond {
+        self.orbitals.extend(more.iter().map(|orbital| Orbital {
+            energy: orbital.energy,
+            occupation: orbital.occupation,
+            symmetry: orbital.symmetry.as_ref().map(|span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned()),
+            header: orbital.header.clone(),
+            symmetry_value: orbital.symmetry.clone(),
+        }));
+    }
+
+    /// The whole set, None without orbitals.
+    fn finish(self, shells: &[Shell], n_functions: usize, findings: &mut Findings) -> Option<OrbitalSet> {
+        if let Some(beyond) = self.beyond {
             findings.error(
                 beyond.line,
                 format!("the orbitals use {} functions, [GTO] has {n_functions}", beyond.largest),
                 missing_functions(shells, beyond.largest),
             );
         }
-        let orbitals = of_spin
-            .iter()
-            .map(|orbital| Orbital {
-                energy: orbital.energy,
-                occupation: orbital.occupation,
-                symmetry: orbital
-                    .symmetry
-                    .as_ref()
-                    .map(|span| String::from_utf8_lossy(&bytes[span.clone()]).into_owned()),
-                header: orbital.header.clone(),
-                symmetry_value: orbital.symmetry.clone(),
-            })
-            .collect();
-        sets.push(OrbitalSet { spin, orbitals, coefficients });
+        let mut coefficients = self.coefficients;
+        coefficients.shrink_to_fit();
+        let coefficients = Array2::from_shape_vec((self.orbitals.len(), n_functions), coefficients).ok()?;
+        (!self.orbitals.is_empty()).then_some(OrbitalSet { spin: self.spin, orbitals: self.orbitals, coefficients })
     }
-    sets
+}
+
+/// Bytes of `[MO]` that are read at a time.
+const STRETCH: usize = 16 << 20;
+
+fn mean_orbitals(
+    bytes: &[u8],
+    raw: &RawMolden,
+    shells: &[Shell],
+    passed: &dyn Fn(Span),
+    findings: &mut Findings,
+) -> Vec<OrbitalSet> {
+    let n_functions: usize = shells.iter().map(Shell::n_functions).sum();
+    let (Some(section), Some(mut headers)) = (&raw.orbitals, raw.headers(bytes)) else { return Vec::new() };
+    let room = bytes.len().saturating_mul(SPARSE_RATIO).saturating_add(SPARSE_FLOOR);
+    let needed = |n_orbitals: usize| n_orbitals.saturating_mul(n_functions).saturating_mul(8);
+    let mut n_orbitals = 0;
+    let mut spins = [Growing::new(Spin::Alpha), Growing::new(Spin::Beta)];
+    while let Some(orbitals) = headers.next_orbitals(STRETCH, findings) {
+        n_orbitals += orbitals.len();
+        if n_functions > 0 && needed(n_orbitals) <= room {
+            for (growing, beta) in spins.iter_mut().zip([false, true]) {
+                let of_spin: Vec<&RawOrbital> = orbitals.iter().filter(|orbital| orbital.beta == beta).collect();
+                growing.extend(bytes, &of_spin, n_functions, findings);
+            }
+        }
+        if let (Some(first), Some(last)) = (orbitals.first(), orbitals.last()) {
+            passed(first.header.start..last.numbers.end);
+        }
+    }
+    if n_orbitals > 0 && n_functions == 0 {
+        findings.error(
+            section.header.clone(),
+            "[MO] stands without basis functions: [GTO] is missing or empty",
+            "labels need the functions of the orbitals",
+        );
+    }
+    if needed(n_orbitals) > room {
+        findings.error(
+            section.header.clone(),
+            format!(
+                "{n_orbitals} orbitals over {n_functions} functions need {} bytes, too many for a file of {} bytes",
+                needed(n_orbitals),
+                bytes.len()
+            ),
+            "most coefficients are missing from the file",
+        );
+        return Vec::new();
+    }
+    spins.into_iter().filter_map(|growing| growing.finish(shells, n_functions, findings)).collect()
 }
 
 fn mean_vibrations(bytes: &[u8], raw: &RawMolden, findings: &mut Findings) -> Option<Vibrations> {

@@ -18,7 +18,7 @@ pub use basis::Basis;
 pub use cartesian::angular_projector;
 pub use convention::{ConventionError, Settled, settle};
 pub use moments::{Moments, moments};
-pub use operations::{Operations, Rows};
+pub use operations::{Operations, Pair, Rows};
 pub use overlap::{overlap, overlap_between};
 pub use population::lowdin;
 pub use product::product;

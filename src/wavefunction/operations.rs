@@ -4,9 +4,10 @@
 //! Not here: one operation by permutation (`wavefunction::turn`), one truly turned (`wavefunction::turned`).
 
 use super::product;
-use super::turn::Turning;
+use super::turn::{LANES, Lanes, Turning};
 use super::turned::Turned;
-use ndarray::{Array1, Array2, ArrayView2, Axis, parallel::prelude::*};
+use ndarray::{Array2, ArrayView1, ArrayView2, Axis, parallel::prelude::*};
+use rayon::slice::ParallelSlice;
 
 /// Orbitals of one spin: coefficients and the rows of S·C, both n_orbitals × n_functions.
 #[derive(Debug, Clone, Copy)]
@@ -26,8 +27,8 @@ pub enum Operations {
     Turned(Turned),
 }
 
-/// An orbital and those it may be connected with.
-pub type Candidates = (usize, Vec<usize>);
+/// A bra and a ket, as rows.
+pub type Pair = (usize, usize);
 
 impl Operations {
     /// How many there are.
@@ -45,74 +46,56 @@ impl Operations {
     /// The column of the identity is 1 for normalised orbitals.
     #[must_use]
     pub fn expectations(&self, rows: Rows<'_>) -> Array2<f64> {
-        let Rows { coefficients, products } = rows;
-        let mut values = Array2::zeros((coefficients.nrows(), self.count()));
-        match self {
-            Self::Permuting(turnings) => values
-                .axis_iter_mut(Axis(0))
-                .into_par_iter()
-                .zip(coefficients.axis_iter(Axis(0)))
-                .zip(products.axis_iter(Axis(0)))
-                .for_each(|((mut row, c), sc)| {
-                    for (value, turning) in row.iter_mut().zip(turnings) {
-                        *value = turning.expectation(c, sc);
-                    }
-                }),
-            // One matrix of functions at a time, so that memory stays that of one overlap.
-            Self::Turned(turned) => {
-                for (element, mut column) in values.axis_iter_mut(Axis(1)).enumerate() {
-                    let images = product(coefficients, turned.matrix(element).view());
-                    for ((value, image), c) in column.iter_mut().zip(images.outer_iter()).zip(coefficients.outer_iter())
-                    {
-                        *value = image.dot(&c);
-                    }
-                }
-            }
-        }
-        values
+        let pairs: Vec<Pair> = (0..rows.coefficients.nrows()).map(|i| (i, i)).collect();
+        self.between(rows, &pairs)
     }
 
-    /// Mean over the operations of ⟨i|R|j⟩² for each ket j and each of its candidates i.
+    /// Mean over the operations of ⟨i|R|j⟩² for each pair of a bra i and a ket j.
     ///
     /// # Holds
     /// For two partners of one irrep of dimension d it is 1/d, however the partners are turned (Schur's
     /// lemma); for orbitals of different irreps, or of different sets of one irrep, it is 0.
     #[must_use]
-    pub fn connections(&self, rows: Rows<'_>, candidates: &[Candidates]) -> Vec<Vec<f64>> {
+    pub fn connections(&self, rows: Rows<'_>, pairs: &[Pair]) -> Vec<f64> {
         let scale = 1.0 / self.count().max(1) as f64;
+        let mean = |row: ArrayView1<'_, f64>| scale * row.iter().map(|value| value * value).sum::<f64>();
+        self.between(rows, pairs).outer_iter().map(mean).collect()
+    }
+
+    /// ⟨i|R|j⟩ of every pair under every operation: n_pairs × n_operations.
+    fn between(&self, rows: Rows<'_>, pairs: &[Pair]) -> Array2<f64> {
         let Rows { coefficients, products } = rows;
+        let mut values = Array2::zeros((pairs.len(), self.count()));
+        if pairs.is_empty() {
+            return values;
+        }
         match self {
-            Self::Permuting(turnings) => candidates
-                .par_iter()
-                .map(|(ket, bras)| {
-                    let ket = coefficients.row(*ket);
-                    let mut turned = Array1::zeros(ket.len());
-                    let mut sums = vec![0.0; bras.len()];
-                    for turning in turnings.iter().filter(|_| !bras.is_empty()) {
-                        turning.apply(ket, turned.view_mut());
-                        for (sum, &bra) in sums.iter_mut().zip(bras) {
-                            *sum += products.row(bra).dot(&turned).powi(2) * scale;
+            Self::Permuting(turnings) => {
+                values.axis_chunks_iter_mut(Axis(0), LANES).into_par_iter().zip(pairs.par_chunks(LANES)).for_each_init(
+                    || [Vec::new(), Vec::new()],
+                    |[kets, bras], (mut values, pairs)| {
+                        gather(coefficients, pairs.iter().map(|pair| pair.1), kets);
+                        gather(products, pairs.iter().map(|pair| pair.0), bras);
+                        for (mut column, turning) in values.axis_iter_mut(Axis(1)).zip(turnings) {
+                            let sums = turning.between(kets, bras);
+                            column.iter_mut().zip(sums).for_each(|(value, sum)| *value = sum);
                         }
-                    }
-                    sums
-                })
-                .collect(),
+                    },
+                );
+            }
+            // One matrix of functions at a time, so that memory stays that of one overlap.
             Self::Turned(turned) => {
-                let mut sums: Vec<Vec<f64>> = candidates.iter().map(|(_, bras)| vec![0.0; bras.len()]).collect();
-                if candidates.iter().all(|(_, bras)| bras.is_empty()) {
-                    return sums;
-                }
-                for element in 0..turned.count() {
+                for (element, mut column) in values.axis_iter_mut(Axis(1)).enumerate() {
                     let images = product(coefficients, turned.matrix(element).view());
-                    for (sums, (ket, bras)) in sums.iter_mut().zip(candidates) {
-                        for (sum, &bra) in sums.iter_mut().zip(bras) {
-                            *sum += images.row(bra).dot(&coefficients.row(*ket)).powi(2) * scale;
-                        }
-                    }
+                    column
+                        .axis_iter_mut(Axis(0))
+                        .into_par_iter()
+                        .zip(pairs)
+                        .for_each(|(mut value, &(bra, ket))| value.fill(images.row(bra).dot(&coefficients.row(ket))));
                 }
-                sums
             }
         }
+        values
     }
 
     /// ⟨i|R|j⟩ for all bras i and kets j of one operation: n_bras × n_kets.
@@ -130,6 +113,17 @@ impl Operations {
                 let images = product(bras.coefficients, turned.matrix(element).view());
                 product(images.view(), kets.coefficients.t())
             }
+        }
+    }
+}
+
+/// Up to [`LANES`] rows side by side: one entry a function.
+fn gather(rows: ArrayView2<'_, f64>, chosen: impl Iterator<Item = usize>, lanes: &mut Vec<Lanes>) {
+    lanes.clear();
+    lanes.resize(rows.ncols(), [0.0; LANES]);
+    for (lane, row) in chosen.enumerate() {
+        for (entry, value) in lanes.iter_mut().zip(rows.row(row)) {
+            entry[lane] = *value;
         }
     }
 }

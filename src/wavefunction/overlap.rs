@@ -5,12 +5,13 @@
 
 use super::basis::{Basis, BasisShell};
 use super::cartesian::{self, L_MAX, Powers};
-use ndarray::{Array2, Axis, parallel::prelude::*, s};
+use ndarray::{Array2, ArrayViewMut2, Axis, parallel::prelude::*, s};
+use std::sync::LazyLock;
 
 /// Degrees in one direction, 0 to [`L_MAX`].
 pub(super) const N: usize = L_MAX + 1;
-/// Primitive pairs whose Gaussian factor is below e^−SCREEN are left out: 2e-18.
-const SCREEN: f64 = 41.0;
+/// Primitive pairs whose Gaussian factor is below e^−SCREEN are left out: 9e-17, less than rounding leaves.
+const SCREEN: f64 = 37.0;
 
 /// ⟨μ|ν⟩ of all functions of one basis: n_functions × n_functions, symmetric, unit diagonal.
 ///
@@ -20,11 +21,7 @@ const SCREEN: f64 = 41.0;
 #[must_use]
 pub fn overlap(basis: &Basis) -> Array2<f64> {
     let mut matrix = rectangle(basis, basis, true);
-    for i in 0..basis.n_functions() {
-        for j in 0..i {
-            matrix[(i, j)] = matrix[(j, i)];
-        }
-    }
+    mirror(&mut matrix);
     matrix
 }
 
@@ -47,15 +44,47 @@ fn rectangle(bra: &Basis, ket: &Basis, upper: bool) -> Array2<f64> {
         rows.push(head);
         rest = tail;
     }
-    rows.into_par_iter().zip(bra.shells()).enumerate().for_each(|(a_idx, (mut rows, a))| {
-        let mut block = Block::default();
-        for b in &ket.shells()[if upper { a_idx } else { 0 }..] {
-            if block.fill(a, b) {
-                block.store(a, b, rows.slice_mut(s![.., b.range()]));
+    let widest = |basis: &Basis| -> Vec<f64> {
+        basis.shells().iter().map(|shell| shell.exponents.iter().copied().fold(f64::INFINITY, f64::min)).collect()
+    };
+    let (bra_widest, ket_widest) = (widest(bra), widest(ket));
+    rows.into_par_iter().zip(bra.shells()).enumerate().for_each_init(
+        Block::default,
+        |block, (a_idx, (mut rows, a))| {
+            let from = if upper { a_idx } else { 0 };
+            for (b, beta) in ket.shells().iter().zip(&ket_widest).skip(from) {
+                let alpha = bra_widest[a_idx];
+                let near = alpha * beta / (alpha + beta) * (b.centre - a.centre).norm_squared() <= SCREEN;
+                if near && block.fill(a, b) {
+                    block.store(a, b, rows.slice_mut(s![.., b.range()]));
+                }
+            }
+        },
+    );
+    matrix
+}
+
+/// Rows and columns of a square that are mirrored at a time: two tiles stay in the nearest cache.
+const TILE: usize = 32;
+
+/// Copies what is above the diagonal to below it.
+fn mirror(matrix: &mut Array2<f64>) {
+    let n = matrix.nrows();
+    for start in (0..n).step_by(TILE) {
+        let end = n.min(start + TILE);
+        for i in start..end {
+            for j in start..i {
+                matrix[(i, j)] = matrix[(j, i)];
             }
         }
-    });
-    matrix
+        let (above, mut below) = matrix.view_mut().split_at(Axis(0), end);
+        let above = above.slice(s![start.., end..]);
+        below
+            .axis_chunks_iter_mut(Axis(0), TILE)
+            .into_par_iter()
+            .zip(above.axis_chunks_iter(Axis(1), TILE))
+            .for_each(|(mut rows, columns)| rows.slice_mut(s![.., start..end]).assign(&columns.t()));
+    }
 }
 
 /// A product of two primitives that is not negligible.
@@ -82,8 +111,9 @@ pub(super) fn primitive_pairs<'a>(a: &'a BasisShell, b: &'a BasisShell) -> impl 
         .filter_map(move |(alpha, f, beta, g)| {
             let p = alpha + beta;
             let gaussian = alpha * beta / p * distance_squared;
+            let area = std::f64::consts::PI / p;
             (gaussian <= SCREEN).then(|| PrimitivePair {
-                scale: f * g * (-gaussian).exp() * (std::f64::consts::PI / p).powf(1.5),
+                scale: f * g * (-gaussian).exp() * area * area.sqrt(),
                 beta: *beta,
                 half: 0.5 / p,
                 from_a: std::array::from_fn(|axis| beta / p * apart[axis]),
@@ -112,15 +142,21 @@ impl Block {
         let (bras, kets) = (components(a.l), components(b.l));
         self.clear(a, b);
         let mut any = false;
+        let mut tables = [[[0.0; N]; N]; 3];
         for pair in primitive_pairs(a, b) {
             any = true;
-            let tables: [[[f64; N]; N]; 3] =
-                std::array::from_fn(|axis| one_axis(a.l, b.l, pair.from_a[axis], pair.from_b[axis], pair.half));
-            let mut at = 0;
-            for &[ax, ay, az] in bras {
-                for &[bx, by, bz] in kets {
-                    self.values[at] += pair.scale * tables[0][ax][bx] * tables[1][ay][by] * tables[2][az][bz];
-                    at += 1;
+            if a.l + b.l == 0 {
+                self.values[0] += pair.scale;
+                continue;
+            }
+            for (axis, table) in tables.iter_mut().enumerate() {
+                fill_axis(table, a.l, b.l, pair.from_a[axis], pair.from_b[axis], pair.half);
+            }
+            let [x, y, z] = &tables;
+            for (row, &[ax, ay, az]) in self.values.chunks_exact_mut(kets.len()).zip(bras) {
+                let (x, y, z) = (&x[ax], &y[ay], &z[az]);
+                for (value, &[bx, by, bz]) in row.iter_mut().zip(kets) {
+                    *value += pair.scale * x[bx] * y[by] * z[bz];
                 }
             }
         }
@@ -128,48 +164,51 @@ impl Block {
     }
 
     /// Normalises the components, makes pure functions where the shells are pure, writes the block.
-    pub(super) fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ndarray::ArrayViewMut2<'_, f64>) {
-        let (bras, kets) = (components(a.l), components(b.l));
-        let (left, right) = (scales(a.l), scales(b.l));
-        for (row, scale) in left.iter().enumerate() {
-            for (column, other) in right.iter().enumerate() {
-                self.values[row * kets.len() + column] *= scale * other;
+    pub(super) fn store(&mut self, a: &BasisShell, b: &BasisShell, mut target: ArrayViewMut2<'_, f64>) {
+        let (n_kets, n_columns) = (components(b.l).len(), b.n_functions());
+        // Kets to functions first, then bras.
+        let half = if b.l < 2 {
+            &self.values
+        } else {
+            let functions = functions(b.l, b.pure);
+            self.half.clear();
+            for components in self.values.chunks_exact(n_kets) {
+                self.half.extend(functions.chunks_exact(n_kets).map(|function| dot(function, components)));
             }
-        }
-        // Columns first: kets to functions, then bras.
-        let n_columns = b.n_functions();
-        self.half.clear();
-        self.half.resize(bras.len() * n_columns, 0.0);
-        for row in 0..bras.len() {
-            let source = &self.values[row * kets.len()..(row + 1) * kets.len()];
-            let image = &mut self.half[row * n_columns..(row + 1) * n_columns];
-            if b.pure {
-                let pure = cartesian::pure_over_monomials(b.l);
-                for (column, value) in image.iter_mut().enumerate() {
-                    *value = pure.column(column).iter().zip(source).map(|(factor, value)| factor * value).sum();
-                }
-            } else {
-                image.copy_from_slice(source);
+            &self.half
+        };
+        if a.l < 2 {
+            for (mut row, values) in target.outer_iter_mut().zip(half.chunks_exact(n_columns)) {
+                row.iter_mut().zip(values).for_each(|(target, value)| *target = *value);
             }
+            return;
         }
-        for row in 0..a.n_functions() {
-            for column in 0..n_columns {
-                target[(row, column)] = if a.pure {
-                    let pure = cartesian::pure_over_monomials(a.l);
-                    (0..bras.len()).map(|k| pure[(k, row)] * self.half[k * n_columns + column]).sum()
-                } else {
-                    self.half[row * n_columns + column]
-                };
+        let n_bras = components(a.l).len();
+        for (mut row, function) in target.outer_iter_mut().zip(functions(a.l, a.pure).chunks_exact(n_bras)) {
+            for (column, target) in row.iter_mut().enumerate() {
+                let values = half.iter().skip(column).step_by(n_columns);
+                *target = function.iter().zip(values).map(|(factor, value)| factor * value).sum();
             }
         }
     }
 }
 
+fn dot(a: &[f64], b: &[f64]) -> f64 {
+    a.iter().zip(b).map(|(a, b)| a * b).sum()
+}
+
+/// As [`fill_axis`], in a new table.
+pub(super) fn one_axis<const W: usize>(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> [[f64; W]; N] {
+    let mut table = [[0.0; W]; N];
+    fill_axis(&mut table, la, lb, from_a, from_b, half);
+    table
+}
+
 /// ∫ (x − A)^i (x − B)^j exp(−p(x − P)²) over √(π/p), for i ≤ `la`, j ≤ `lb`.
 ///
 /// `W` is above `lb`.
-pub(super) fn one_axis<const W: usize>(la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) -> [[f64; W]; N] {
-    let mut table = [[0.0; W]; N];
+#[inline]
+fn fill_axis<const W: usize>(table: &mut [[f64; W]; N], la: usize, lb: usize, from_a: f64, from_b: f64, half: f64) {
     table[0][0] = 1.0;
     for j in 0..lb {
         let below = if j > 0 { table[0][j - 1] } else { 0.0 };
@@ -182,26 +221,38 @@ pub(super) fn one_axis<const W: usize>(la: usize, lb: usize, from_a: f64, from_b
             table[i + 1][j] = from_a * table[i][j] + half * (below + across);
         }
     }
-    table
 }
 
-static COMPONENTS: std::sync::LazyLock<Vec<Vec<Powers>>> =
-    std::sync::LazyLock::new(|| (0..=L_MAX).map(cartesian::monomials).collect());
-static SCALES: std::sync::LazyLock<Vec<Vec<f64>>> = std::sync::LazyLock::new(|| {
-    let of = |l: usize| {
-        let top = cartesian::squared_norm([l, 0, 0]);
-        cartesian::monomials(l).into_iter().map(|powers| (top / cartesian::squared_norm(powers)).sqrt()).collect()
+static COMPONENTS: LazyLock<Vec<Vec<Powers>>> = LazyLock::new(|| (0..=L_MAX).map(cartesian::monomials).collect());
+/// By 2l + (1 when pure): every function over the monomials of x^l's constant, function by function.
+static FUNCTIONS: LazyLock<Vec<Vec<f64>>> = LazyLock::new(|| {
+    let of = |l: usize, pure: bool| -> Vec<f64> {
+        let scales = scales(l);
+        let n = scales.len();
+        if pure {
+            let columns = cartesian::pure_over_monomials(l).column_iter();
+            columns
+                .flat_map(|column| column.iter().zip(&scales).map(|(c, scale)| c * scale).collect::<Vec<_>>())
+                .collect()
+        } else {
+            (0..n * n).map(|at| if at / n == at % n { scales[at % n] } else { 0.0 }).collect()
+        }
     };
-    (0..=L_MAX).map(of).collect()
+    (0..=L_MAX).flat_map(|l| [of(l, false), of(l, true)]).collect()
 });
 
 pub(super) fn components(l: usize) -> &'static [Powers] {
     &COMPONENTS[l]
 }
 
+fn functions(l: usize, pure: bool) -> &'static [f64] {
+    &FUNCTIONS[2 * l + usize::from(pure)]
+}
+
 /// What brings each monomial from the constant of x^l to norm one.
-fn scales(l: usize) -> &'static [f64] {
-    &SCALES[l]
+fn scales(l: usize) -> Vec<f64> {
+    let top = cartesian::squared_norm([l, 0, 0]);
+    cartesian::monomials(l).into_iter().map(|powers| (top / cartesian::squared_norm(powers)).sqrt()).collect()
 }
 
 #[cfg(test)]

@@ -24,13 +24,24 @@ pub enum TurningError {
     },
 }
 
+/// One shell carried onto another.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+struct Move {
+    /// First function of the shell.
+    source: usize,
+    /// First function of its image.
+    target: usize,
+    /// Place of the matrix: 2l + (1 when pure).
+    kind: usize,
+}
+
 /// One operation on rows of coefficients.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Turning {
-    /// (offset of the source shell, offset of its image, kind of matrix) for every shell.
-    moves: Vec<(usize, usize, usize)>,
-    /// Matrices of the kinds of shells: 2l + (1 when pure).
-    matrices: Vec<DMatrix<f64>>,
+    moves: Vec<Move>,
+    /// Matrices of the kinds of shells, row by row; empty for kinds that the basis has not.
+    matrices: Vec<Vec<f64>>,
+    n_functions: usize,
 }
 
 impl Turning {
@@ -43,7 +54,7 @@ impl Turning {
         for (shell_idx, shell) in basis.shells().iter().enumerate() {
             of_atom[shell.atom_idx].push(shell_idx);
         }
-        let mut moves = vec![(0, 0, 0); basis.shells().len()];
+        let mut moves = vec![Move { source: 0, target: 0, kind: 0 }; basis.shells().len()];
         for (from, shells) in of_atom.iter().enumerate() {
             let to = permutation[from];
             let unlike = TurningError::UnlikeShells { from, to };
@@ -56,34 +67,83 @@ impl Turning {
                     return Err(unlike);
                 }
                 let kind = 2 * source_shell.l + usize::from(source_shell.pure);
-                moves[source] = (source_shell.offset, image_shell.offset, kind);
+                moves[source] = Move { source: source_shell.offset, target: image_shell.offset, kind };
             }
         }
-        Ok(Self { moves, matrices: kinds_of_matrices(basis, matrix) })
+        let matrices = kinds_of_matrices(basis, matrix);
+        // Column by column of the transpose is row by row of the matrix.
+        let matrices = matrices.iter().map(|matrix| matrix.transpose().as_slice().to_vec()).collect();
+        Ok(Self { moves, matrices, n_functions: basis.n_functions() })
     }
 
     /// Coefficients of the turned orbital.
     pub fn apply(&self, row: ArrayView1<'_, f64>, mut image: ArrayViewMut1<'_, f64>) {
-        for &(source, target, kind) in &self.moves {
+        for &Move { source, target, kind } in &self.moves {
             let matrix = &self.matrices[kind];
-            for k in 0..matrix.nrows() {
-                image[target + k] = (0..matrix.ncols()).map(|j| matrix[(k, j)] * row[source + j]).sum();
+            let size = matrix.len().isqrt();
+            for (k, factors) in matrix.chunks_exact(size).enumerate() {
+                image[target + k] = factors.iter().enumerate().map(|(j, factor)| factor * row[source + j]).sum();
             }
         }
     }
 
-    /// ⟨i|R|i⟩ from an orbital's coefficients and its row of S·C.
-    #[must_use]
-    pub fn expectation(&self, row: ArrayView1<'_, f64>, product: ArrayView1<'_, f64>) -> f64 {
-        let mut sum = 0.0;
-        for &(source, target, kind) in &self.moves {
-            let matrix = &self.matrices[kind];
-            for j in 0..matrix.ncols() {
-                let image: f64 = (0..matrix.nrows()).map(|k| product[target + k] * matrix[(k, j)]).sum();
-                sum += image * row[source + j];
+    /// ⟨i|R|j⟩ of [`LANES`] pairs at once: function by function the coefficients of the kets j and the rows of S·C
+    /// of the bras i.
+    pub(super) fn between(&self, kets: &[Lanes], bras: &[Lanes]) -> Lanes {
+        // The widest vectors that the processor at hand has; sums run in the same order on any.
+        pulp::Arch::new().dispatch(
+            #[inline(always)]
+            || self.sums(kets, bras),
+        )
+    }
+
+    #[inline(always)]
+    fn sums(&self, kets: &[Lanes], bras: &[Lanes]) -> Lanes {
+        let mut sums = [0.0; LANES];
+        if kets.len() < self.n_functions || bras.len() < self.n_functions {
+            return sums;
+        }
+        for &Move { source, target, kind } in &self.moves {
+            let matrix = &self.matrices[kind][..];
+            let (kets, bras) = (&kets[source..], &bras[target..]);
+            match matrix.len() {
+                1 => shell::<1>(matrix, kets, bras, &mut sums),
+                9 => shell::<3>(matrix, kets, bras, &mut sums),
+                25 => shell::<5>(matrix, kets, bras, &mut sums),
+                36 => shell::<6>(matrix, kets, bras, &mut sums),
+                49 => shell::<7>(matrix, kets, bras, &mut sums),
+                81 => shell::<9>(matrix, kets, bras, &mut sums),
+                100 => shell::<10>(matrix, kets, bras, &mut sums),
+                121 => shell::<11>(matrix, kets, bras, &mut sums),
+                169 => shell::<13>(matrix, kets, bras, &mut sums),
+                225 => shell::<15>(matrix, kets, bras, &mut sums),
+                441 => shell::<21>(matrix, kets, bras, &mut sums),
+                _ => shell::<28>(matrix, kets, bras, &mut sums),
             }
         }
-        sum
+        sums
+    }
+}
+
+/// Pairs of orbitals that are worked on together.
+pub(super) const LANES: usize = 16;
+/// One number a pair.
+pub(super) type Lanes = [f64; LANES];
+
+/// Adds Σ over k, j of bra_k D_kj ket_j of one shell of `N` functions.
+#[inline(always)]
+fn shell<const N: usize>(matrix: &[f64], kets: &[Lanes], bras: &[Lanes], sums: &mut Lanes) {
+    let (Some(kets), Some(bras)) = (kets.first_chunk::<N>(), bras.first_chunk::<N>()) else { return };
+    for (factors, bra) in matrix.chunks_exact(N).zip(bras) {
+        let mut image = [0.0; LANES];
+        for (factor, ket) in factors.iter().zip(kets) {
+            for (image, value) in image.iter_mut().zip(ket) {
+                *image += factor * value;
+            }
+        }
+        for ((sum, image), value) in sums.iter_mut().zip(&image).zip(bra) {
+            *sum += image * value;
+        }
     }
 }
 
