@@ -33,6 +33,8 @@ pub enum Verb {
     Transitions(Transitions),
     /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
     Modes(Modes),
+    /// Label many files: one record each, in parallel, resumable, in shards
+    Batch(super::batch::Batch),
 }
 
 /// Options of every verb.
@@ -272,14 +274,14 @@ pub struct Modes {
     pub common: Common,
 }
 
-fn positive(text: &str) -> Result<f64, String> {
+pub(super) fn positive(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value > 0.0 && value.is_finite() => Ok(value),
         _ => Err("expected a number above zero".to_owned()),
     }
 }
 
-fn fraction(text: &str) -> Result<f64, String> {
+pub(super) fn fraction(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value > 0.5 && value <= 1.0 => Ok(value),
         _ => Err("expected a number above 0.5 and up to 1: below, two irreps could both claim the orbital".to_owned()),

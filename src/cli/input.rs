@@ -50,7 +50,18 @@ pub fn open(path: &Path) -> Result<Bytes, CliError> {
     } else {
         map(path).map_err(failed)?
     };
-    if bytes.starts_with(&GZIP) { unpack(&bytes).map(Bytes::Owned).map_err(failed) } else { Ok(bytes) }
+    unpacked(bytes, path)
+}
+
+/// The bytes themselves, or what they hold when they are gzip.
+///
+/// # Errors
+/// [`CliError::Read`] when they cannot be unpacked, or unpack to an absurd size; `path` is only named.
+pub fn unpacked(bytes: Bytes, path: &Path) -> Result<Bytes, CliError> {
+    if !bytes.starts_with(&GZIP) {
+        return Ok(bytes);
+    }
+    unpack(&bytes).map(Bytes::Owned).map_err(|source| CliError::Read { path: path.to_owned(), source })
 }
 
 fn map(path: &Path) -> io::Result<Bytes> {

@@ -4,6 +4,7 @@
 
 pub mod arguments;
 mod audit;
+mod batch;
 mod input;
 mod modes;
 mod output;
@@ -121,6 +122,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
+        Verb::Batch(arguments) => batch::batch(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

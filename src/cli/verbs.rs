@@ -1,11 +1,11 @@
 //! One function a verb: open, call the layers below, deliver.
 
-use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::arguments::{Common, Format, Geometry, Label, Placing, Table};
 use super::input::{self, Bytes};
 use super::placing::choice;
 use super::{CliError, Status, draw, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
-use crate::labelling::{self, LabelError, Thresholds};
+use crate::labelling::{self, Labelled, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Molecule, Reading};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
@@ -53,6 +53,39 @@ fn meaning(
     }
 }
 
+/// What is asked of the labels of one file.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Labelling<'a> {
+    /// Every limit.
+    pub thresholds: Thresholds,
+    /// Which group.
+    pub placing: &'a Placing,
+    /// Orbitals below and above the frontier to list.
+    pub window: Option<(usize, usize)>,
+    /// Populations whatever they cost.
+    pub character: bool,
+}
+
+/// The labels of one file and their document.
+///
+/// # Errors
+/// [`CliError::Label`] for what the file does not allow, [`CliError::Usage`] for a group or frame it does not have.
+pub(super) fn labels(
+    path: &Path,
+    molecule: &mut Molecule,
+    asked: Labelling<'_>,
+) -> Result<(Labelled, Document), CliError> {
+    let choice = choice(asked.placing, molecule)?;
+    let labelled = labelling::label_in(molecule, &asked.thresholds, &choice)
+        .map_err(|source| CliError::Label { path: path.to_owned(), source })?;
+    let small = molecule.n_functions() <= CHARACTER_LIMIT;
+    let lowdin = (small || asked.character).then(|| wavefunction::lowdin(&labelled.settled, molecule)).flatten();
+    let name = path.display().to_string();
+    let wanted = Wanted { window: asked.window, frontier_transitions: small };
+    let document = build::label_document(&name, molecule, &labelled, lowdin.as_deref(), &asked.thresholds, wanted);
+    Ok((labelled, document))
+}
+
 pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
     let path = &arguments.file;
@@ -63,14 +96,9 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
         purity: arguments.purity,
         ..Thresholds::STANDARD
     };
-    let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
-    let choice = choice(&arguments.placing, &molecule)?;
-    let labelled = labelling::label_in(&mut molecule, &thresholds, &choice).map_err(failed)?;
-    let small = molecule.n_functions() <= CHARACTER_LIMIT;
-    let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
-    let name = path.display().to_string();
-    let wanted = Wanted { window: arguments.window, frontier_transitions: small };
-    let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
+    let asked =
+        Labelling { thresholds, placing: &arguments.placing, window: arguments.window, character: arguments.character };
+    let (labelled, document) = labels(path, &mut molecule, asked)?;
     let printed =
         print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
     if let Some(target) = &arguments.write_labels {

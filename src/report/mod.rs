@@ -14,6 +14,10 @@ pub mod states;
 pub mod states_text;
 pub mod placement;
 pub mod purify;
+#[cfg(feature = "parquet")]
+pub mod parquet;
+pub mod record;
+pub mod rows;
 pub mod rule;
 pub mod table;
 pub mod text;
