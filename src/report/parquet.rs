@@ -1,15 +1,18 @@
 //! Rows as Parquet: an open columnar format that data frames and query engines read as it is.
 //!
 //! Rows are gathered into groups of a fixed size, so memory does not grow with their number and the same rows
-//! give the same bytes. Not here: what a row holds (`rows`).
+//! give the same bytes. Here too: which files a table holds. Not here: what a row holds (`rows`).
 
 use super::rows::{Cell, Column, Kind, Line, Rows, columns};
 use parquet::basic::{LogicalType, Repetition, Type as Physical};
 use parquet::data_type::{BoolType, ByteArray, ByteArrayType, DataType, DoubleType, Int64Type};
-use parquet::errors::Result;
+use parquet::errors::{ParquetError, Result};
 use parquet::file::properties::WriterProperties;
+use parquet::file::reader::{FileReader, SerializedFileReader};
 use parquet::file::writer::{SerializedFileWriter, SerializedRowGroupWriter};
+use parquet::record::RowAccessor;
 use parquet::schema::types::Type;
+use std::fs::File;
 use std::io::Write;
 use std::sync::Arc;
 
@@ -30,16 +33,9 @@ impl<W: Write + Send> Table<W> {
     /// # Errors
     /// Whatever the writer reports.
     pub fn new(rows: Rows, out: W) -> Result<Self> {
-        let columns = columns(rows);
-        let fields = columns.iter().map(field).collect::<Result<Vec<_>>>()?;
-        let name = match rows {
-            Rows::Orbitals => "orbitals",
-            Rows::Sets => "sets",
-            Rows::Files => "files",
-        };
-        let schema = Type::group_type_builder(name).with_fields(fields).build()?;
-        let writer = SerializedFileWriter::new(out, Arc::new(schema), Arc::new(WriterProperties::builder().build()))?;
-        Ok(Self { rows, columns, writer, waiting: Vec::new() })
+        let properties = Arc::new(WriterProperties::builder().build());
+        let writer = SerializedFileWriter::new(out, Arc::new(schema(rows)?), properties)?;
+        Ok(Self { rows, columns: columns(rows), writer, waiting: Vec::new() })
     }
 
     /// Adds the rows of one record.
@@ -95,6 +91,63 @@ impl<W: Write + Send> Table<W> {
         group.close()?;
         Ok(())
     }
+}
+
+/// What the rows of one file say of it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct RowHead {
+    /// As given.
+    pub file: String,
+    /// None where the file could not be read.
+    pub hash: Option<String>,
+    /// That of `label`.
+    pub exit_status: u8,
+    /// Where there are labels.
+    pub point_group: Option<String>,
+    /// Why there are none.
+    pub error: Option<String>,
+}
+
+/// The files that a table holds, in order, each once.
+///
+/// # Errors
+/// When the file is no Parquet, or a table with other columns.
+pub fn heads(file: File, rows: Rows) -> Result<Vec<RowHead>> {
+    let reader = SerializedFileReader::new(file)?;
+    let schema = schema(rows)?;
+    let descriptor = reader.metadata().file_metadata().schema_descr();
+    if *descriptor.root_schema() != schema {
+        return Err(ParquetError::General("another table".to_owned()));
+    }
+    let wanted = ["file", "hash", "exit_status", "point_group", "error"];
+    let fields = schema.get_fields().iter().filter(|field| wanted.contains(&field.name())).cloned().collect();
+    let projection = Type::group_type_builder(schema.name()).with_fields(fields).build()?;
+    let mut heads: Vec<RowHead> = Vec::new();
+    for row in reader.get_row_iter(Some(projection))? {
+        let row = row?;
+        let text = |at: usize| row.get_string(at).ok().cloned();
+        let file = row.get_string(0)?;
+        if heads.last().is_none_or(|head| head.file != *file) {
+            heads.push(RowHead {
+                file: file.clone(),
+                hash: text(1),
+                exit_status: u8::try_from(row.get_long(2)?).unwrap_or(u8::MAX),
+                point_group: text(3),
+                error: text(4),
+            });
+        }
+    }
+    Ok(heads)
+}
+
+fn schema(rows: Rows) -> Result<Type> {
+    let fields = columns(rows).iter().map(field).collect::<Result<Vec<_>>>()?;
+    let name = match rows {
+        Rows::Orbitals => "orbitals",
+        Rows::Sets => "sets",
+        Rows::Files => "files",
+    };
+    Type::group_type_builder(name).with_fields(fields).build()
 }
 
 fn field((name, kind): &Column) -> Result<Arc<Type>> {

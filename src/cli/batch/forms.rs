@@ -78,6 +78,18 @@ impl<'a> Form<'a> {
         }
     }
 
+    /// Adds what an output of the same form holds of one record.
+    ///
+    /// # Errors
+    /// Whatever the writer reports.
+    pub fn copy(&mut self, bytes: &[u8]) -> io::Result<()> {
+        match self {
+            Self::Lines(out) | Self::Csv(_, out) => out.write_all(bytes),
+            #[cfg(feature = "parquet")]
+            Self::Parquet(_) => Err(io::Error::new(io::ErrorKind::Unsupported, "Parquet holds no records to copy")),
+        }
+    }
+
     /// Writes what is left.
     ///
     /// # Errors

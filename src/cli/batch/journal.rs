@@ -6,6 +6,7 @@
 use super::super::{CliError, output};
 use super::arguments::{Batch, BatchFormat};
 use super::forms::Form;
+use crate::report::rows::{self, Rows};
 use serde::Deserialize;
 use std::collections::HashMap;
 use std::fs::{File, OpenOptions, TryLockError};
@@ -27,6 +28,21 @@ pub struct Head {
     pub geometry: Option<Geometry>,
 }
 
+impl Head {
+    /// What a row of any table says.
+    fn of_row(row: &csv::StringRecord) -> Option<Self> {
+        let text = |cell: &str| (!cell.is_empty()).then(|| cell.to_owned());
+        let [file, hash, exit_status, point_group] = [0, 1, 2, 3].map(|at| row.get(at));
+        Some(Self {
+            file: file?.to_owned(),
+            hash: hash.and_then(text),
+            exit_status: exit_status?.parse().ok()?,
+            error: row.get(row.len().checked_sub(1)?).and_then(text),
+            geometry: point_group.and_then(text).map(|point_group| Geometry { point_group }),
+        })
+    }
+}
+
 /// The group of the labels.
 #[derive(Debug, Clone, PartialEq, Eq, Deserialize)]
 pub struct Geometry {
@@ -40,6 +56,12 @@ pub struct Place {
     source: Source,
     offset: u64,
     length: usize,
+}
+
+impl Place {
+    fn stretch(&mut self, end: u64) {
+        self.length = usize::try_from(end.saturating_sub(self.offset)).unwrap_or(usize::MAX);
+    }
 }
 
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -61,21 +83,64 @@ impl Kept {
         (head.hash.as_deref() == Some(hash)).then(|| (*place, head.clone()))
     }
 
-    /// Takes what an output of JSON Lines holds; without the file, nothing.
+    /// Takes what the output of an earlier run holds; without the file, or of another form, nothing.
     ///
     /// # Errors
     /// [`CliError::Read`] when it is there and cannot be read.
-    pub fn read_output(&mut self, path: &Path) -> Result<(), CliError> {
+    pub fn read_output(&mut self, path: &Path, arguments: &Batch) -> Result<(), CliError> {
         let failed = |source: io::Error| CliError::Read { path: path.to_owned(), source };
-        match File::open(path) {
-            Ok(file) => self.read(file, Source::Output).map(drop).map_err(failed),
-            Err(error) if error.kind() == io::ErrorKind::NotFound => Ok(()),
-            Err(error) => Err(failed(error)),
+        let file = match File::open(path) {
+            Ok(file) => file,
+            Err(error) if error.kind() == io::ErrorKind::NotFound => return Ok(()),
+            Err(error) => return Err(failed(error)),
+        };
+        match arguments.format {
+            BatchFormat::Json => self.read_lines(file, Source::Output).map(drop).map_err(failed),
+            BatchFormat::Csv => self.read_csv(file, arguments.rows()).map_err(failed),
+            // Its columns cannot be taken over a file at a time: see `finished`.
+            BatchFormat::Parquet => Ok(()),
         }
     }
 
+    /// Takes the rows of each file in a CSV output with the same columns.
+    fn read_csv(&mut self, file: File, rows: Rows) -> io::Result<()> {
+        let mut reader = csv::ReaderBuilder::new().has_headers(false).flexible(true).from_reader(BufReader::new(file));
+        let mut row = csv::StringRecord::new();
+        let columns = rows::columns(rows);
+        let mut begun: Option<(Place, Head)> = None;
+        for number in 0.. {
+            let more = match reader.read_record(&mut row) {
+                Err(error) if error.is_io_error() => return Err(error.into()),
+                // What is no such table is made anew.
+                Err(_) => return Ok(()),
+                Ok(more) => more,
+            };
+            if number == 0 {
+                if !row.iter().eq(columns.iter().map(|column| column.0)) {
+                    return Ok(());
+                }
+                continue;
+            }
+            let offset = row.position().map_or(0, csv::Position::byte);
+            let next = if more { Head::of_row(&row) } else { None };
+            match (&mut begun, &next) {
+                (Some((place, head)), Some(next)) if head.file == next.file => place.stretch(reader.position().byte()),
+                _ => {
+                    if let Some((place, head)) = begun.take() {
+                        self.by_file.insert(head.file.clone(), (place, head));
+                    }
+                    let Some(head) = next else { return Ok(()) };
+                    let mut place = Place { source: Source::Output, offset, length: 0 };
+                    place.stretch(reader.position().byte());
+                    begun = Some((place, head));
+                }
+            }
+        }
+        Ok(())
+    }
+
     /// Takes all whole lines that are records; gives the length of all whole lines.
-    fn read(&mut self, file: File, source: Source) -> io::Result<u64> {
+    fn read_lines(&mut self, file: File, source: Source) -> io::Result<u64> {
         let mut reader = BufReader::new(file);
         let mut line = Vec::new();
         let mut offset = 0;
@@ -130,7 +195,7 @@ impl Journal {
                 path.display()
             )));
         }
-        let length = kept.read(file.try_clone().map_err(failed)?, Source::Journal).map_err(failed)?;
+        let length = kept.read_lines(file.try_clone().map_err(failed)?, Source::Journal).map_err(failed)?;
         file.set_len(length).and_then(|()| file.seek(SeekFrom::Start(length))).map_err(failed)?;
         Ok(Self { target: target.to_owned(), path, file, length })
     }
@@ -153,8 +218,7 @@ impl Journal {
     pub fn finish(self, arguments: &Batch, places: &[Place]) -> Result<(), CliError> {
         let Self { target, path, mut file, length } = self;
         let failed = |source: io::Error| CliError::Write { path: Some(target.clone()), source };
-        let lines = arguments.format == BatchFormat::Json;
-        if lines && is_whole(places, Source::Journal, length) {
+        if arguments.format == BatchFormat::Json && is_whole(places, Source::Journal, 0, length) {
             file.sync_all().map_err(failed)?;
             if let Ok(metadata) = target.metadata() {
                 file.set_permissions(metadata.permissions()).map_err(failed)?;
@@ -162,7 +226,8 @@ impl Journal {
             return std::fs::rename(&path, &target).map_err(failed);
         }
         let old = target.metadata().map_or(0, |metadata| metadata.len());
-        if !(lines && old > 0 && is_whole(places, Source::Output, old)) {
+        let header = if arguments.format == BatchFormat::Csv { rows::csv_header(arguments.rows()).len() } else { 0 };
+        if places.is_empty() || !is_whole(places, Source::Output, header as u64, old) {
             let mut earlier = match places.iter().any(|place| place.source == Source::Output) {
                 true => Some(File::open(&target).map_err(failed)?),
                 false => None,
@@ -171,14 +236,17 @@ impl Journal {
                 let mut form = Form::to_file(arguments, out)?;
                 let mut line = Vec::new();
                 for place in places {
-                    let from = match (place.source, &mut earlier) {
-                        (Source::Output, Some(earlier)) => earlier,
-                        _ => &mut file,
-                    };
                     line.resize(place.length, 0);
-                    from.seek(SeekFrom::Start(place.offset))?;
-                    from.read_exact(&mut line)?;
-                    form.add(&line)?;
+                    match (place.source, &mut earlier) {
+                        (Source::Output, Some(earlier)) => {
+                            read_at(earlier, *place, &mut line)?;
+                            form.copy(&line)?;
+                        }
+                        _ => {
+                            read_at(&mut file, *place, &mut line)?;
+                            form.add(&line)?;
+                        }
+                    }
                 }
                 form.finish()
             })?;
@@ -187,9 +255,14 @@ impl Journal {
     }
 }
 
-/// Whether the records, in this order, are all that the file of `length` bytes holds.
-fn is_whole(places: &[Place], source: Source, length: u64) -> bool {
-    let mut end = 0;
+fn read_at(file: &mut File, place: Place, bytes: &mut [u8]) -> io::Result<()> {
+    file.seek(SeekFrom::Start(place.offset))?;
+    file.read_exact(bytes)
+}
+
+/// Whether the records, in this order, are all that the file holds from `start` to `length`, its end.
+fn is_whole(places: &[Place], source: Source, start: u64, length: u64) -> bool {
+    let mut end = start;
     for place in places {
         if place.source != source || place.offset != end {
             return false;

@@ -5,6 +5,8 @@
 //! Not here: the keys of a record (`report::record`), the columns of a table (`report::rows`).
 
 mod arguments;
+#[cfg(feature = "parquet")]
+mod finished;
 mod forms;
 mod in_order;
 mod inputs;
@@ -95,8 +97,13 @@ fn into_file(
     summary: &mut Summary,
 ) -> Result<(), CliError> {
     let mut kept = Kept::default();
-    if arguments.resume && arguments.format == BatchFormat::Json {
-        kept.read_output(path)?;
+    if arguments.resume {
+        #[cfg(feature = "parquet")]
+        if arguments.format == BatchFormat::Parquet && finished::is_current(path, names, settings, arguments, summary)?
+        {
+            return Ok(());
+        }
+        kept.read_output(path, arguments)?;
     }
     let mut journal = Journal::open(path, arguments.resume, &mut kept)?;
     let mut places: Vec<Place> = Vec::with_capacity(names.len());

@@ -101,6 +101,12 @@ pub fn outcome(path: &Path, settings: &Settings<'_>, kept: &Kept) -> Outcome {
     made(record)
 }
 
+/// The hash that the record of a file has, where the file can be read.
+#[cfg(feature = "parquet")]
+pub fn hash(path: &Path, settings: &Settings<'_>) -> Option<String> {
+    read(path).ok().map(|bytes| settings.hash(&bytes))
+}
+
 fn head(file: &str, hash: Option<String>) -> RecordHead {
     RecordHead { file: file.to_owned(), hash, exit_status: Status::Done as u8, diagnostics: Vec::new() }
 }
