@@ -7,7 +7,7 @@ use std::process::Command;
 
 /// Line by line the same words; numbers may differ by 1e-6 of the larger of themselves and one.
 fn same(kept: &str, printed: &str) -> bool {
-    const WORD_ENDS: [char; 6] = [' ', ',', ';', '(', ')', '"'];
+    const WORD_ENDS: [char; 11] = [' ', ',', ';', ':', '(', ')', '[', ']', '{', '}', '"'];
     let word = |kept: &str, printed: &str| match (kept.parse::<f64>(), printed.parse::<f64>()) {
         (Ok(a), Ok(b)) => (a - b).abs() <= 1e-6 * a.abs().max(1.0),
         _ => kept == printed,
