@@ -219,21 +219,20 @@ fn rows_of_files_tell_the_frontier() {
 
 #[test]
 fn shards_in_order_are_the_whole() {
-    let runs = Runs::new(31);
-    for form in [&["--format", "json"][..], &["--format", "csv"], &["--format", "csv", "--rows", "orbitals"]] {
-        let whole = runs.batch(&[&["runs"], form].concat());
-        for n in [1, 2, 4, 50] {
-            let names: Vec<String> = (1..=n).map(|i| format!("part-{i}.jsonl")).collect();
-            let mut joined = Vec::new();
-            for (i, name) in names.iter().enumerate() {
-                let shard = format!("{}/{n}", i + 1);
-                runs.batch(&["runs", "--shard", &shard, "--output", name]);
-                joined.extend(std::fs::read(runs.path().join(name)).unwrap());
-            }
-            if form == ["--format", "json"] {
-                assert!(joined == whole.stdout, "{n} shards joined differ");
-            }
-            let names: Vec<&str> = names.iter().map(String::as_str).collect();
+    let runs = Runs::new(13);
+    let forms = [&["--format", "json"][..], &["--format", "csv"], &["--format", "csv", "--rows", "orbitals"]];
+    let wholes = forms.map(|form| runs.batch(&[&["runs"], form].concat()));
+    for n in [1, 2, 4, 20] {
+        let names: Vec<String> = (1..=n).map(|i| format!("part-{i}.jsonl")).collect();
+        let mut joined = Vec::new();
+        for (i, name) in names.iter().enumerate() {
+            let shard = format!("{}/{n}", i + 1);
+            runs.batch(&["runs", "--shard", &shard, "--output", name]);
+            joined.extend(std::fs::read(runs.path().join(name)).unwrap());
+        }
+        assert!(joined == wholes[0].stdout, "{n} shards joined differ");
+        let names: Vec<&str> = names.iter().map(String::as_str).collect();
+        for (form, whole) in forms.iter().zip(&wholes) {
             let merged = runs.batch(&[&["--merge"], &names[..], form].concat());
             assert!(merged.stdout == whole.stdout, "{n} shards merged differ in {form:?}");
             assert_eq!((merged.status.code(), &merged.stderr), (whole.status.code(), &whole.stderr));
@@ -278,7 +277,7 @@ fn forms() -> Vec<&'static [&'static str]> {
 
 #[test]
 fn a_run_torn_at_any_byte_is_resumed_to_the_same_bytes() {
-    let runs = Runs::new(20);
+    let runs = Runs::new(9);
     let lines_of_records = runs.batch(&["runs"]).stdout;
     for form in forms() {
         let unbroken = runs.to_file("unbroken", &[&["runs"], form].concat());
@@ -338,7 +337,7 @@ fn kept(runs: &Runs, form: &[&str], arguments: &[&str]) -> usize {
 #[test]
 fn a_resume_follows_what_has_changed() {
     for form in forms().into_iter().filter(|form| !form.contains(&"parquet")) {
-        let runs = Runs::new(16);
+        let runs = Runs::new(9);
         let kept = |arguments: &[&str]| kept(&runs, form, arguments);
         let all = runs.names().len();
         assert_eq!(kept(&["runs"]), 0);

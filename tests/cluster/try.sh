@@ -1,7 +1,7 @@
 #!/usr/bin/env bash
 # Runs the examples for real and compares: an array of four Slurm shards and a Snakemake workflow must give the bytes of
-# one run without shards. try.sh FOLDER, with `orbsieve` on the PATH; needs root and Debian's slurm-wlm and munge, and
-# snakemake. FOLDER must not be there yet.
+# one run without shards; then the result is read. try.sh FOLDER, with `orbsieve` (built with Parquet) on the PATH; needs root,
+# Debian's slurm-wlm and munge, and from Python snakemake, duckdb and polars. FOLDER must not be there yet.
 set -euo pipefail
 
 here=$(dirname "$(realpath "$0")")
@@ -10,14 +10,14 @@ cd "$1"
 
 # The fixtures of this repository as runs, one of them cut short.
 ln -s "$here/../molecules" runs
-ls runs/*.molden > files.list
+ls runs/{nwchem,psi3,openmolcas}_*.molden > files.list
 echo "\$ wc -l < files.list"
 wc -l < files.list
 echo "\$ orbsieve batch --files-from files.list --output whole.jsonl"
-orbsieve batch --files-from files.list --output whole.jsonl || echo "exit status $?"
+orbsieve batch --files-from files.list --output whole.jsonl 2>&1 || echo "exit status $?"
 
-"$here/one-node-slurm.sh" start slurm > /dev/null
-trap '"$here/one-node-slurm.sh" stop slurm' EXIT
+"$here/one-node-slurm.sh" start "$PWD/slurm" > /dev/null
+trap "'$here/one-node-slurm.sh' stop '$PWD/slurm'" EXIT
 export SLURM_CONF=$PWD/slurm/slurm.conf
 echo "\$ sinfo"
 sinfo
@@ -36,6 +36,14 @@ mkdir workflow
 cd workflow
 ln -s ../runs ../files.list .
 echo "\$ snakemake --snakefile Snakefile --cores 2 --config list=files.list shards=4"
-snakemake --snakefile "$here/Snakefile" --cores 2 --config list=files.list shards=4 --quiet rules 2>&1
+snakemake --snakefile "$here/Snakefile" --cores 2 --config list=files.list shards=4 --quiet all 2>&1
 echo "\$ cmp labels.jsonl ../whole.jsonl && echo same"
 cmp labels.jsonl ../whole.jsonl && echo same
+
+cd ..
+echo "\$ orbsieve batch --merge labels.jsonl --format parquet --output labels.parquet --quiet"
+orbsieve batch --merge labels.jsonl --format parquet --output labels.parquet --quiet || echo "exit status $?"
+echo "\$ python read_with_duckdb.py"
+python3 "$here/read_with_duckdb.py"
+echo "\$ python read_with_polars.py"
+python3 "$here/read_with_polars.py"
