@@ -3,6 +3,7 @@
 //! Minutes without optimisation, so only on demand:
 //! `cargo test --release --features parquet --test batch_thousand -- --ignored --nocapture`
 #![allow(clippy::unwrap_used, reason = "a test may stop at once")]
+#![allow(clippy::print_stdout, reason = "it measures")]
 
 #[path = "support/runs.rs"]
 mod runs;

@@ -127,7 +127,7 @@ pub struct Line {
     #[serde(default)]
     orbitals: Vec<Orbital>,
     #[serde(default)]
-    sets: Vec<Set>,
+    sets: Vec<Level>,
     frontier: Option<Frontier>,
 }
 
@@ -168,14 +168,14 @@ struct Orbital {
 }
 
 #[derive(Debug, Clone, Deserialize)]
-struct Share {
+struct Part {
     atoms: String,
     shell: String,
     share: f64,
 }
 
 #[derive(Debug, Clone, Deserialize)]
-struct Set {
+struct Level {
     set: i64,
     spin: String,
     irrep: Option<String>,
@@ -186,7 +186,7 @@ struct Set {
     electrons: Option<f64>,
     complete: bool,
     purity: f64,
-    character: Vec<Share>,
+    character: Vec<Part>,
 }
 
 #[derive(Debug, Clone, Deserialize)]
@@ -252,7 +252,7 @@ impl Line {
         row
     }
 
-    fn set(&self, number: usize) -> Option<&Set> {
+    fn set(&self, number: usize) -> Option<&Level> {
         self.sets.get(number.checked_sub(1)?)
     }
 
@@ -309,7 +309,7 @@ impl Line {
     }
 }
 
-fn of_set(set: &Set) -> Vec<Cell> {
+fn of_set(set: &Level) -> Vec<Cell> {
     let orbitals: Vec<String> = set.orbitals.iter().map(ToString::to_string).collect();
     let character: Vec<String> =
         set.character.iter().map(|share| format!("{} {} {:.4}", share.atoms, share.shell, share.share)).collect();

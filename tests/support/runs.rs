@@ -4,7 +4,8 @@
 #![allow(dead_code, reason = "each test takes what it needs")]
 
 use flate2::{Compression, write::GzEncoder};
-use std::io::Write;
+use std::fs::File;
+use std::io::{Read, Write};
 use std::path::{Path, PathBuf};
 use std::process::{Command, Output, Stdio};
 use std::time::Duration;
@@ -127,21 +128,37 @@ pub fn lines(bytes: &[u8]) -> Vec<&[u8]> {
     bytes.split(|byte| *byte == b'\n').filter(|line| !line.is_empty()).collect()
 }
 
-fn whole_lines(path: &Path) -> Option<usize> {
-    Some(std::fs::read(path).ok()?.iter().filter(|byte| **byte == b'\n').count())
+/// Counts the lines of a file that grows.
+#[derive(Default)]
+struct Growing {
+    file: Option<File>,
+    lines: usize,
+}
+
+impl Growing {
+    fn lines(&mut self, path: &Path) -> usize {
+        self.file = self.file.take().or_else(|| File::open(path).ok());
+        let mut fresh = Vec::new();
+        if let Some(file) = &mut self.file {
+            file.read_to_end(&mut fresh).unwrap();
+        }
+        self.lines += fresh.split(|byte| *byte == b'\n').count() - 1;
+        self.lines
+    }
 }
 
 /// Kills a run (SIGKILL) once its journal holds `records`; how many it then holds, None when the run ended first.
 pub fn killed_after(mut command: Command, journal: &Path, records: usize) -> Option<usize> {
     let mut child = command.stdout(Stdio::null()).stderr(Stdio::null()).spawn().unwrap();
+    let mut growing = Growing::default();
     loop {
         if child.try_wait().unwrap().is_some() {
             return None;
         }
-        if whole_lines(journal).is_some_and(|met| met >= records) {
+        if growing.lines(journal) >= records {
             child.kill().unwrap();
             child.wait().unwrap();
-            return whole_lines(journal);
+            return Some(growing.lines(journal));
         }
         std::thread::sleep(Duration::from_micros(300));
     }

@@ -7,6 +7,7 @@ use std::path::PathBuf;
 
 /// `batch`.
 #[derive(Debug, Args)]
+#[expect(clippy::struct_excessive_bools, reason = "each is a flag that a person types")]
 pub struct Batch {
     /// Molden-format files, plain or gzip; patterns such as 'runs/**/*.molden'; of a folder, the files with `.molden`
     /// in their name
@@ -82,7 +83,7 @@ impl Batch {
     pub(super) fn rows(&self) -> Rows {
         match (self.rows, self.format) {
             (Some(BatchRows::Orbitals), _) | (None, BatchFormat::Parquet) => Rows::Orbitals,
-            (Some(BatchRows::Sets), _) | (None, _) => Rows::Sets,
+            (Some(BatchRows::Sets) | None, _) => Rows::Sets,
             (Some(BatchRows::Files), _) => Rows::Files,
         }
     }

@@ -16,7 +16,7 @@ pub enum Form<'a> {
     Csv(Rows, Box<dyn Write + 'a>),
     /// Rows in columns.
     #[cfg(feature = "parquet")]
-    Parquet(crate::report::parquet::Table<&'a mut File>),
+    Parquet(Box<crate::report::parquet::Table<&'a mut File>>),
 }
 
 /// What this build or this way of writing cannot do.
@@ -60,7 +60,7 @@ impl<'a> Form<'a> {
         #[cfg(feature = "parquet")]
         if arguments.format == BatchFormat::Parquet {
             let table = crate::report::parquet::Table::new(arguments.rows(), file);
-            return table.map(Self::Parquet).map_err(io::Error::other);
+            return table.map(|table| Self::Parquet(Box::new(table))).map_err(io::Error::other);
         }
         Self::new(arguments, BufWriter::new(file))
     }

@@ -170,7 +170,7 @@ mod tests {
             let mut met = Vec::new();
             let job = |i: usize| {
                 begun.fetch_add(1, Ordering::SeqCst);
-                if i % 7 == 0 {
+                if i.is_multiple_of(7) {
                     std::thread::sleep(std::time::Duration::from_millis(2));
                 }
                 i * i

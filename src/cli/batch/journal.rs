@@ -228,24 +228,19 @@ impl Journal {
         let old = target.metadata().map_or(0, |metadata| metadata.len());
         let header = if arguments.format == BatchFormat::Csv { rows::csv_header(arguments.rows()).len() } else { 0 };
         if places.is_empty() || !is_whole(places, Source::Output, header as u64, old) {
-            let mut earlier = match places.iter().any(|place| place.source == Source::Output) {
-                true => Some(File::open(&target).map_err(failed)?),
-                false => None,
-            };
+            let from_output = places.iter().any(|place| place.source == Source::Output);
+            let mut earlier = from_output.then(|| File::open(&target)).transpose().map_err(failed)?;
             output::replace(&target, |out| {
                 let mut form = Form::to_file(arguments, out)?;
                 let mut line = Vec::new();
                 for place in places {
                     line.resize(place.length, 0);
-                    match (place.source, &mut earlier) {
-                        (Source::Output, Some(earlier)) => {
-                            read_at(earlier, *place, &mut line)?;
-                            form.copy(&line)?;
-                        }
-                        _ => {
-                            read_at(&mut file, *place, &mut line)?;
-                            form.add(&line)?;
-                        }
+                    if let (Source::Output, Some(earlier)) = (place.source, &mut earlier) {
+                        read_at(earlier, *place, &mut line)?;
+                        form.copy(&line)?;
+                    } else {
+                        read_at(&mut file, *place, &mut line)?;
+                        form.add(&line)?;
                     }
                 }
                 form.finish()

@@ -20,24 +20,22 @@ pub fn merge(
     summary: &mut Summary,
     out: &mut dyn Write,
 ) -> Result<(), CliError> {
-    let mut wrong = None;
-    let written = match arguments.output.as_deref() {
-        Some(path) => output::replace(path, |file| {
-            let mut form = Form::to_file(arguments, file)?;
-            wrong = join(results, &mut form, summary).err();
-            match wrong {
-                None => form.finish(),
-                // Keeps the file that is there; the reason is told below.
-                Some(_) => Err(io::Error::other("not merged")),
-            }
-        }),
-        None => {
-            let failed = |source: io::Error| CliError::Write { path: None, source };
-            let mut form = Form::new(arguments, out).map_err(failed)?;
-            join(results, &mut form, summary)?;
-            form.finish().map_err(failed)
-        }
+    let Some(path) = arguments.output.as_deref() else {
+        let failed = |source: io::Error| CliError::Write { path: None, source };
+        let mut form = Form::new(arguments, out).map_err(failed)?;
+        join(results, &mut form, summary)?;
+        return form.finish().map_err(failed);
     };
+    let mut wrong = None;
+    let written = output::replace(path, |file| {
+        let mut form = Form::to_file(arguments, file)?;
+        wrong = join(results, &mut form, summary).err();
+        match wrong {
+            None => form.finish(),
+            // Keeps the file that is there; the reason is told below.
+            Some(_) => Err(io::Error::other("not merged")),
+        }
+    });
     wrong.map_or(written, Err)
 }
 
