@@ -144,6 +144,9 @@ fn bytes_do_not_depend_on_threads() {
             assert!(with(threads) == one, "{threads} threads differ in {form:?}");
         }
     }
+    // Fewer files than threads: each file has several.
+    let benzene = |threads: &str| runs.batch(&["runs/run-0007.molden", "--threads", threads]).stdout;
+    assert!(benzene("4") == benzene("1"));
 }
 
 #[test]
