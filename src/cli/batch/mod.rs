@@ -15,7 +15,7 @@ mod merge;
 mod summary;
 mod work;
 
-pub use arguments::{Batch, BatchFormat};
+pub use arguments::Batch;
 
 use super::{CliError, Status, output};
 use forms::Form;
@@ -99,7 +99,8 @@ fn into_file(
     let mut kept = Kept::default();
     if arguments.resume {
         #[cfg(feature = "parquet")]
-        if arguments.format == BatchFormat::Parquet && finished::is_current(path, names, settings, arguments, summary)?
+        if arguments.format == arguments::BatchFormat::Parquet
+            && finished::is_current(path, names, settings, arguments, summary)?
         {
             return Ok(());
         }
