@@ -17,4 +17,6 @@ pub mod purify;
 pub mod selection;
 pub mod modes;
 pub mod report;
+pub mod picture;
+pub mod page;
 pub mod cli;

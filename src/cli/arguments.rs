@@ -61,6 +61,8 @@ pub enum Format {
     Json,
     /// One row a set; energies in hartree
     Csv,
+    /// `label`: a page for the browser with pictures, all in one file
+    Html,
 }
 
 /// Which group the labels are in.
@@ -100,6 +102,9 @@ pub struct Label {
     /// Compute what orbitals are made of even for large bases
     #[arg(long)]
     pub character: bool,
+    /// With --format html: draw the orbitals of the K highest sets with electrons and the L lowest empty ones
+    #[arg(long, value_name = "K,L", value_parser = window, default_value = "2,2")]
+    pub pictures: (usize, usize),
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,

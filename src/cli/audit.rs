@@ -38,7 +38,7 @@ pub fn audit(arguments: &Audit, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let printed = match arguments.common.format {
         Format::Text => audit_text(&document, arguments.all).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("audit prints text or json, not csv".to_owned())),
+        format @ (Format::Csv | Format::Html) => return Err(CliError::no_form("audit", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(match found.verdict() {

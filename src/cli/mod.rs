@@ -7,6 +7,7 @@ mod audit;
 mod input;
 mod modes;
 mod output;
+mod page;
 mod placing;
 mod purify;
 mod states;
@@ -15,7 +16,8 @@ mod verbs;
 
 use crate::diagnostic::{self, Diagnostic};
 use crate::labelling::LabelError;
-use arguments::{Arguments, Common, Verb};
+use arguments::{Arguments, Common, Format, Verb};
+use clap::ValueEnum as _;
 use std::io::{self, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -84,6 +86,12 @@ pub enum CliError {
 }
 
 impl CliError {
+    /// A verb was asked for a form that it does not have.
+    fn no_form(verb: &str, forms: &str, asked: Format) -> Self {
+        let asked = asked.to_possible_value().map_or_else(String::new, |value| value.get_name().to_owned());
+        Self::Usage(format!("{verb} prints {forms}, not {asked}"))
+    }
+
     fn status(&self) -> Status {
         match self {
             Self::Usage(_)

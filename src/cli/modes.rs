@@ -49,6 +49,7 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
         Format::Text => modes_text(&document).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => rows(|out| csv::write_modes(&document, out))?,
+        format @ Format::Html => return Err(CliError::no_form("modes", "text, json or csv", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -54,7 +54,7 @@ pub fn purify(arguments: &Purify, out: &mut dyn Write, errors: &mut dyn Write) -
     let report = match arguments.common.format {
         Format::Text => purify_text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("purify reports in text or json, not csv".to_owned())),
+        format @ (Format::Csv | Format::Html) => return Err(CliError::no_form("purify", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &result, out)?;
     // Without a file the orbitals are the output, and the report goes beside.

@@ -35,6 +35,7 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
         Format::Text => transitions_text(&document).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => rows(|out| csv::write_transitions(&document, out))?,
+        format @ Format::Html => return Err(CliError::no_form("transitions", "text, json or csv", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -71,10 +71,13 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let name = path.display().to_string();
     let wanted = Wanted { window: arguments.window, frontier_transitions: small };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
-    let printed =
-        print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
-    if let Some(target) = &arguments.write_labels {
-        let labels = build::sym_labels(&labelled);
+    let labels = arguments.write_labels.as_ref().map(|_| build::sym_labels(&labelled));
+    let printed = if arguments.common.format == Format::Html {
+        super::page::page(&document, &molecule, labelled, &thresholds, arguments.pictures)?
+    } else {
+        print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?
+    };
+    if let Some((target, labels)) = arguments.write_labels.as_ref().zip(labels) {
         output::deliver(Some(target), &model::write_labels(&bytes, &molecule, &labels), out)?;
     }
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
@@ -105,7 +108,7 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
         let printed = match arguments.common.format {
             Format::Text => rule::text(&document).into_bytes(),
             Format::Json => json(&document)?,
-            Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+            format @ (Format::Csv | Format::Html) => return Err(CliError::no_form("table", "text or json", format)),
         };
         output::deliver(arguments.common.output.as_deref(), &printed, out)?;
         return Ok(Status::Done);
@@ -114,7 +117,7 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
     let printed = match arguments.common.format {
         Format::Text => table::text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        format @ (Format::Csv | Format::Html) => return Err(CliError::no_form("table", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
@@ -129,6 +132,7 @@ fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) ->
             Err(CliError::Usage("geometry prints text or json: csv has one row a set of orbitals".to_owned()))
         }
         Format::Csv => rows(|out| csv::write_sets(document, out)),
+        format @ Format::Html => Err(CliError::no_form("geometry", "text or json", format)),
     }
 }
 
