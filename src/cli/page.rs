@@ -2,6 +2,7 @@
 
 use super::CliError;
 use crate::audit::{self, Limits};
+use crate::labelling::partners::standard_partners;
 use crate::labelling::{Labelled, SpinLabels, Thresholds, frontier};
 use crate::model::Molecule;
 use crate::page::{self, Report, SetPictures};
@@ -9,7 +10,7 @@ use crate::picture::{Skeleton, View, elements, orbital_pictures, symmetry_elemen
 use crate::report::audit::audit_document;
 use crate::report::document::Document;
 use crate::report::table;
-use ndarray::Axis;
+use ndarray::{Array2, Axis};
 use std::io;
 
 /// The page of a labelled file; `pictures` says how many sets below and above the frontier are drawn.
@@ -57,12 +58,23 @@ fn frontier_pictures(
     let capacity = if labelled.spins.len() > 1 { 1.0 } else { 2.0 };
     let mut first = 0;
     let mut drawn = Vec::new();
-    for (spin, orbitals) in labelled.spins.iter().zip(&molecule.orbital_sets) {
+    for (spin_idx, (spin, orbitals)) in labelled.spins.iter().zip(&molecule.orbital_sets).enumerate() {
+        let occupations: Vec<Option<f64>> = orbitals.orbitals.iter().map(|orbital| orbital.occupation).collect();
         for set_idx in chosen(spin, capacity, below, above) {
-            let rows = orbitals.coefficients.select(Axis(0), &spin.sets[set_idx].orbitals);
+            let set = &spin.sets[set_idx];
+            let mut rows = orbitals.coefficients.select(Axis(0), &set.orbitals);
+            // Partners that the file has turned among themselves are drawn as the standard ones.
+            let turned = set.orbitals.iter().any(|&orbital| spin.orbitals[orbital].partner.is_none());
+            let standard = turned
+                .then(|| standard_partners(labelled, spin_idx, set, orbitals.coefficients.view(), &occupations))
+                .flatten();
+            if let Some(columns) = &standard {
+                rows = Array2::from_shape_fn((rows.nrows(), rows.nrows()), |(k, j)| columns[(j, k)]).dot(&rows);
+            }
+            let names = standard.and(set.irrep).map(|irrep| labelled.symmetry.group.irreps()[irrep].partners.clone());
             let partners =
                 orbital_pictures(skeleton, &labelled.symmetry.frame, &labelled.settled.basis, rows.view(), view)?;
-            drawn.push(SetPictures { set: first + set_idx + 1, partners });
+            drawn.push(SetPictures { set: first + set_idx + 1, partners, turned_to: names });
         }
         first += spin.sets.len();
     }

@@ -4,8 +4,8 @@ use super::names::{function, name};
 use super::tables::electronvolts;
 use crate::model::Spin;
 use crate::picture::OrbitalPicture;
-use crate::picture::orbital::ENCLOSED;
-use crate::report::document::{Document, OrbitalEntry, SetEntry};
+use crate::picture::orbital::{ENCLOSED, SIDE};
+use crate::report::document::{Document, SetEntry};
 use base64::Engine as _;
 use base64::engine::general_purpose::STANDARD;
 use maud::{Markup, html};
@@ -17,6 +17,8 @@ pub struct SetPictures {
     pub set: usize,
     /// One an orbital.
     pub partners: Vec<OrbitalPicture>,
+    /// The standard partners that are drawn where the file has others, turned among themselves.
+    pub turned_to: Option<Vec<String>>,
 }
 
 /// Which role a set has at the frontier: `HOMO`, `LUMO`, `SOMO`, or none.
@@ -61,7 +63,7 @@ pub fn orbitals(document: &Document, pictures: &[SetPictures], view: &str) -> Ma
                 " % of its own orbital’s density; light: ψ above zero, dark and hatched: below (the sign of a whole orbital has no meaning). "
                 "Computed from the file’s own functions; axes are those of the point group; " (view) "."
             }
-            @for (pictures, set) in shown() { (set_figures(document, pictures, set)) }
+            div.sets { @for (pictures, set) in shown() { (set_figures(document, pictures, set)) } }
             @if coarse {
                 p.note { "Where the grid holds other than 1 of an orbital, a core is too sharp for it or the orbital reaches beyond it; the share enclosed then refers to what the grid holds." }
             }
@@ -83,28 +85,31 @@ fn set_figures(document: &Document, pictures: &SetPictures, set: &SetEntry) -> M
                 }
             }
             div.partners {
-                @for (picture, &index) in pictures.partners.iter().zip(&set.orbitals) {
-                    (figure(picture, of(index), index, set))
+                @for (at, (picture, &index)) in pictures.partners.iter().zip(&set.orbitals).enumerate() {
+                    @match pictures.turned_to.as_ref().and_then(|names| names.get(at)) {
+                        Some(partner) => (figure(picture, "Partner", Some(partner), set)),
+                        None => (figure(picture, &format!("Orbital {index}"), of(index).and_then(|orbital| orbital.component.as_deref()), set)),
+                    }
                 }
+            }
+            @if pictures.turned_to.is_some() {
+                p.note { "Standard partners: combinations of orbitals " (super::tables::indices(&set.orbitals)) ", which the file has turned among themselves." }
             }
         }
     }
 }
 
-fn figure(picture: &OrbitalPicture, orbital: Option<&OrbitalEntry>, index: usize, set: &SetEntry) -> Markup {
-    let component = orbital.and_then(|orbital| orbital.component.as_deref());
+fn figure(picture: &OrbitalPicture, what: &str, component: Option<&str>, set: &SetEntry) -> Markup {
     let label = set.label.as_deref().map_or_else(String::new, crate::report::unicode::pretty);
-    let partner = component.map(|component| format!(", partner {component}")).unwrap_or_default();
-    let alt = format!("Orbital {index}, {label}{partner}: surface of |ψ| = {:.3}", picture.level.value);
+    let partner = component.map(|component| format!(", {component}")).unwrap_or_default();
+    let alt = format!("{what} of {label}{partner}: surface of |ψ| = {:.3}", picture.level.value);
     let turned = component.is_none() && set.degeneracy > 1 && set.irrep.is_some();
     html! {
         figure {
-            img alt=(alt) width="400" height="400" loading="lazy"
+            img alt=(alt) width=(SIDE) height=(SIDE)
                 src=(format!("data:image/png;base64,{}", STANDARD.encode(&picture.png)));
             figcaption {
-                "Orbital " (index)
-                @if let Some(component) = component { ", " (function(component)) }
-                @if turned { ", partners turned in the file" }
+                (what) @if let Some(component) = component { " " (function(component)) } @if turned { ", partners turned as in the file" }
                 br;
                 span.aside {
                     "|ψ| = " (format!("{:.4}", picture.level.value)) " " i { "a" } sub { "0" } sup { "−3/2" }

@@ -112,7 +112,7 @@ pub fn sets(document: &Document) -> Markup {
 }
 
 /// `52–54`.
-fn indices(orbitals: &[usize]) -> String {
+pub fn indices(orbitals: &[usize]) -> String {
     let from_zero: Vec<usize> = orbitals.iter().map(|orbital| orbital - 1).collect();
     crate::labelling::composition::ranges(&from_zero).replace('-', "–")
 }

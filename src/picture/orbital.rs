@@ -18,7 +18,7 @@ use std::io;
 /// Share of ∫ψ² that the surfaces enclose.
 pub const ENCLOSED: f64 = 0.80;
 /// Pixels a side.
-pub const SIDE: usize = 400;
+pub const SIDE: usize = 360;
 /// How much atoms and bonds shine through a surface.
 const CLARITY: f64 = 0.28;
 /// Distance of hatch lines and their width, shares of the side.
