@@ -3,6 +3,7 @@
 use super::Report;
 use super::names::name;
 use super::summary::trimmed;
+use super::tables::power_of_ten;
 use crate::picture::orbital::ENCLOSED;
 use maud::{Markup, html};
 
@@ -28,7 +29,7 @@ pub fn section(report: &Report<'_>) -> Markup {
                     " shells"
                     @match basis.pure { Some(true) => { " (pure)" }, Some(false) => { " (Cartesian)" }, None => { " (pure and Cartesian)" } }
                     ". Coefficients were read as " (basis.convention)
-                    ", the convention under which the orbitals are orthonormal: largest |CᵀSC − 1| = " (format!("{:.1e}", basis.orthonormality_residual)) "."
+                    ", the convention under which the orbitals are orthonormal: largest |CᵀSC − 1| = " (power_of_ten(basis.orthonormality_residual, 1)) "."
                 }
             }
             @if let Some(limits) = &document.thresholds {

@@ -47,8 +47,9 @@ pub fn name(text: &str) -> Markup {
     let Parts { number, letter, primes, subscript, superscript, rest } = parts(text);
     html! {
         span.name {
-            (number) i { (letter) } (primes)
+            (number) i { (letter) }
             @if !subscript.is_empty() { sub { (subscript) } }
+            (primes)
             @if !superscript.is_empty() { sup { (superscript) } }
             (rest)
         }
@@ -74,7 +75,7 @@ pub fn function(text: &str) -> Markup {
                 @let after_letter = at > 0 && (signs[at - 1].is_ascii_alphabetic() || signs[at - 1] == ')');
                 @if sign.is_ascii_digit() && after_letter { sup { (sign) } }
                 @else if *sign == '-' { "−" }
-                @else if at > 0 && signs[0] == 'R' { sub { i { (sign) } } }
+                @else if at > 0 && signs[at - 1] == 'R' { sub { i { (sign) } } }
                 @else if sign.is_ascii_alphabetic() { i { (sign) } }
                 @else { (sign) }
             }
@@ -90,14 +91,14 @@ mod tests {
     fn names_are_set_as_journals_want_them() {
         for (ascii, set) in [
             ("2t2g", "2<i>t</i><sub>2g</sub>"),
-            ("1a2''", "1<i>a</i>″<sub>2</sub>"),
+            ("1a2''", "1<i>a</i><sub>2</sub>″"),
             ("3sigma_g", "3<i>σ</i><sub>g</sub>"),
             ("Sigma_u-", "<i>Σ</i><sub>u</sub><sup>−</sup>"),
             ("D5d", "<i>D</i><sub>5d</sub>"),
             ("Dinfh", "<i>D</i><sub>∞h</sub>"),
             ("S6^5", "<i>S</i><sub>6</sub><sup>5</sup>"),
             ("3sigma_v", "3<i>σ</i><sub>v</sub>"),
-            ("C2'(1)", "<i>C</i>′<sub>2</sub>(1)"),
+            ("C2'(1)", "<i>C</i><sub>2</sub>′(1)"),
             ("E'", "<i>E</i>′"),
         ] {
             assert_eq!(name(ascii).into_string(), format!("<span class=\"name\">{set}</span>"), "{ascii}");
@@ -105,6 +106,7 @@ mod tests {
         assert_eq!(sum("A1g + 2Eg").into_string().matches(" + ").count(), 1);
         let set = function("x2-y2").into_string();
         assert_eq!(set, "<span class=\"name\"><i>x</i><sup>2</sup>−<i>y</i><sup>2</sup></span>");
+        assert!(function("(Rx, Ry)").into_string().contains("<i>R</i><sub><i>y</i></sub>"));
         assert_eq!(function("Rz").into_string(), "<span class=\"name\"><i>R</i><sub><i>z</i></sub></span>");
     }
 

@@ -3,7 +3,7 @@
 use super::Report;
 use super::figures::{set_name, spin_sign};
 use super::names::name;
-use super::tables::{electrons, electronvolts};
+use super::tables::{electrons, electronvolts, power_of_ten};
 use crate::report::document::{Document, SetEntry};
 use crate::report::unicode::pretty;
 use maud::{Markup, html};
@@ -75,7 +75,7 @@ pub fn answer(report: &Report<'_>) -> Markup {
                     div {
                         dt { "Check" }
                         dd {
-                            span { "orthonormal to " (format!("{:.0e}", basis.orthonormality_residual)) }
+                            span { "orthonormal to " (power_of_ten(basis.orthonormality_residual, 0)) }
                             span.aside { "lowest purity " (format!("{:.6}", sets.iter().map(|set| set.purity).fold(1.0, f64::min))) " over " (sets.len()) " sets" }
                         }
                     }

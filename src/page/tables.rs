@@ -23,6 +23,13 @@ pub fn electrons(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
+/// A small number as a factor and a power of ten.
+pub fn power_of_ten(value: f64, decimals: usize) -> Markup {
+    let text = format!("{value:.decimals$e}");
+    let (factor, power) = text.split_once('e').unwrap_or((&text, "0"));
+    html! { @if power == "0" { (factor) } @else { (factor) " × 10" sup { (power.replace('-', "−")) } } }
+}
+
 /// A cell with a number to sort by.
 fn number(value: Option<f64>, text: impl Fn(f64) -> String) -> Markup {
     match value {

@@ -2,7 +2,7 @@
 
 use super::Report;
 use super::names::name;
-use super::tables::electronvolts;
+use super::tables::{electronvolts, power_of_ten};
 use crate::report::audit::{AuditEntry, MixedEntry};
 use maud::{Markup, html};
 
@@ -35,7 +35,7 @@ fn verdict(audit: &AuditEntry) -> Markup {
             }
         }
         p.note {
-            "The worst operation carries " (format!("{:.1e}", audit.electrons_carried_max)) " electrons out of place (at least; limit "
+            "The worst operation carries " (power_of_ten(audit.electrons_carried_max, 1)) " electrons out of place (at least; limit "
             (audit.limits.electrons_carried) "). "
             @if let Some(value) = audit.s_squared {
                 "⟨S²⟩ = " (format!("{value:.4}")) ", ideal " (format!("{:.4}", audit.s_squared_ideal)) ". "

@@ -191,12 +191,14 @@ pub fn symmetry_elements(skeleton: &Skeleton, group: &PointGroup, view: &View) -
         document = document.add(plane_path(plane, &shown, &paper, outermost));
     }
     for towards in [false, true] {
-        if towards {
-            document = document.add(molecule(skeleton, &paper));
-        }
         for axis in &shown.axes {
             document = document.add(half_axis(axis, &shown, &paper, reach, towards));
         }
+    }
+    document = document.add(molecule(skeleton, &paper));
+    // Before the molecule lies only what sticks out of it, so that no symbol is struck through.
+    for axis in &shown.axes {
+        document = document.add(tip(axis, skeleton, &shown, &paper, reach));
     }
     if shown.centre {
         let centre = paper.place(&Vector3::zeros());
@@ -227,17 +229,39 @@ fn plane_path(plane: &Plane, shown: &Elements, paper: &Paper<'_>, radius: f64) -
 
 /// The half of an axis on the side of the eye, or behind, with its sign at the end.
 fn half_axis(axis: &Axis, shown: &Elements, paper: &Paper<'_>, reach: f64, towards: bool) -> Group {
-    let depth = paper.place(&axis.direction).z;
-    let sense = if (depth >= 0.0) == towards { 1.0 } else { -1.0 };
-    let (middle, end) = (paper.place(&Vector3::zeros()), paper.place(&(axis.direction * sense * reach)));
-    let line = Line::new()
-        .set("x1", tenths(middle.x))
-        .set("y1", tenths(middle.y))
-        .set("x2", tenths(end.x))
-        .set("y2", tenths(end.y))
-        .set("stroke-dasharray", dashes(shown.kind_of(&axis.names.join(", "))));
+    let end = sense(axis, paper, towards) * reach;
+    let line = line(paper, &Vector3::zeros(), &end).set("stroke-dasharray", dashes(shown.kind_of(&axis.names.join(", "))));
     let group = Group::new().set("class", if towards { "axis near" } else { "axis far" }).add(line);
+    let end = paper.place(&end);
     sign(axis.fold, end.x, end.y).into_iter().fold(group, Group::add)
+}
+
+/// The part of the half towards the eye that lies beyond the last atom on it.
+fn tip(axis: &Axis, skeleton: &Skeleton, shown: &Elements, paper: &Paper<'_>, reach: f64) -> Group {
+    let direction = sense(axis, paper, true);
+    let on_axis = skeleton.atoms.iter().filter_map(|atom| {
+        let along = atom.place.dot(&direction);
+        (along > 0.0 && (atom.place - direction * along).norm() < atom.radius).then_some(along + 1.4 * atom.radius)
+    });
+    let Some(start) = on_axis.reduce(f64::max) else { return Group::new() };
+    let line = line(paper, &(direction * start.min(reach)), &(direction * reach));
+    Group::new()
+        .set("class", "axis near")
+        .add(line.set("stroke-dasharray", dashes(shown.kind_of(&axis.names.join(", ")))))
+}
+
+/// The direction of an axis towards the eye, or away from it.
+fn sense(axis: &Axis, paper: &Paper<'_>, towards: bool) -> Vector3<f64> {
+    if (paper.place(&axis.direction).z >= 0.0) == towards { axis.direction } else { -axis.direction }
+}
+
+fn line(paper: &Paper<'_>, from: &Vector3<f64>, to: &Vector3<f64>) -> Line {
+    let (from, to) = (paper.place(from), paper.place(to));
+    Line::new()
+        .set("x1", tenths(from.x))
+        .set("y1", tenths(from.y))
+        .set("x2", tenths(to.x))
+        .set("y2", tenths(to.y))
 }
 
 fn tenths(x: f64) -> f64 {
@@ -272,14 +296,9 @@ fn molecule(skeleton: &Skeleton, paper: &Paper<'_>) -> Group {
     const READABLE: f64 = 6.5;
     let mut drawn: Vec<(f64, Group)> = Vec::new();
     for &(a, b) in &skeleton.bonds {
-        let [a, b] = [a, b].map(|atom| paper.place(&skeleton.atoms[atom].place));
-        let line = Line::new()
-            .set("class", "bond")
-            .set("x1", tenths(a.x))
-            .set("y1", tenths(a.y))
-            .set("x2", tenths(b.x))
-            .set("y2", tenths(b.y));
-        drawn.push((f64::midpoint(a.z, b.z), Group::new().add(line)));
+        let [a, b] = [a, b].map(|atom| &skeleton.atoms[atom].place);
+        let depth = paper.place(&a.lerp(b, 0.5)).z;
+        drawn.push((depth, Group::new().add(line(paper, a, b).set("class", "bond"))));
     }
     for (at, atom) in skeleton.atoms.iter().enumerate() {
         let place = paper.place(&atom.place);
@@ -307,16 +326,9 @@ fn molecule(skeleton: &Skeleton, paper: &Paper<'_>) -> Group {
 fn frame(paper: &Paper<'_>, reach: f64) -> Group {
     ["x", "y", "z"].iter().enumerate().fold(Group::new().set("class", "frame"), |group, (axis, letter)| {
         let direction = Vector3::ith(axis, 1.0);
-        let (from, tip) = (paper.place(&(direction * reach * 0.9)), paper.place(&(direction * reach * 1.02)));
         let text = paper.place(&(direction * reach * 1.11));
         group
-            .add(
-                Line::new()
-                    .set("x1", tenths(from.x))
-                    .set("y1", tenths(from.y))
-                    .set("x2", tenths(tip.x))
-                    .set("y2", tenths(tip.y)),
-            )
+            .add(line(paper, &(direction * reach * 0.92), &(direction * reach * 1.03)))
             .add(
                 Text::new(*letter)
                     .set("x", tenths(text.x))
