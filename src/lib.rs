@@ -17,4 +17,5 @@ pub mod purify;
 pub mod selection;
 pub mod modes;
 pub mod report;
+pub mod diagram;
 pub mod cli;

@@ -5,6 +5,7 @@
 pub mod arguments;
 mod audit;
 mod input;
+mod levels;
 mod modes;
 mod output;
 mod placing;
@@ -121,6 +122,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
+        Verb::Levels(arguments) => levels::levels(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

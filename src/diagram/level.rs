@@ -1,0 +1,212 @@
+//! Levels as a diagram needs them: energy in eV, partners with their electrons by spin, taken from a report document.
+//!
+//! Here: which document entries make a column. Not here: which of them are shown (`diagram::window`), places on paper.
+
+use crate::model::Spin;
+use crate::report::document::{Document, SetEntry};
+use crate::report::text::EV_PER_HARTREE;
+
+/// Occupations this near a whole number are that number: files print as few as four decimals.
+const WHOLE: f64 = 1e-3;
+
+/// Electrons of one spin in one partner.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Electrons {
+    /// Spin up.
+    pub up: f64,
+    /// Spin down.
+    pub down: f64,
+}
+
+impl Electrons {
+    /// Of an occupation in an orbital for `spin`; `both` when the orbital holds two.
+    ///
+    /// One electron in an orbital for two is drawn up. Any other part of two is shared evenly: the file does not say how.
+    fn of(occupation: f64, spin: Spin, both: bool) -> Self {
+        let near = occupation.round();
+        let occupation = if (occupation - near).abs() < WHOLE { near } else { occupation };
+        match (both, spin) {
+            (true, _) if (occupation - 1.0).abs() < WHOLE => Self { up: 1.0, down: 0.0 },
+            (true, _) => Self { up: occupation / 2.0, down: occupation / 2.0 },
+            (false, Spin::Alpha) => Self { up: occupation, down: 0.0 },
+            (false, Spin::Beta) => Self { up: 0.0, down: occupation },
+        }
+    }
+
+    /// Both spins.
+    #[must_use]
+    pub fn total(self) -> f64 {
+        self.up + self.down
+    }
+}
+
+/// One orbital of a level.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Partner {
+    /// From 1 within the spin, file order.
+    pub index: usize,
+    /// None where the file gives no occupation.
+    pub electrons: Option<Electrons>,
+}
+
+/// One set of orbitals.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Level {
+    /// Number of the set in the document.
+    pub set: usize,
+    /// None for orbitals that mix irreps.
+    pub irrep: Option<String>,
+    /// Running number and symbol, `3e2g`; without an irrep the words that stand in its place.
+    pub label: String,
+    /// Mean energy of the set.
+    pub energy_ev: f64,
+    /// Left to right.
+    pub partners: Vec<Partner>,
+    /// What the pointer shows.
+    pub story: String,
+}
+
+impl Level {
+    /// Electrons of all partners; `None` when the file gives no occupation of one.
+    #[must_use]
+    pub fn electrons(&self) -> Option<f64> {
+        self.partners.iter().map(|partner| partner.electrons.map(Electrons::total)).sum()
+    }
+
+    /// Some partner holds a part of an electron.
+    #[must_use]
+    pub fn has_fractions(&self) -> bool {
+        let broken = |electrons: f64| (electrons - electrons.round()).abs() > WHOLE / 2.0;
+        self.partners.iter().filter_map(|partner| partner.electrons).any(|e| broken(e.up) || broken(e.down))
+    }
+}
+
+/// Levels of one file and one spin, lowest first.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Column {
+    /// Which document.
+    pub file: usize,
+    /// The spin drawn; `None` where an orbital holds both.
+    pub spin: Option<Spin>,
+    /// Lowest first.
+    pub levels: Vec<Level>,
+    /// Sets without an energy.
+    pub without_energy: usize,
+    /// Number of the highest full set.
+    pub homo: Option<usize>,
+    /// Number of the lowest empty set.
+    pub lumo: Option<usize>,
+}
+
+impl Column {
+    /// The level of this set.
+    #[must_use]
+    pub fn level(&self, set: Option<usize>) -> Option<&Level> {
+        self.levels.iter().find(|level| Some(level.set) == set)
+    }
+
+    /// The highest energy at which there are electrons, else that of the highest full set.
+    #[must_use]
+    pub fn highest_occupied_ev(&self) -> Option<f64> {
+        let filled = |level: &&Level| level.electrons().is_some_and(|electrons| electrons > 0.5);
+        self.levels.iter().rev().find(filled).map(|level| level.energy_ev)
+    }
+}
+
+/// Whether the file keeps alpha and beta orbitals apart.
+#[must_use]
+pub fn is_unrestricted(document: &Document) -> bool {
+    document.orbitals.iter().flatten().any(|orbital| orbital.spin == Spin::Beta)
+}
+
+/// The column of `document` for one spin, or for both together.
+///
+/// A restricted document gives, for one spin, its orbitals with the electrons of that spin alone.
+#[must_use]
+pub fn column(document: &Document, file: usize, spin: Option<Spin>) -> Column {
+    let unrestricted = is_unrestricted(document);
+    let source = if unrestricted { spin.unwrap_or(Spin::Alpha) } else { Spin::Alpha };
+    let mut without_energy = 0;
+    let mut levels: Vec<Level> = Vec::new();
+    for set in document.sets.iter().flatten().filter(|set| set.spin == source) {
+        match set.energy_hartree.filter(|energy| energy.is_finite()) {
+            Some(energy) => {
+                levels.push(level(
+                    document,
+                    set,
+                    energy * EV_PER_HARTREE,
+                    spin.filter(|_| !unrestricted),
+                    unrestricted,
+                ));
+            }
+            None => without_energy += 1,
+        }
+    }
+    levels.sort_by(|a, b| a.energy_ev.total_cmp(&b.energy_ev).then(a.set.cmp(&b.set)));
+    let frontier = document.frontier.iter().flat_map(|frontier| &frontier.spins).find(|entry| entry.spin == source);
+    Column {
+        file,
+        spin,
+        levels,
+        without_energy,
+        homo: frontier.and_then(|frontier| frontier.homo),
+        lumo: frontier.and_then(|frontier| frontier.lumo),
+    }
+}
+
+/// `only` leaves the electrons of that spin of an orbital for both.
+fn level(document: &Document, set: &SetEntry, energy_ev: f64, only: Option<Spin>, unrestricted: bool) -> Level {
+    let orbitals = document.orbitals.iter().flatten();
+    let of_set = || orbitals.clone().filter(|orbital| orbital.set == set.set);
+    let partners: Vec<Partner> = of_set()
+        .map(|orbital| {
+            let electrons = orbital.occupation.filter(|occupation| occupation.is_finite()).map(|occupation| {
+                let electrons = Electrons::of(occupation.max(0.0), orbital.spin, !unrestricted);
+                match only {
+                    Some(Spin::Alpha) => Electrons { down: 0.0, ..electrons },
+                    Some(Spin::Beta) => Electrons { up: 0.0, ..electrons },
+                    None => electrons,
+                }
+            });
+            Partner { index: orbital.index, electrons }
+        })
+        .collect();
+    let label = set.label.clone().unwrap_or_else(|| "mixed".to_owned());
+    let mut story = set.label.as_deref().map_or_else(
+        || {
+            let content = set.content.clone().unwrap_or_else(|| {
+                let weights = of_set().next().map(|orbital| orbital.weights.as_slice()).unwrap_or_default();
+                let parts = weights.iter().take(3).map(|part| format!("{:.0} % {}", part.weight * 100.0, part.irrep));
+                parts.collect::<Vec<_>>().join(", ")
+            });
+            format!("no single irrep ({})", crate::report::unicode::pretty(&content))
+        },
+        crate::report::unicode::pretty,
+    );
+    let numbers: Vec<String> = partners.iter().map(|partner| partner.index.to_string()).collect();
+    story.push_str(&format!(": {energy_ev:.3} eV; orbital{} {}", plural(numbers.len()), numbers.join(", ")));
+    if let Some(electrons) = set.electrons {
+        story.push_str(&format!("; {} e⁻", electrons_text(electrons)));
+    }
+    let made: Vec<String> = set
+        .character
+        .iter()
+        .take(3)
+        .map(|part| format!("{:.0} % {} {}", part.share * 100.0, part.atoms, part.shell))
+        .collect();
+    if !made.is_empty() {
+        story.push_str(&format!("; {}", made.join(", ")));
+    }
+    Level { set: set.set, irrep: set.irrep.clone(), label, energy_ev, partners, story }
+}
+
+/// Whole numbers plainly, others to three decimals.
+#[must_use]
+pub fn electrons_text(electrons: f64) -> String {
+    let near = electrons.round();
+    if (electrons - near).abs() < WHOLE { format!("{near:.0}") } else { format!("{electrons:.3}") }
+}
+
+fn plural(n: usize) -> &'static str {
+    if n == 1 { "" } else { "s" }
+}

@@ -1,0 +1,181 @@
+//! The words of a diagram: what is left out, what marks mean, what numbers are not; arrows and gaps that go with them.
+//!
+//! Not here: where the lines stand (`diagram::figure`).
+
+use super::axis::Scale;
+use super::column::{Arrow, Sketch};
+use super::symbol::{self, words};
+use super::window::left_out;
+use super::{Count, Options};
+use crate::report::document::Document;
+use crate::report::text::EV_PER_HARTREE;
+use crate::report::transitions::TransitionEntry;
+use crate::report::unicode::pretty;
+
+/// Gives a column of a lone document its gap and the transitions asked for.
+pub fn decorate(sketch: &mut Sketch<'_>, documents: &[Document], options: &Options, scale: &Scale) {
+    let [document] = documents else { return };
+    let place = |set: Option<usize>| set.and_then(|set| sketch.find(set)).map(|shown| shown.place);
+    sketch.gap = place(sketch.column.homo).zip(place(sketch.column.lumo));
+    debug_assert!(scale.low < scale.high);
+    if options.transitions {
+        let here =
+            |entry: &&TransitionEntry| sketch.find(entry.from_set).is_some() && sketch.find(entry.to_set).is_some();
+        sketch.arrows = allowed(document).filter(here).map(arrow).collect();
+    }
+}
+
+fn allowed(document: &Document) -> impl Iterator<Item = &TransitionEntry> {
+    document.transitions.iter().flatten().filter(|entry| entry.electric_dipole.allowed == Some(true))
+}
+
+fn arrow(entry: &TransitionEntry) -> Arrow {
+    let polarisation = entry.electric_dipole.polarisation.join(",");
+    let energy = entry.energy_hartree.map_or(String::new(), |energy| format!("{:.3} eV, ", energy * EV_PER_HARTREE));
+    let story = format!(
+        "{} → {}: {energy}allowed along {polarisation}; one-electron estimate of the strength {}",
+        pretty(&entry.from),
+        pretty(&entry.to),
+        entry.electric_dipole.oscillator_strength.map_or("unknown".to_owned(), |f| format!("{f:.3}")),
+    );
+    Arrow { from: entry.from_set, to: entry.to_set, polarisation, story }
+}
+
+/// All notes under the diagram.
+#[must_use]
+pub fn notes(
+    documents: &[Document],
+    sketches: &[Sketch<'_>],
+    options: &Options,
+    energies: (f64, f64),
+    cautions: &[String],
+    wider: bool,
+) -> Vec<String> {
+    let mut notes: Vec<String> = Vec::new();
+    for sketch in sketches {
+        let column = sketch.column;
+        let (below, above) = left_out(column, energies);
+        let mut parts = Vec::new();
+        for (n, which) in [(below, "lower"), (above, "higher")] {
+            if n > 0 {
+                parts.push(format!("{n} {which}"));
+            }
+        }
+        let mut text = parts.join(" and ");
+        if !parts.is_empty() {
+            text.push_str(if below + above == 1 { " level not shown" } else { " levels not shown" });
+        }
+        if column.without_energy > 0 {
+            let comma = if text.is_empty() { "" } else { ", " };
+            text.push_str(&format!("{comma}{} without an energy", column.without_energy));
+        }
+        if text.is_empty() {
+            continue;
+        }
+        let spin = column
+            .spin
+            .map_or(String::new(), |spin| if spin == crate::model::Spin::Alpha { "α".into() } else { "β".into() });
+        let name = if documents.len() > 1 {
+            options.names.get(column.file).cloned().unwrap_or_else(|| short_name(&documents[column.file].source.file))
+        } else {
+            String::new()
+        };
+        let head = [name, spin].into_iter().filter(|part| !part.is_empty()).collect::<Vec<_>>().join(" ");
+        notes.push(if head.is_empty() { format!("{text}.") } else { format!("{head}: {text}.") });
+    }
+    let levels = || sketches.iter().flat_map(|sketch| &sketch.shown);
+    if sketches.iter().any(|sketch| sketch.gap_ev().is_some() && (sketch.gap.is_some() || documents.len() > 1)) {
+        notes.push("Gap: LUMO − HOMO, a difference of orbital energies, not a band or excitation energy.".into());
+    }
+    if levels().any(|shown| shown.level.irrep.is_none()) {
+        notes.push("Dashed bars: orbitals that mix irreps, so without a label.".into());
+    }
+    if levels().any(|shown| shown.level.has_fractions()) {
+        notes.push(
+            "Dashed arrows: parts of an electron, the sum stands beside the label; where an orbital holds both spins, parts are \
+             shared evenly."
+                .into(),
+        );
+    }
+    if levels().any(|shown| shown.level.electrons().is_none()) {
+        notes.push("No arrows where the file gives no occupation.".into());
+    }
+    if options.transitions {
+        notes.extend(transition_notes(documents, sketches));
+    }
+    if documents.len() > 1 {
+        let from = match options.count {
+            Count::Lowest => "the lowest",
+            Count::Frontier => "the highest with electrons, down and up",
+        };
+        notes.push(format!(
+            "Lines join the k-th level of an irrep in one column with the k-th in the next, counted from {from}."
+        ));
+    }
+    if wider {
+        notes.push("Wider than asked for: so many levels side by side need the room.".into());
+    }
+    notes.extend(cautions.iter().cloned());
+    notes
+}
+
+fn transition_notes(documents: &[Document], sketches: &[Sketch<'_>]) -> Vec<String> {
+    let [document] = documents else { return Vec::new() };
+    if document.transitions.is_none() {
+        return vec!["Transitions were not computed: the basis is large; see the verb transitions.".into()];
+    }
+    let drawn: usize = sketches.iter().map(|sketch| sketch.arrows.len()).sum();
+    let outside = allowed(document).count() - drawn;
+    let mut notes = Vec::new();
+    notes.push(match drawn {
+        0 => "No transition between the frontier levels shown is allowed for an electric dipole.".to_owned(),
+        _ => "Grey arrows: transitions of the frontier allowed for an electric dipole, with their polarisation; a label is not an \
+              intensity."
+            .to_owned(),
+    });
+    if outside > 0 {
+        notes.push(format!("{outside} more between levels not shown."));
+    }
+    notes
+}
+
+/// Lines no wider than `width`.
+#[must_use]
+pub fn wrap(text: &str, size: f64, width: f64) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        let longer = lines.last().map(|line| format!("{line} {word}"));
+        match longer.filter(|line| symbol::width(&words(line), size) <= width) {
+            Some(line) => {
+                lines.pop();
+                lines.push(line);
+            }
+            None => lines.push(shorten(word, size, width)),
+        }
+    }
+    lines
+}
+
+/// Cut with an ellipsis where it is too wide.
+#[must_use]
+pub fn shorten(text: &str, size: f64, width: f64) -> String {
+    if symbol::width(&words(text), size) <= width {
+        return text.to_owned();
+    }
+    let mut short = String::new();
+    for c in text.chars() {
+        if symbol::width(&words(&format!("{short}{c}…")), size) > width {
+            break;
+        }
+        short.push(c);
+    }
+    format!("{short}…")
+}
+
+/// `lantern-3` of `tests/lantern-3.molden.gz`.
+#[must_use]
+pub fn short_name(file: &str) -> String {
+    let name = file.rsplit('/').next().unwrap_or(file);
+    let name = name.strip_suffix(".gz").unwrap_or(name);
+    name.strip_suffix(".molden").unwrap_or(name).to_owned()
+}
