@@ -164,6 +164,10 @@ pub struct Levels {
     /// Levels of an irrep are counted from the lowest, or from the highest with electrons (for files with different cores)
     #[arg(long, value_enum, default_value_t = CountFrom::Lowest)]
     pub count: CountFrom,
+    /// Of several ways in which a subgroup lies in a group of the next file, take this one; by default the coordinates decide, where
+    /// both files are in one frame
+    #[arg(long, value_name = "N")]
+    pub way: Option<usize>,
     /// Distance a nucleus may lie from its symmetric place, Å
     #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
     pub tolerance: f64,

@@ -33,6 +33,7 @@ pub fn levels(arguments: &Levels, out: &mut dyn Write, errors: &mut dyn Write) -
             CountFrom::Lowest => Count::Lowest,
             CountFrom::Frontier => Count::Frontier,
         },
+        way: arguments.way,
         ..options(&arguments.drawing)
     };
     // One file after the other: only the documents stay in memory.
@@ -80,6 +81,8 @@ fn options(drawing: &Drawing) -> Options {
 fn failed(error: &DiagramError) -> CliError {
     match error {
         DiagramError::NoLevels { .. } => CliError::Input { drawn: error.to_string() },
-        DiagramError::Range { .. } | DiagramError::Names { .. } => CliError::Usage(error.to_string()),
+        DiagramError::Range { .. } | DiagramError::Names { .. } | DiagramError::Way { .. } => {
+            CliError::Usage(error.to_string())
+        }
     }
 }

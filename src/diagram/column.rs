@@ -19,6 +19,8 @@ pub const LEADER: f64 = 14.0;
 /// Width of a lane for an upright arrow with its text.
 pub const LANE: f64 = 13.0;
 const BAR_STROKE: f64 = 1.3;
+/// Head of the arrows of the gap.
+const HEAD: f64 = 2.6;
 
 /// A level with its places.
 #[derive(Debug, Clone)]
@@ -123,6 +125,11 @@ impl<'a> Sketch<'a> {
             }
             lane -= LANE / 2.0;
         }
+        let mut leaders = ink::group("leaders");
+        for shown in &self.shown {
+            leaders = leaders.add(self.leader(shown, x));
+        }
+        drawn = drawn.add(leaders);
         for shown in &self.shown {
             drawn = drawn.add(self.draw_level(shown, x));
         }
@@ -146,10 +153,6 @@ impl<'a> Sketch<'a> {
         }
         drawn = drawn.add(Title::new(ink::printable(&level.story)));
         let label_x = x + self.half + LEADER;
-        let (right, bend) = (x + shown.bars.right + 1.5, x + self.half + 2.0);
-        let leader =
-            format!("M{} {y}H{}L{} {}", n(right), n(bend), n(label_x - 1.5), n(shown.label_place), y = n(shown.place),);
-        drawn = drawn.add(ink::stroke(leader, FAINT, 0.45).set("class", "faint stroke leader"));
         for (at, partner) in level.partners.iter().enumerate() {
             let left = x + shown.bars.left + at as f64 * shown.bars.step;
             let ends = ((left, shown.place), (left + shown.bars.bar, shown.place));
@@ -168,6 +171,19 @@ impl<'a> Sketch<'a> {
         drawn.add(ink::text(&Line::at(label_x, base, &shown.runs)))
     }
 
+    /// From the bars to the label; it lies behind all bars.
+    fn leader(&self, shown: &Shown<'_>, x: f64) -> svg::node::element::Path {
+        let path = format!(
+            "M{} {y}H{}L{} {}",
+            n(x + shown.bars.right + 1.5),
+            n(x + self.half + 2.0),
+            n(x + self.half + LEADER - 1.5),
+            n(shown.label_place),
+            y = n(shown.place),
+        );
+        ink::stroke(path, FAINT, 0.45)
+    }
+
     fn draw_gap(&self, x: f64, lane: f64, homo: f64, lumo: f64) -> Group {
         let ev = self.gap_ev().unwrap_or_default();
         let mut drawn = ink::group("gap").set("data-gap-ev", format!("{ev:.6}"));
@@ -177,11 +193,13 @@ impl<'a> Sketch<'a> {
             drawn = drawn.add(self.guide(set, place, x, lane));
         }
         let middle = f64::midpoint(homo, lumo);
-        drawn = drawn.add(ink::stroke(ink::arrow(lane, middle, homo - 0.8, 2.6), ACCENT, 0.7)).add(ink::stroke(
-            ink::arrow(lane, middle, lumo + 0.8, 2.6),
-            ACCENT,
-            0.7,
-        ));
+        // Where two heads have no room inside, they point inwards from outside.
+        let inside = homo - lumo > 4.0 * HEAD;
+        for (end, outwards) in [(homo, 1.0), (lumo, -1.0)] {
+            let from = if inside { middle } else { end + outwards * 3.0 * HEAD };
+            let to = end - outwards * if inside { 0.8 } else { -0.8 };
+            drawn = drawn.add(ink::stroke(ink::arrow(lane, from, to, HEAD), ACCENT, 0.7));
+        }
         let text = words(&format!("{ev:.2} eV"));
         drawn.add(ink::text(&Line {
             size: NOTE + 0.5,

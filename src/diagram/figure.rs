@@ -4,12 +4,13 @@
 
 use super::axis::Scale;
 use super::column::{PITCH, Sketch, spin_name};
-use super::correlation::{self, Link, Parts};
+use super::correlation::{self, Link};
 use super::ink::{self, Anchor, Line, NOTE, TEXT, n};
+use super::kinship::{Unrelated, kin};
 use super::level::{self, Column, is_unrestricted};
 use super::notes::{self, wrap};
 use super::palette::{ALL, DASHES, INK, LINES, QUIET};
-use super::symbol::{self, Run, Style, words};
+use super::symbol::{self, Run, words};
 use super::window::window;
 use super::{DiagramError, Drawn, Options, Width, Zero};
 use crate::model::Spin;
@@ -20,14 +21,18 @@ use svg::node::element::{Description, Element, Group, Title};
 
 /// Points a millimetre.
 const POINTS: f64 = 72.0 / 25.4;
-/// Axis with its numbers and words.
-const AXIS: f64 = 38.0;
+/// Least room for the axis with its numbers and words, and what the words and ticks take of it.
+const AXIS: (f64, f64) = (38.0, 25.0);
 /// Right margin.
 const MARGIN: f64 = 6.0;
 /// Least room for lines between columns.
 const BETWEEN: f64 = 26.0;
 /// Shortest and usual longest axis, points.
-const HEIGHT: (f64, f64) = (200.0, 520.0);
+const HEIGHT: (f64, f64) = (210.0, 540.0);
+/// Usual distance of ticks.
+const TICKS: f64 = 34.0;
+/// Line of titles.
+const ROW: f64 = 10.0;
 /// Line of notes.
 const NOTE_PITCH: f64 = 7.6;
 
@@ -46,8 +51,7 @@ pub fn draw(documents: &[Document], options: &Options) -> Result<Drawn, DiagramE
             file: documents.first().map(|d| d.source.file.clone()).unwrap_or_default(),
         });
     };
-    let figure = Figure::new(documents, &columns, options, energies);
-    Ok(figure.draw())
+    Figure::new(documents, &columns, options, energies).map(Figure::draw)
 }
 
 fn columns(documents: &[Document]) -> Vec<Column> {
@@ -95,51 +99,64 @@ struct Figure<'a> {
     middles: Vec<f64>,
     /// For each column the links to the next of the same spin.
     links: Vec<Vec<Link>>,
+    axis: f64,
     width: f64,
-    top: f64,
     notes: Vec<String>,
     cautions: Vec<String>,
 }
 
 impl<'a> Figure<'a> {
-    fn new(documents: &'a [Document], columns: &'a [Column], options: &'a Options, energies: (f64, f64)) -> Self {
+    fn new(
+        documents: &'a [Document],
+        columns: &'a [Column],
+        options: &'a Options,
+        energies: (f64, f64),
+    ) -> Result<Self, DiagramError> {
         let inside = |column: &Column| {
             column.levels.iter().filter(|level| (energies.0..=energies.1).contains(&level.energy_ev)).count()
         };
         let most = columns.iter().map(inside).max().unwrap_or(0) as f64;
         // Room for every label, and some air while the page allows it.
-        let height = (1.5 * most * PITCH).clamp(HEIGHT.0, HEIGHT.1).max((most + 1.0) * PITCH);
+        let height = (2.2 * most * PITCH).clamp(HEIGHT.0, HEIGHT.1).max((most + 1.0) * PITCH);
         let asked = options.width.unwrap_or(if columns.len() <= 2 { Width::Single } else { Width::Double });
         let title_lines = if documents.len() > 1 { 3.0 } else { 2.0 };
         let spins = if columns.iter().any(|column| column.spin.is_some()) { 1.0 } else { 0.0 };
-        let top = 8.0 + 10.0 * (title_lines + spins);
+        let top = 10.0 + ROW * (title_lines + spins);
         let scale = Scale { low: energies.0, high: energies.1, top, bottom: top + height };
 
+        let numbers = tick_texts(&scale).into_iter().map(|(_, runs)| symbol::width(&runs, TEXT)).fold(0.0, f64::max);
+        let axis = AXIS.0.max(AXIS.1 + numbers);
         let mut width = asked.mm() * POINTS;
-        let share = (width - AXIS - MARGIN) / columns.len() as f64;
+        let share = (width - axis - MARGIN) / columns.len() as f64;
+        let bars =
+            if documents.len() > 1 { 0.45 * share } else { share - 0.3 * AXIS.0 - notes::beside(documents, options) };
         let mut sketches: Vec<Sketch<'a>> =
-            columns.iter().map(|column| Sketch::new(column, &scale, (0.45 * share).clamp(36.0, 140.0))).collect();
+            columns.iter().map(|column| Sketch::new(column, &scale, bars.clamp(36.0, 150.0))).collect();
         for sketch in &mut sketches {
-            notes::decorate(sketch, documents, options, &scale);
+            notes::decorate(sketch, documents, options);
         }
         let between = if documents.len() > 1 { BETWEEN } else { 8.0 };
         let needed = sketches.iter().map(|sketch| sketch.extent().0 + sketch.extent().1 + between).fold(0.0, f64::max);
         let share = share.max(needed);
-        width = width.max(AXIS + MARGIN + share * columns.len() as f64);
+        width = width.max(axis + MARGIN + share * columns.len() as f64);
         let middle = |(at, sketch): (usize, &Sketch<'_>)| {
             let (left, right) = sketch.extent();
-            AXIS + share * (at as f64 + 0.5) + (left - right) / 2.0
+            axis + share * (at as f64 + 0.5) + (left - right) / 2.0
         };
         let middles = sketches.iter().enumerate().map(middle).collect();
 
+        let mut notes = notes::notes(documents, &sketches, options, energies);
+        if width > asked.mm() * POINTS + 0.5 {
+            notes.push(format!("Wider than {} mm: levels side by side need the room.", n(asked.mm())));
+        }
         let mut cautions = Vec::new();
-        let links = links(documents, columns, options, &mut cautions);
-        let notes = notes::notes(documents, &sketches, options, energies, &cautions, width > asked.mm() * POINTS + 0.5);
-        Self { documents, options, scale, sketches, middles, links, width, top, notes, cautions }
+        let links = links(documents, columns, options, &mut notes, &mut cautions)?;
+        notes.extend(cautions.iter().cloned());
+        Ok(Self { documents, options, scale, sketches, middles, links, axis, width, notes, cautions })
     }
 
     fn draw(self) -> Drawn {
-        let id = if self.options.id.is_empty() { "levels" } else { self.options.id.as_str() };
+        let id = &safe_id(&self.options.id);
         let lines: Vec<String> =
             self.notes.iter().flat_map(|note| wrap(note, NOTE, self.width - MARGIN - 8.0)).collect();
         let height = self.scale.bottom + 14.0 + NOTE_PITCH * lines.len() as f64;
@@ -217,14 +234,13 @@ impl<'a> Figure<'a> {
 
     fn draw_axis(&self) -> Group {
         let scale = &self.scale;
-        let (ticks, decimals) = scale.ticks(34.0);
+        let x = self.axis - 6.0;
         let mut axis = ink::group("axis");
-        axis = axis.add(ink::stroke(ink::segment((AXIS - 6.0, scale.top), (AXIS - 6.0, scale.bottom)), INK, 0.6));
-        for tick in ticks {
+        axis = axis.add(ink::stroke(ink::segment((x, scale.top), (x, scale.bottom)), INK, 0.6));
+        for (tick, runs) in tick_texts(scale) {
             let y = scale.place(tick);
-            axis = axis.add(ink::stroke(ink::segment((AXIS - 9.0, y), (AXIS - 6.0, y)), INK, 0.6));
-            let runs = words(&format!("{tick:.decimals$}").replace('-', "−"));
-            let text = Line { anchor: Anchor::End, ..Line::at(AXIS - 11.0, y + 0.35 * TEXT, &runs) };
+            axis = axis.add(ink::stroke(ink::segment((x - 3.0, y), (x, y)), INK, 0.6));
+            let text = Line { anchor: Anchor::End, ..Line::at(x - 5.0, y + 0.35 * TEXT, &runs) };
             axis = axis.add(ink::text(&text));
         }
         let what = match self.options.zero {
@@ -238,26 +254,39 @@ impl<'a> Figure<'a> {
 
     fn draw_titles(&self) -> Group {
         let mut titles = ink::group("titles");
-        let share = (self.width - AXIS - MARGIN) / self.sketches.len() as f64;
+        let mut write = |x: f64, row: usize, size: f64, runs: &[Run]| {
+            let y = 11.0 + ROW * row as f64;
+            let text = ink::text(&Line { size, anchor: Anchor::Middle, ..Line::at(x, y, runs) });
+            titles.append(text);
+        };
+        let plot = self.width - self.axis - MARGIN;
+        let share = plot / self.sketches.len() as f64;
+        let group = |file: usize| symbol::group_runs(&self.documents[file].geometry.point_group);
+        let lone = self.documents.len() == 1;
+        if lone {
+            let x = self.axis + plot / 2.0;
+            write(x, 0, TEXT, &words(&notes::shorten(&self.title_of(0), TEXT, plot)));
+            write(x, 1, TEXT, &group(0));
+        }
         for (at, sketch) in self.sketches.iter().enumerate() {
-            let file = sketch.column.file;
-            let x = AXIS + share * (at as f64 + 0.5);
-            let mut rows: Vec<(Vec<Run>, f64)> = Vec::new();
+            let (file, middle) = (sketch.column.file, self.middles[at]);
             if let Some(spin) = sketch.column.spin {
-                rows.push((words(if spin == Spin::Alpha { "α" } else { "β" }), TEXT));
+                let n_files = self.documents.len() as f64;
+                // Over the bars of a lone file, over all columns of a spin of several.
+                let x = if lone { middle } else { self.axis + share * (at as f64 - file as f64 + n_files / 2.0) };
+                if file == 0 {
+                    write(x, if lone { 2 } else { 0 }, TEXT, &words(if spin == Spin::Alpha { "α" } else { "β" }));
+                }
             }
-            let title = notes::shorten(&self.title_of(file), TEXT, share - 4.0);
-            rows.push((words(&title), TEXT));
-            rows.push((symbol::group_runs(&self.documents[file].geometry.point_group), TEXT));
-            if let Some(gap) = sketch.gap_ev().filter(|_| self.documents.len() > 1) {
-                rows.push((vec![Run::new(format!("gap {gap:.2} eV"), Style::Upright)], NOTE));
-            }
-            for (row, (runs, size)) in rows.iter().enumerate() {
-                let y = 11.0 + 10.0 * row as f64;
-                titles = titles.add(ink::text(&Line { size: *size, anchor: Anchor::Middle, ..Line::at(x, y, runs) }));
+            if !lone {
+                let row = usize::from(sketch.column.spin.is_some());
+                write(middle, row, TEXT, &words(&notes::shorten(&self.title_of(file), TEXT, share - 6.0)));
+                write(middle, row + 1, TEXT, &group(file));
+                if let Some(gap) = sketch.gap_ev() {
+                    write(middle, row + 2, NOTE, &words(&format!("gap {gap:.2} eV")));
+                }
             }
         }
-        debug_assert!(self.top > 0.0);
         titles
     }
 
@@ -303,35 +332,46 @@ impl<'a> Figure<'a> {
 }
 
 /// Links of each column to the next of its spin.
-fn links(documents: &[Document], columns: &[Column], options: &Options, cautions: &mut Vec<String>) -> Vec<Vec<Link>> {
+fn links(
+    documents: &[Document],
+    columns: &[Column],
+    options: &Options,
+    notes: &mut Vec<String>,
+    cautions: &mut Vec<String>,
+) -> Result<Vec<Vec<Link>>, DiagramError> {
     let pair = |at: usize| {
         let (left, right) = (columns.get(at)?, columns.get(at + 1)?);
         (left.spin == right.spin && left.file + 1 == right.file).then_some((left, right))
     };
-    let mut said: Vec<String> = Vec::new();
+    let say = |words: Option<String>, to: &mut Vec<String>| to.extend(words.filter(|words| !to.contains(words)));
     let links = (0..columns.len()).map(|at| {
-        let Some((left, right)) = pair(at) else { return Vec::new() };
-        match kin(&documents[left.file], &documents[right.file], left, right) {
-            Ok((a, b)) => correlation::links((left, &a), (right, &b), options.count),
-            Err(reason) => {
-                if !said.contains(&reason) {
-                    said.push(reason);
-                }
-                Vec::new()
+        let Some((left, right)) = pair(at) else { return Ok(Vec::new()) };
+        match kin((&documents[left.file], &documents[right.file]), (left, right), options.way) {
+            Ok(kin) => {
+                say(kin.words, notes);
+                say(kin.caution, cautions);
+                Ok(correlation::links((left, &kin.left), (right, &kin.right), options.count))
             }
+            Err(Unrelated::Reason(reason)) => {
+                say(Some(reason), cautions);
+                Ok(Vec::new())
+            }
+            Err(Unrelated::Way(error)) => Err(error),
         }
     });
-    let links = links.collect();
-    cautions.append(&mut said);
-    links
+    links.collect()
 }
 
-fn kin(a: &Document, b: &Document, left: &Column, right: &Column) -> Result<(Parts, Parts), String> {
-    if a.geometry.point_group == b.geometry.point_group {
-        Ok((correlation::unchanged(left), correlation::unchanged(right)))
-    } else {
-        Err(format!("no lines between {} and {}", a.geometry.point_group, b.geometry.point_group))
-    }
+/// Energies of ticks, and how they are written.
+fn tick_texts(scale: &Scale) -> Vec<(f64, Vec<Run>)> {
+    let (ticks, decimals) = scale.ticks(TICKS);
+    ticks.into_iter().map(|tick| (tick, words(&format!("{tick:.decimals$}").replace('-', "−")))).collect()
+}
+
+/// What an id may hold in SVG and in CSS.
+fn safe_id(id: &str) -> String {
+    let safe: String = id.chars().filter(|c| c.is_ascii_alphanumeric() || matches!(c, '-' | '_')).collect();
+    if safe.starts_with(|c: char| c.is_ascii_alphabetic()) { safe } else { format!("levels{safe}") }
 }
 
 /// Colours as custom properties with what they are on white paper; only inside this diagram.

@@ -8,6 +8,7 @@ pub mod column;
 pub mod correlation;
 pub mod figure;
 pub mod ink;
+pub mod kinship;
 pub mod level;
 pub mod notes;
 pub mod packing;
@@ -65,6 +66,8 @@ pub struct Options {
     pub names: Vec<String>,
     /// How levels of several files are counted.
     pub count: Count,
+    /// Of several ways in which one file's group lies in the next one's, this one, from 1; by default the coordinates decide.
+    pub way: Option<usize>,
     /// Begins every id, so that several diagrams can stand in one page; letters, digits, `-`, `_`.
     pub id: String,
 }
@@ -94,6 +97,18 @@ pub enum DiagramError {
         low: f64,
         /// Highest asked for.
         high: f64,
+    },
+    /// A way down that there is not.
+    #[error("there is no way {way} from {high} to {low}: there {}", if *ways == 1 { "is 1".to_owned() } else { format!("are {ways}") })]
+    Way {
+        /// Asked for.
+        way: usize,
+        /// The higher group.
+        high: String,
+        /// The lower group.
+        low: String,
+        /// How many there are.
+        ways: usize,
     },
     /// Another number of names than files.
     #[error("{names} names for {files} files")]

@@ -2,8 +2,7 @@
 //!
 //! Not here: where the lines stand (`diagram::figure`).
 
-use super::axis::Scale;
-use super::column::{Arrow, Sketch};
+use super::column::{Arrow, LANE, LEADER, Sketch};
 use super::symbol::{self, words};
 use super::window::left_out;
 use super::{Count, Options};
@@ -13,16 +12,26 @@ use crate::report::transitions::TransitionEntry;
 use crate::report::unicode::pretty;
 
 /// Gives a column of a lone document its gap and the transitions asked for.
-pub fn decorate(sketch: &mut Sketch<'_>, documents: &[Document], options: &Options, scale: &Scale) {
+pub fn decorate(sketch: &mut Sketch<'_>, documents: &[Document], options: &Options) {
     let [document] = documents else { return };
     let place = |set: Option<usize>| set.and_then(|set| sketch.find(set)).map(|shown| shown.place);
     sketch.gap = place(sketch.column.homo).zip(place(sketch.column.lumo));
-    debug_assert!(scale.low < scale.high);
     if options.transitions {
         let here =
             |entry: &&TransitionEntry| sketch.find(entry.from_set).is_some() && sketch.find(entry.to_set).is_some();
         sketch.arrows = allowed(document).filter(here).map(arrow).collect();
     }
+}
+
+/// Room that labels, the gap and transitions of a lone document's column take beside its bars, about.
+#[must_use]
+pub fn beside(documents: &[Document], options: &Options) -> f64 {
+    let arrows = |document: &Document| {
+        let spin = |entry: &&TransitionEntry| entry.spin == crate::model::Spin::Alpha;
+        allowed(document).filter(spin).count()
+    };
+    let lanes = if options.transitions { documents.first().map_or(0, arrows) } else { 0 };
+    LEADER + 34.0 + LANE * (lanes + 1) as f64
 }
 
 fn allowed(document: &Document) -> impl Iterator<Item = &TransitionEntry> {
@@ -43,14 +52,7 @@ fn arrow(entry: &TransitionEntry) -> Arrow {
 
 /// All notes under the diagram.
 #[must_use]
-pub fn notes(
-    documents: &[Document],
-    sketches: &[Sketch<'_>],
-    options: &Options,
-    energies: (f64, f64),
-    cautions: &[String],
-    wider: bool,
-) -> Vec<String> {
+pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options, energies: (f64, f64)) -> Vec<String> {
     let mut notes: Vec<String> = Vec::new();
     for sketch in sketches {
         let column = sketch.column;
@@ -112,10 +114,6 @@ pub fn notes(
             "Lines join the k-th level of an irrep in one column with the k-th in the next, counted from {from}."
         ));
     }
-    if wider {
-        notes.push("Wider than asked for: so many levels side by side need the room.".into());
-    }
-    notes.extend(cautions.iter().cloned());
     notes
 }
 

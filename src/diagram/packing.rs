@@ -4,12 +4,14 @@
 
 /// Widest bar, points.
 pub const BAR: f64 = 15.0;
+/// Shortest bar that is taken to keep levels side by side, points.
+const SHORT_BAR: f64 = 8.5;
 /// Between partners, relative to the bar.
 const BETWEEN: f64 = 0.2;
 /// Between neighbouring levels side by side, relative to the bar.
 const BESIDE: f64 = 0.5;
 /// Levels in one lane are at least this far apart, points; the first that fits is taken.
-const DISTANCES: [f64; 4] = [6.0, 4.0, 2.6, 1.6];
+const DISTANCES: [f64; 6] = [9.6, 7.2, 5.4, 4.0, 2.6, 1.6];
 /// Half the length of an arrow where there is room, points.
 const ARROW: f64 = 4.6;
 
@@ -46,15 +48,19 @@ pub struct Placed {
 /// `levels` in order of `place`, points.
 #[must_use]
 pub fn pack(levels: &[Wanted], width: f64) -> Vec<Placed> {
-    let mut placed = Vec::with_capacity(levels.len());
+    let mut clusters = Vec::new();
     let mut rest = levels;
     while !rest.is_empty() {
         let apart = |pair: &[Wanted]| pair[1].place - pair[0].place >= DISTANCES[0];
         let n = rest.windows(2).position(apart).map_or(rest.len(), |at| at + 1);
         let (cluster, others) = rest.split_at(n);
-        placed.extend(pack_cluster(cluster, width));
+        clusters.push(Cluster::new(cluster, width));
         rest = others;
     }
+    // One length for all bars, but where that would make all of them too short.
+    let longest = |cluster: &Cluster<'_>| BAR.min(width / cluster.total);
+    let common = clusters.iter().map(longest).fold(BAR, f64::min).max(SHORT_BAR);
+    let placed: Vec<Placed> = clusters.iter().flat_map(|cluster| cluster.place(common.min(longest(cluster)))).collect();
     // Arrows end half-way to the next bar that stands above or below.
     let room = |at: usize| {
         let overlap = |other: &usize| {
@@ -73,25 +79,33 @@ fn row(partners: usize) -> f64 {
     partners as f64 + partners.saturating_sub(1) as f64 * BETWEEN
 }
 
-fn pack_cluster(levels: &[Wanted], width: f64) -> Vec<Placed> {
-    let mut last = (Vec::new(), Vec::new(), f64::INFINITY);
-    for distance in DISTANCES {
-        let (lane_of, rows) = lanes(levels, distance);
-        let total = rows.iter().sum::<f64>() + rows.len().saturating_sub(1) as f64 * BESIDE;
-        let fits = total * BAR <= width;
-        last = (lane_of, rows, total);
-        if fits {
-            break;
-        }
+/// Levels that share a line: the lane of each, the longest row of each lane, the length of all with bars of length one.
+struct Cluster<'a> {
+    levels: &'a [Wanted],
+    lane_of: Vec<usize>,
+    rows: Vec<f64>,
+    total: f64,
+}
+
+impl<'a> Cluster<'a> {
+    fn new(levels: &'a [Wanted], width: f64) -> Self {
+        let with = |distance: f64| {
+            let (lane_of, rows) = lanes(levels, distance);
+            let total = rows.iter().sum::<f64>() + rows.len().saturating_sub(1) as f64 * BESIDE;
+            Self { levels, lane_of, rows, total }
+        };
+        let fits = DISTANCES.into_iter().map(with).find(|cluster| cluster.total * SHORT_BAR <= width);
+        fits.unwrap_or_else(|| with(DISTANCES[DISTANCES.len() - 1]))
     }
-    let (lane_of, rows, total) = last;
-    let bar = BAR.min(width / total);
-    let start = |lane: usize| -total / 2.0 + rows[..lane].iter().map(|row| row + BESIDE).sum::<f64>();
-    let place = |(level, &lane): (&Wanted, &usize)| {
-        let left = (start(lane) + (rows[lane] - row(level.partners)) / 2.0) * bar;
-        Placed { left, bar, step: bar * (1.0 + BETWEEN), right: left + row(level.partners) * bar, arrow: 0.0 }
-    };
-    levels.iter().zip(&lane_of).map(place).collect()
+
+    fn place(&self, bar: f64) -> impl Iterator<Item = Placed> {
+        let start =
+            move |lane: usize| -self.total / 2.0 + self.rows[..lane].iter().map(|row| row + BESIDE).sum::<f64>();
+        self.levels.iter().zip(&self.lane_of).map(move |(level, &lane)| {
+            let left = (start(lane) + (self.rows[lane] - row(level.partners)) / 2.0) * bar;
+            Placed { left, bar, step: bar * (1.0 + BETWEEN), right: left + row(level.partners) * bar, arrow: 0.0 }
+        })
+    }
 }
 
 /// The first lane with room for each level; the longest row of each lane.

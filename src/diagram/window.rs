@@ -4,8 +4,9 @@
 
 use super::level::{Column, Level};
 
-/// Valence levels lie within this of the highest occupied one; 1s of lithium lies 59 eV below, 2s of fluorine 25 (orbital energies).
-const VALENCE_EV: f64 = 30.0;
+/// Valence levels lie within this of the highest occupied one: the bonding 2s pair of O2 and F2 lies 31 eV below it in Hartree–Fock
+/// orbital energies (our own fixtures), 1s of lithium hydride 59 eV (from memory).
+const VALENCE_EV: f64 = 36.0;
 /// Empty levels far above mean little in a basis of Gaussians.
 const EMPTY_EV: f64 = 10.0;
 /// Levels with electrons shown in a column, and empty ones.

@@ -2,3 +2,4 @@
 #![allow(dead_code, reason = "each test program uses some of it")]
 
 pub mod files;
+pub mod xml;
