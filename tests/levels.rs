@@ -150,7 +150,8 @@ fn every_number_is_that_of_the_labels() {
             let energy = set["energy_hartree"].as_f64().unwrap() * EV_PER_HARTREE;
             assert!((level.energy - energy).abs() < 1e-5, "{name} {set}");
             assert_eq!(level.irrep, set["irrep"].as_str().unwrap_or(""), "{name}");
-            assert_eq!(level.label, set["label"].as_str().unwrap_or("mixed"), "{name}");
+            let turned = set["content"].as_str().unwrap_or("mixed").to_lowercase();
+            assert_eq!(level.label, set["label"].as_str().unwrap_or(&turned), "{name}");
             let orbitals: Vec<u64> = set["orbitals"].as_array().unwrap().iter().map(|n| n.as_u64().unwrap()).collect();
             assert_eq!(level.orbitals, orbitals, "{name}: one bar an orbital");
             assert!((level.arrows - set["electrons"].as_f64().unwrap()).abs() < 1e-5, "{name} {set}");
@@ -355,7 +356,7 @@ fn lines_of_one_irrep_never_cross_and_join_equal_running_numbers() {
             }
         }
         // Over all levels the k-th of an irrep is the one whose running number is k.
-        if !descends {
+        if !descends && drawn.iter().all(|level| !level.label.contains('+')) {
             for link in &links {
                 let column = (link.column - 1) % names.len() + 1;
                 let spin = &["", "alpha", "beta"][..];
@@ -380,7 +381,7 @@ fn lines_stay_within_a_spin() {
     // Nitrogen is restricted: seven electrons up, seven down.
     for spin in ["alpha", "beta"] {
         let of = |file: usize| {
-            drawn.iter().filter(|level| level.file == file && level.spin == spin).map(|level| level.arrows)
+            drawn.iter().filter(move |level| level.file == file && level.spin == spin).map(|level| level.arrows)
         };
         assert!((of(2).sum::<f64>() - 7.0).abs() < 1e-9);
         assert!((of(1).sum::<f64>() - if spin == "alpha" { 9.0 } else { 7.0 }).abs() < 1e-9);
@@ -421,16 +422,25 @@ fn a_parent_splits_into_what_its_irreps_become() {
         let sets = document["sets"].as_array().unwrap().clone();
         sets.into_iter().find(|set| set["orbitals"].as_array().unwrap().contains(&orbital.into())).unwrap()
     };
+    let mut counted: BTreeMap<String, usize> = BTreeMap::new();
     let mut compared = 0;
     for set in descended["sets"].as_array().unwrap() {
-        let Some(label) = set["label"].as_str() else { continue };
-        let above = set_of(&parent, set["orbitals"][0].as_u64().unwrap());
-        let level = of(2).into_iter().find(|level| level.label == label).unwrap();
-        let link = links.iter().find(|link| link.to == level.set).unwrap();
-        assert_eq!(link.from, above["set"].as_u64().unwrap(), "{label}");
-        compared += 1;
+        let above = set_of(&parent, set["orbitals"][0].as_u64().unwrap())["set"].as_u64().unwrap();
+        let irreps = set["irrep"].as_str().or(set["content"].as_str()).unwrap();
+        for irrep in irreps.split(" + ") {
+            let k = counted.entry(irrep.to_owned()).or_default();
+            *k += 1;
+            // Cores of like atoms lie at one energy: which comes first is chance.
+            if set["energy_hartree"].as_f64().unwrap() > -5.0 {
+                let label = format!("{k}{}", irrep.to_lowercase());
+                let level = of(2).into_iter().find(|level| level.label == label).unwrap();
+                let link = links.iter().find(|link| link.to == level.set).unwrap();
+                assert_eq!(link.from, above, "{label}");
+                compared += 1;
+            }
+        }
     }
-    assert!(compared > 10, "{compared}");
+    assert!(compared > 20, "{compared}");
 }
 
 #[test]
@@ -461,7 +471,7 @@ fn an_atom_meets_a_complex() {
     // Levels of the free ion against those of an octahedral complex: 3d becomes eg + t2g (crystal-field theory).
     let elements = series(&["zinc_ion_def2svp", "sf6_sto3g"], &ALL);
     let drawn = levels(&elements);
-    let d = drawn.iter().find(|level| level.label == "1dg").unwrap().set;
+    let d = drawn.iter().find(|level| level.label == "1d_g").unwrap().set;
     let parts: BTreeSet<String> =
         links(&elements).into_iter().filter(|link| link.from == d).map(|link| link.irrep).collect();
     assert_eq!(parts, BTreeSet::from(["Eg".to_owned(), "T2g".to_owned()]));
@@ -496,7 +506,7 @@ fn zero_at_the_highest_level_with_electrons() {
 fn parts_of_electrons_are_dashed_and_told() {
     let scratch = tempfile::tempdir().unwrap();
     let text = std::fs::read_to_string(path("water_631gs")).unwrap();
-    let text = text.replace("Occup= 2", "Occup= 1.5").replace("Occup=    2", "Occup=    1.5");
+    let text = text.replace("Occup=    2.00000", "Occup=    1.50000");
     let file = scratch.path().join("warm.molden");
     std::fs::write(&file, &text).unwrap();
     let elements = xml::read(&printed(&["label", file.to_str().unwrap(), "--quiet", "--format", "svg"]));

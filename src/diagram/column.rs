@@ -138,7 +138,7 @@ impl<'a> Sketch<'a> {
 
     fn draw_level(&self, shown: &Shown<'_>, x: f64) -> Group {
         let level = shown.level;
-        let class = if level.irrep.is_some() { "level" } else { "level mixed" };
+        let class = if level.content.is_empty() { "level mixed" } else { "level" };
         let mut drawn = ink::group(class)
             .set("data-set", level.set)
             .set("data-energy-ev", format!("{:.6}", level.energy_ev))
@@ -159,7 +159,7 @@ impl<'a> Sketch<'a> {
             let mut bar = ink::stroke(ink::segment(ends.0, ends.1), INK, BAR_STROKE)
                 .set("class", "ink stroke bar")
                 .set("data-orbital", partner.index);
-            if level.irrep.is_none() {
+            if level.content.is_empty() {
                 bar = bar.set("stroke-dasharray", "2.4 1.2");
             }
             drawn = drawn.add(bar);
@@ -256,10 +256,9 @@ pub fn spin_name(spin: Spin) -> &'static str {
 
 /// The label, with the electrons where they are no whole number for each partner.
 fn runs(level: &Level) -> Vec<Run> {
-    let mut runs = if level.irrep.is_some() {
-        label_runs(&level.label)
-    } else {
-        vec![Run::new(level.label.clone(), Style::Italic)]
+    let mut runs = match level.content.as_slice() {
+        [] => vec![Run::new(level.label.clone(), Style::Italic)],
+        _ => level.label.split(" + ").map(label_runs).collect::<Vec<_>>().join(&Run::new(" + ", Style::Upright)),
     };
     if let Some(electrons) = level.electrons().filter(|_| level.has_fractions()) {
         runs.push(Run::new(format!(" ({electrons:.2} e"), Style::Upright));

@@ -32,7 +32,7 @@ pub type Parts = BTreeMap<String, Vec<(String, usize)>>;
 /// Every irrep stays what it is.
 #[must_use]
 pub fn unchanged(column: &Column) -> Parts {
-    let irreps = column.levels.iter().filter_map(|level| level.irrep.clone());
+    let irreps = column.levels.iter().flat_map(|level| &level.content).map(|(irrep, _)| irrep.clone());
     irreps.map(|irrep| (irrep.clone(), vec![(irrep, 1)])).collect()
 }
 
@@ -67,8 +67,11 @@ fn ladders(column: &Column, parts: &Parts) -> BTreeMap<String, Vec<(usize, bool)
     let mut ladders: BTreeMap<String, Vec<(usize, bool)>> = BTreeMap::new();
     for level in &column.levels {
         let filled = level.electrons().is_some_and(|electrons| electrons > 0.5);
-        for (irrep, times) in level.irrep.iter().filter_map(|irrep| parts.get(irrep)).flatten() {
-            ladders.entry(irrep.clone()).or_default().extend(std::iter::repeat_n((level.set, filled), *times));
+        let of_irrep = |(irrep, times): &(String, usize)| {
+            parts.get(irrep).into_iter().flatten().map(|part| (part, *times)).collect::<Vec<_>>()
+        };
+        for ((irrep, times), each) in level.content.iter().flat_map(of_irrep) {
+            ladders.entry(irrep.clone()).or_default().extend(std::iter::repeat_n((level.set, filled), times * each));
         }
     }
     ladders

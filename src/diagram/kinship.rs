@@ -169,7 +169,8 @@ fn descent(
 }
 
 fn names_of(column: &Column) -> Vec<&str> {
-    let mut names: Vec<&str> = column.levels.iter().filter_map(|level| level.irrep.as_deref()).collect();
+    let mut names: Vec<&str> =
+        column.levels.iter().flat_map(|level| &level.content).map(|(irrep, _)| irrep.as_str()).collect();
     names.sort_unstable();
     names.dedup();
     names

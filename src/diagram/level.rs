@@ -54,9 +54,11 @@ pub struct Partner {
 pub struct Level {
     /// Number of the set in the document.
     pub set: usize,
-    /// None for orbitals that mix irreps.
+    /// None for orbitals that mix irreps, or are turned among several at one energy.
     pub irrep: Option<String>,
-    /// Running number and symbol, `3e2g`; without an irrep the words that stand in its place.
+    /// Irreps that the orbitals make together, and how often; empty when they mix irreps.
+    pub content: Vec<(String, usize)>,
+    /// Running number and symbol, `3e2g`; symbols of the content, `a1 + t2`; or `mixed`.
     pub label: String,
     /// Mean energy of the set.
     pub energy_ev: f64,
@@ -171,14 +173,22 @@ fn level(document: &Document, set: &SetEntry, energy_ev: f64, only: Option<Spin>
             Partner { index: orbital.index, electrons }
         })
         .collect();
-    let label = set.label.clone().unwrap_or_else(|| "mixed".to_owned());
+    let content = match (&set.irrep, &set.content) {
+        (Some(irrep), _) => vec![(irrep.clone(), 1)],
+        (None, Some(sum)) => sum.split(" + ").map(term).collect(),
+        (None, None) => Vec::new(),
+    };
+    let turned = || set.content.as_ref().map_or_else(|| "mixed".to_owned(), |sum| sum.to_lowercase());
+    let label = set.label.clone().unwrap_or_else(turned);
     let mut story = set.label.as_deref().map_or_else(
         || {
-            let content = set.content.clone().unwrap_or_else(|| {
-                let weights = of_set().next().map(|orbital| orbital.weights.as_slice()).unwrap_or_default();
-                let parts = weights.iter().take(3).map(|part| format!("{:.0} % {}", part.weight * 100.0, part.irrep));
-                parts.collect::<Vec<_>>().join(", ")
-            });
+            let content =
+                set.content.as_ref().map(|sum| format!("{sum} turned among themselves")).unwrap_or_else(|| {
+                    let weights = of_set().next().map(|orbital| orbital.weights.as_slice()).unwrap_or_default();
+                    let parts =
+                        weights.iter().take(3).map(|part| format!("{:.0} % {}", part.weight * 100.0, part.irrep));
+                    parts.collect::<Vec<_>>().join(", ")
+                });
             format!("no single irrep ({})", crate::report::unicode::pretty(&content))
         },
         crate::report::unicode::pretty,
@@ -197,7 +207,14 @@ fn level(document: &Document, set: &SetEntry, energy_ev: f64, only: Option<Spin>
     if !made.is_empty() {
         story.push_str(&format!("; {}", made.join(", ")));
     }
-    Level { set: set.set, irrep: set.irrep.clone(), label, energy_ev, partners, story }
+    Level { set: set.set, irrep: set.irrep.clone(), content, label, energy_ev, partners, story }
+}
+
+/// `2B1` → B1, twice.
+fn term(text: &str) -> (String, usize) {
+    let irrep = text.trim_start_matches(|c: char| c.is_ascii_digit());
+    let times = text[..text.len() - irrep.len()].parse().unwrap_or(1);
+    (irrep.to_owned(), times)
 }
 
 /// Whole numbers plainly, others to three decimals.

@@ -89,7 +89,12 @@ pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options,
     if sketches.iter().any(|sketch| sketch.gap_ev().is_some() && (sketch.gap.is_some() || documents.len() > 1)) {
         notes.push("Gap: LUMO − HOMO, a difference of orbital energies, not a band or excitation energy.".into());
     }
-    if levels().any(|shown| shown.level.irrep.is_none()) {
+    if levels().any(|shown| shown.level.irrep.is_none() && !shown.level.content.is_empty()) {
+        notes.push(
+            "Labels with +: orbitals turned among themselves at one energy; they make these irreps together.".into(),
+        );
+    }
+    if levels().any(|shown| shown.level.content.is_empty()) {
         notes.push("Dashed bars: orbitals that mix irreps, so without a label.".into());
     }
     if levels().any(|shown| shown.level.has_fractions()) {
