@@ -479,7 +479,7 @@ fn an_atom_meets_a_complex() {
 
 #[test]
 fn counting_from_the_frontier_joins_the_highest_filled() {
-    // Carbon and silicon sit in different rows: four more cores below. Here water against itself with one core more counted.
+    // Two cores in carbon monoxide, one in hydrogen fluoride.
     let names = ["hydrogen_fluoride_631gs", "carbon_monoxide_631gs"];
     let lowest = series(&names, &ALL);
     let frontier = series(&names, &[&ALL[..], &["--count", "frontier"]].concat());
@@ -491,6 +491,14 @@ fn counting_from_the_frontier_joins_the_highest_filled() {
     let joined =
         |elements: &[Element]| links(elements).iter().any(|link| (link.from, link.to) == (highest(1), highest(2)));
     assert!(joined(&frontier) && !joined(&lowest));
+}
+
+#[test]
+fn other_cores_are_told() {
+    let (a, b) = (path("water_631gs"), path("xtb_water"));
+    let said = |more: &[&str]| String::from_utf8(run(&[&["levels", &a, &b], more].concat()).stderr).unwrap();
+    assert!(said(&[]).contains("different cores"), "{}", said(&[]));
+    assert!(!said(&["--count", "frontier"]).contains("different cores"));
 }
 
 #[test]

@@ -15,6 +15,8 @@ use super::window::window;
 use super::{DiagramError, Drawn, Options, Width, Zero};
 use crate::model::Spin;
 use crate::report::document::Document;
+use std::cmp::Ordering;
+use std::fmt::Write as _;
 use svg::Node;
 use svg::node::Blob;
 use svg::node::element::{Description, Element, Group, Title};
@@ -73,7 +75,7 @@ fn check(documents: &[Document], columns: &[Column], options: &Options) -> Resul
         return Err(DiagramError::Names { names: options.names.len(), files: documents.len() });
     }
     match options.range {
-        Some((low, high)) if !(low < high) => Err(DiagramError::Range { low, high }),
+        Some((low, high)) if low.partial_cmp(&high) != Some(Ordering::Less) => Err(DiagramError::Range { low, high }),
         _ => Ok(()),
     }
 }
@@ -89,14 +91,40 @@ fn shift_to_homo(documents: &[Document], columns: &mut [Column]) {
     }
 }
 
+/// The part of the width that a column has.
+#[derive(Debug, Clone, Copy)]
+struct Slot {
+    start: f64,
+    end: f64,
+    /// Middle of the bars.
+    middle: f64,
+}
+
+/// One journal column for one column of levels, or two of few levels each.
+fn usual_width(columns: usize, most: f64) -> Width {
+    if columns == 1 || (columns == 2 && most <= 8.0) { Width::Single } else { Width::Double }
+}
+
+/// What columns need, and an equal part each of what is left.
+fn slots(sketches: &[Sketch<'_>], needed: impl Fn(&Sketch<'_>) -> f64, start: f64, end: f64) -> Vec<Slot> {
+    let spare = (end - start - sketches.iter().map(&needed).sum::<f64>()) / sketches.len().max(1) as f64;
+    let mut slots = Vec::with_capacity(sketches.len());
+    let mut start = start;
+    for sketch in sketches {
+        let (end, (left, right)) = (start + needed(sketch) + spare, sketch.extent());
+        slots.push(Slot { start, end, middle: f64::midpoint(start + left, end - right) });
+        start = end;
+    }
+    slots
+}
+
 /// Everything that is settled before marks are drawn.
 struct Figure<'a> {
     documents: &'a [Document],
     options: &'a Options,
     scale: Scale,
     sketches: Vec<Sketch<'a>>,
-    /// Middle of the bars of each column.
-    middles: Vec<f64>,
+    slots: Vec<Slot>,
     /// For each column the links to the next of the same spin.
     links: Vec<Vec<Link>>,
     axis: f64,
@@ -118,7 +146,7 @@ impl<'a> Figure<'a> {
         let most = columns.iter().map(inside).max().unwrap_or(0) as f64;
         // Room for every label, and some air while the page allows it.
         let height = (2.2 * most * PITCH).clamp(HEIGHT.0, HEIGHT.1).max((most + 1.0) * PITCH);
-        let asked = options.width.unwrap_or(if columns.len() <= 2 { Width::Single } else { Width::Double });
+        let asked = options.width.unwrap_or(usual_width(columns.len(), most));
         let title_lines = if documents.len() > 1 { 3.0 } else { 2.0 };
         let spins = if columns.iter().any(|column| column.spin.is_some()) { 1.0 } else { 0.0 };
         let top = 10.0 + ROW * (title_lines + spins);
@@ -131,19 +159,14 @@ impl<'a> Figure<'a> {
         let bars =
             if documents.len() > 1 { 0.45 * share } else { share - 0.3 * AXIS.0 - notes::beside(documents, options) };
         let mut sketches: Vec<Sketch<'a>> =
-            columns.iter().map(|column| Sketch::new(column, &scale, bars.clamp(36.0, 150.0))).collect();
+            columns.iter().map(|column| Sketch::new(column, &scale, bars.clamp(36.0, 125.0))).collect();
         for sketch in &mut sketches {
             notes::decorate(sketch, documents, options);
         }
         let between = if documents.len() > 1 { BETWEEN } else { 8.0 };
-        let needed = sketches.iter().map(|sketch| sketch.extent().0 + sketch.extent().1 + between).fold(0.0, f64::max);
-        let share = share.max(needed);
-        width = width.max(axis + MARGIN + share * columns.len() as f64);
-        let middle = |(at, sketch): (usize, &Sketch<'_>)| {
-            let (left, right) = sketch.extent();
-            axis + share * (at as f64 + 0.5) + (left - right) / 2.0
-        };
-        let middles = sketches.iter().enumerate().map(middle).collect();
+        let needed = |sketch: &Sketch<'_>| sketch.extent().0 + sketch.extent().1 + between;
+        width = width.max(axis + MARGIN + sketches.iter().map(needed).sum::<f64>());
+        let slots = slots(&sketches, needed, axis, width - MARGIN);
 
         let mut notes = notes::notes(documents, &sketches, options, energies);
         if width > asked.mm() * POINTS + 0.5 {
@@ -152,7 +175,7 @@ impl<'a> Figure<'a> {
         let mut cautions = Vec::new();
         let links = links(documents, columns, options, &mut notes, &mut cautions)?;
         notes.extend(cautions.iter().cloned());
-        Ok(Self { documents, options, scale, sketches, middles, links, axis, width, notes, cautions })
+        Ok(Self { documents, options, scale, sketches, slots, links, axis, width, notes, cautions })
     }
 
     fn draw(self) -> Drawn {
@@ -184,8 +207,8 @@ impl<'a> Figure<'a> {
         root.append(paper);
         root.append(self.draw_axis());
         root.append(self.draw_links());
-        for (sketch, &middle) in self.sketches.iter().zip(&self.middles) {
-            root.append(sketch.draw(middle));
+        for (sketch, slot) in self.sketches.iter().zip(&self.slots) {
+            root.append(sketch.draw(slot.middle));
         }
         root.append(self.draw_titles());
         let mut notes = ink::group("notes");
@@ -259,28 +282,29 @@ impl<'a> Figure<'a> {
             let text = ink::text(&Line { size, anchor: Anchor::Middle, ..Line::at(x, y, runs) });
             titles.append(text);
         };
-        let plot = self.width - self.axis - MARGIN;
-        let share = plot / self.sketches.len() as f64;
         let group = |file: usize| symbol::group_runs(&self.documents[file].geometry.point_group);
         let lone = self.documents.len() == 1;
+        let over = |slots: &[Slot]| slots.first().zip(slots.last()).map_or(0.0, |(a, b)| f64::midpoint(a.start, b.end));
         if lone {
-            let x = self.axis + plot / 2.0;
-            write(x, 0, TEXT, &words(&notes::shorten(&self.title_of(0), TEXT, plot)));
+            let (x, room) = (over(&self.slots), self.width - self.axis - MARGIN);
+            write(x, 0, TEXT, &words(&notes::shorten(&self.title_of(0), TEXT, room)));
             write(x, 1, TEXT, &group(0));
         }
-        for (at, sketch) in self.sketches.iter().enumerate() {
-            let (file, middle) = (sketch.column.file, self.middles[at]);
-            if let Some(spin) = sketch.column.spin {
-                let n_files = self.documents.len() as f64;
+        for (at, (sketch, slot)) in self.sketches.iter().zip(&self.slots).enumerate() {
+            let (file, middle) = (sketch.column.file, slot.middle);
+            if let Some(spin) = sketch.column.spin.filter(|_| file == 0) {
                 // Over the bars of a lone file, over all columns of a spin of several.
-                let x = if lone { middle } else { self.axis + share * (at as f64 - file as f64 + n_files / 2.0) };
-                if file == 0 {
-                    write(x, if lone { 2 } else { 0 }, TEXT, &words(if spin == Spin::Alpha { "α" } else { "β" }));
-                }
+                let x = if lone { middle } else { over(&self.slots[at..at + self.documents.len()]) };
+                write(x, if lone { 2 } else { 0 }, TEXT, &words(if spin == Spin::Alpha { "α" } else { "β" }));
             }
             if !lone {
                 let row = usize::from(sketch.column.spin.is_some());
-                write(middle, row, TEXT, &words(&notes::shorten(&self.title_of(file), TEXT, share - 6.0)));
+                write(
+                    middle,
+                    row,
+                    TEXT,
+                    &words(&notes::shorten(&self.title_of(file), TEXT, slot.end - slot.start - 6.0)),
+                );
                 write(middle, row + 1, TEXT, &group(file));
                 if let Some(gap) = sketch.gap_ev() {
                     write(middle, row + 2, NOTE, &words(&format!("gap {gap:.2} eV")));
@@ -298,8 +322,8 @@ impl<'a> Figure<'a> {
         let mut drawn = ink::group("links");
         for (at, links) in self.links.iter().enumerate() {
             let (Some(left), Some(right)) = (self.sketches.get(at), self.sketches.get(at + 1)) else { continue };
-            let start = self.middles[at] + left.half + super::column::LEADER;
-            let bend = (start + left.label_width + 3.0, self.middles[at + 1] - right.half - 3.0);
+            let start = self.slots[at].middle + left.half + super::column::LEADER;
+            let bend = (start + left.label_width + 3.0, self.slots[at + 1].middle - right.half - 3.0);
             for link in links {
                 let (Some(from), Some(to)) = (left.find(link.from), right.find(link.to)) else { continue };
                 let kind = irreps.binary_search(&link.irrep.as_str()).unwrap_or(0);
@@ -309,7 +333,7 @@ impl<'a> Figure<'a> {
                     n(start + symbol::width(&from.runs, TEXT) + 1.5),
                     n(bend.0),
                     n(bend.1),
-                    n(self.middles[at + 1] + to.bars.left - 1.5),
+                    n(self.slots[at + 1].middle + to.bars.left - 1.5),
                     y = n(from.label_place),
                     z = n(to.place),
                 );
@@ -350,6 +374,8 @@ fn links(
             Ok(kin) => {
                 say(kin.words, notes);
                 say(kin.caution, cautions);
+                let sources = (&documents[left.file].source, &documents[right.file].source);
+                say(notes::cores(sources, options.count), cautions);
                 Ok(correlation::links((left, &kin.left), (right, &kin.right), options.count))
             }
             Err(Unrelated::Reason(reason)) => {
@@ -379,8 +405,10 @@ fn style(id: &str) -> String {
     let mut rules = String::new();
     for colour in ALL {
         let (name, light) = (colour.name, colour.light);
-        rules.push_str(&format!("#{id} .{name}.stroke{{stroke:var(--orbsieve-{name},{light})}}"));
-        rules.push_str(&format!("#{id} .{name}.fill{{fill:var(--orbsieve-{name},{light})}}"));
+        for what in ["stroke", "fill"] {
+            // Writing into a String cannot fail.
+            let _ = write!(rules, "#{id} .{name}.{what}{{{what}:var(--orbsieve-{name},{light})}}");
+        }
     }
     format!("<style>{rules}</style>")
 }

@@ -4,6 +4,7 @@
 
 use super::palette::Colour;
 use super::symbol::{Run, SMALL, Style};
+use std::fmt::Write as _;
 use svg::node::Blob;
 use svg::node::element::{Group, Path};
 
@@ -88,6 +89,7 @@ impl<'a> Line<'a> {
 /// Text as text; runs without blanks between them, which a pretty-printed element would put there.
 #[must_use]
 pub fn text(line: &Line<'_>) -> Blob {
+    // Writing into a String cannot fail.
     let mut spans = String::new();
     // Shifts of the base line add up, so each run says how far it is from the one before.
     let mut shifted = 0.0;
@@ -100,17 +102,21 @@ pub fn text(line: &Line<'_>) -> Blob {
         };
         let mut attributes = String::new();
         if f64::abs(shift - shifted) > 1e-9 {
-            attributes.push_str(&format!(" dy=\"{}\"", n(shift - shifted)));
+            let _ = write!(attributes, " dy=\"{}\"", n(shift - shifted));
         }
         if small {
-            attributes.push_str(&format!(" font-size=\"{}\"", n(line.size * SMALL)));
+            let _ = write!(attributes, " font-size=\"{}\"", n(line.size * SMALL));
         }
         if slanted {
             attributes.push_str(" font-style=\"italic\"");
         }
         shifted = shift;
         let words = escape(&run.text);
-        spans.push_str(&if attributes.is_empty() { words } else { format!("<tspan{attributes}>{words}</tspan>") });
+        let _ = if attributes.is_empty() {
+            write!(spans, "{words}")
+        } else {
+            write!(spans, "<tspan{attributes}>{words}</tspan>")
+        };
     }
     let anchor = match line.anchor {
         Anchor::Start => "",

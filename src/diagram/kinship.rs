@@ -151,21 +151,18 @@ fn descent(
     }
     let measured =
         by_axes(&high.axes, &low.axes, &above, &below).and_then(|subgroup| parts(&above, &subgroup, &irreps));
-    match measured.filter(|parts| ways.contains(parts)) {
-        Some(parts) => {
-            let how = format!(", axes as the coordinates of both files have them: {}", in_words(&parts));
-            Ok(Some((parts, words(&how))))
-        }
-        None => {
-            let list = ways.iter().zip(1..).map(|(parts, at)| format!("--way {at}: {}", in_words(parts)));
-            Err(Unrelated::Reason(format!(
-                "No lines between {pretty_high} and {pretty_low}: the coordinates of the files are in no common frame that would \
-                 choose among the ways down ({}); --group {} labels both in one group.",
-                list.collect::<Vec<_>>().join("; "),
-                low.point_group
-            )))
-        }
+    if let Some(parts) = measured.filter(|parts| ways.contains(parts)) {
+        let how = format!(", axes as the coordinates of both files have them: {}", in_words(&parts));
+        return Ok(Some((parts, words(&how))));
     }
+    let list: Vec<String> =
+        ways.iter().zip(1..).map(|(parts, at)| format!("--way {at}: {}", in_words(parts))).collect();
+    Err(Unrelated::Reason(format!(
+        "No lines between {pretty_high} and {pretty_low}: the coordinates of the files are in no common frame that would choose among \
+         the ways down ({}); --group {} labels both in one group.",
+        list.join("; "),
+        low.point_group
+    )))
 }
 
 fn names_of(column: &Column) -> Vec<&str> {

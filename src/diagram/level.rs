@@ -3,8 +3,9 @@
 //! Here: which document entries make a column. Not here: which of them are shown (`diagram::window`), places on paper.
 
 use crate::model::Spin;
-use crate::report::document::{Document, SetEntry};
+use crate::report::document::{Document, SetEntry, Weight};
 use crate::report::text::EV_PER_HARTREE;
+use crate::report::unicode::pretty;
 
 /// Occupations this near a whole number are that number: files print as few as four decimals.
 const WHOLE: f64 = 1e-3;
@@ -180,34 +181,35 @@ fn level(document: &Document, set: &SetEntry, energy_ev: f64, only: Option<Spin>
     };
     let turned = || set.content.as_ref().map_or_else(|| "mixed".to_owned(), |sum| sum.to_lowercase());
     let label = set.label.clone().unwrap_or_else(turned);
-    let mut story = set.label.as_deref().map_or_else(
-        || {
-            let content =
-                set.content.as_ref().map(|sum| format!("{sum} turned among themselves")).unwrap_or_else(|| {
-                    let weights = of_set().next().map(|orbital| orbital.weights.as_slice()).unwrap_or_default();
-                    let parts =
-                        weights.iter().take(3).map(|part| format!("{:.0} % {}", part.weight * 100.0, part.irrep));
-                    parts.collect::<Vec<_>>().join(", ")
-                });
-            format!("no single irrep ({})", crate::report::unicode::pretty(&content))
-        },
-        crate::report::unicode::pretty,
-    );
     let numbers: Vec<String> = partners.iter().map(|partner| partner.index.to_string()).collect();
-    story.push_str(&format!(": {energy_ev:.3} eV; orbital{} {}", plural(numbers.len()), numbers.join(", ")));
-    if let Some(electrons) = set.electrons {
-        story.push_str(&format!("; {} e⁻", electrons_text(electrons)));
+    let weights = of_set().next().map(|orbital| orbital.weights.as_slice()).unwrap_or_default();
+    let mut story = vec![
+        format!("{}: {energy_ev:.3} eV", name_in_words(set, weights)),
+        format!("orbital{} {}", plural(numbers.len()), numbers.join(", ")),
+    ];
+    story.extend(set.electrons.map(|electrons| format!("{} e⁻", electrons_text(electrons))));
+    let shares = set.character.iter().take(3);
+    let shares: Vec<String> =
+        shares.map(|part| format!("{:.0} % {} {}", part.share * 100.0, part.atoms, part.shell)).collect();
+    if !shares.is_empty() {
+        story.push(shares.join(", "));
     }
-    let made: Vec<String> = set
-        .character
-        .iter()
-        .take(3)
-        .map(|part| format!("{:.0} % {} {}", part.share * 100.0, part.atoms, part.shell))
-        .collect();
-    if !made.is_empty() {
-        story.push_str(&format!("; {}", made.join(", ")));
-    }
+    let story = story.join("; ");
     Level { set: set.set, irrep: set.irrep.clone(), content, label, energy_ev, partners, story }
+}
+
+/// The label, or what stands in its place and why.
+fn name_in_words(set: &SetEntry, weights: &[Weight]) -> String {
+    match (&set.label, &set.content) {
+        (Some(label), _) => pretty(label),
+        (None, Some(sum)) => format!("{}, turned among themselves", pretty(sum)),
+        (None, None) => {
+            let parts = weights.iter().take(3);
+            let parts: Vec<String> =
+                parts.map(|part| format!("{:.0} % {}", part.weight * 100.0, pretty(&part.irrep))).collect();
+            format!("no single irrep ({})", parts.join(", "))
+        }
+    }
 }
 
 /// `2B1` → B1, twice.

@@ -56,7 +56,7 @@ pub enum Zero {
 pub struct Options {
     /// Lowest and highest energy shown, eV on the axis; by default the frontier without cores.
     pub range: Option<(f64, f64)>,
-    /// By default one journal column for one or two columns of levels, else two.
+    /// By default one journal column for one column of levels or two of few levels, else two.
     pub width: Option<Width>,
     /// Allowed transitions of the document as arrows.
     pub transitions: bool,

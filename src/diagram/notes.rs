@@ -6,7 +6,7 @@ use super::column::{Arrow, LANE, LEADER, Sketch};
 use super::symbol::{self, words};
 use super::window::left_out;
 use super::{Count, Options};
-use crate::report::document::Document;
+use crate::report::document::{Document, Source};
 use crate::report::text::EV_PER_HARTREE;
 use crate::report::transitions::TransitionEntry;
 use crate::report::unicode::pretty;
@@ -57,20 +57,13 @@ pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options,
     for sketch in sketches {
         let column = sketch.column;
         let (below, above) = left_out(column, energies);
+        let counts = [(below, "lower"), (above, "higher")].into_iter().filter(|(n, _)| *n > 0);
+        let counts: Vec<String> = counts.map(|(n, which)| format!("{n} {which}")).collect();
+        let levels = if below + above == 1 { "level" } else { "levels" };
         let mut parts = Vec::new();
-        for (n, which) in [(below, "lower"), (above, "higher")] {
-            if n > 0 {
-                parts.push(format!("{n} {which}"));
-            }
-        }
-        let mut text = parts.join(" and ");
-        if !parts.is_empty() {
-            text.push_str(if below + above == 1 { " level not shown" } else { " levels not shown" });
-        }
-        if column.without_energy > 0 {
-            let comma = if text.is_empty() { "" } else { ", " };
-            text.push_str(&format!("{comma}{} without an energy", column.without_energy));
-        }
+        parts.extend((!counts.is_empty()).then(|| format!("{} {levels} not shown", counts.join(" and "))));
+        parts.extend((column.without_energy > 0).then(|| format!("{} without an energy", column.without_energy)));
+        let text = parts.join(", ");
         if text.is_empty() {
             continue;
         }
@@ -120,6 +113,18 @@ pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options,
         ));
     }
     notes
+}
+
+/// Of two files of one substance and charge: what to do when one of them leaves out cores that the other has.
+#[must_use]
+pub fn cores((a, b): (&Source, &Source), count: Count) -> Option<String> {
+    let electrons = a.electrons.zip(b.electrons).filter(|(a, b)| (a - b).abs() > 1.0);
+    let charges = a.charge.zip(b.charge).filter(|(a, b)| (a - b).abs() < 0.5);
+    (a.formula == b.formula && electrons.is_some() && charges.is_some() && count == Count::Lowest).then(|| {
+        "Neighbouring files leave out different cores, so the k-th levels are not the same ones: --count frontier counts from the \
+         highest with electrons."
+            .to_owned()
+    })
 }
 
 fn transition_notes(documents: &[Document], sketches: &[Sketch<'_>]) -> Vec<String> {

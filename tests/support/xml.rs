@@ -40,7 +40,9 @@ pub fn read(xml: &str) -> Vec<Element> {
         let (text, tag) = rest.split_at(at);
         let text = unescape(text);
         assert!(!open.is_empty() || text.trim().is_empty(), "text outside: {text}");
-        open.iter().for_each(|&element| elements[element].text.push_str(&text));
+        for &element in &open {
+            elements[element].text.push_str(&text);
+        }
         if tag.is_empty() {
             break;
         }
