@@ -100,7 +100,7 @@ fn levels(elements: &[Element]) -> Vec<Level> {
         let bars = || marks().filter(|mark| mark.has_class("bar"));
         let label = marks().find(|mark| mark.name == "text").unwrap();
         Level {
-            file: column.number("data-file") as usize,
+            file: column.get("data-file").parse().unwrap(),
             spin: column.get("data-spin").to_owned(),
             set: element.get("data-set").parse().unwrap(),
             irrep: element.get("data-irrep").to_owned(),
@@ -318,7 +318,7 @@ fn links(elements: &[Element]) -> Vec<Link> {
         let at = numbers(element.get("d"));
         assert_eq!(at.len(), 6, "{element:?}");
         Link {
-            column: element.number("data-column") as usize,
+            column: element.get("data-column").parse().unwrap(),
             irrep: element.get("data-irrep").to_owned(),
             from: element.get("data-from-set").parse().unwrap(),
             to: element.get("data-to-set").parse().unwrap(),
@@ -441,6 +441,30 @@ fn a_parent_splits_into_what_its_irreps_become() {
         }
     }
     assert!(compared > 20, "{compared}");
+}
+
+#[test]
+fn files_in_one_frame_choose_the_way_down_themselves() {
+    // The stretched octahedron's nuclei moved back onto those of an octahedron, in the same coordinates.
+    let scratch = tempfile::tempdir().unwrap();
+    let (stretched, regular) = (path("sf6_stretched_d4h_sto3g"), scratch.path().join("regular.molden"));
+    let regular = regular.to_str().unwrap();
+    let moved = ["purify", &stretched, "--group", "Oh", "--geometry", "--tolerance", "0.3", "--output", regular];
+    printed(&moved);
+    for files in [[regular, &stretched], [&stretched, regular]] {
+        let elements = xml::read(&printed(&[&["levels", "--quiet"], &files[..], &ALL].concat()));
+        let split: BTreeSet<String> = links(&elements).into_iter().map(|link| link.irrep).collect();
+        assert!(split.contains("B1g") && split.contains("B2g"), "{split:?}");
+        let note = elements.iter().find(|element| element.text.contains("axes as the coordinates of both files"));
+        assert!(note.is_some_and(|note| note.text.contains("Oh to D4h")), "{note:?}");
+        let drawn = levels(&elements);
+        for level in drawn.iter().filter(|level| level.irrep == "T2g") {
+            let (here, set) = (level.file, level.set);
+            let parts = links(&elements).into_iter().filter(|link| if here == 1 { link.from } else { link.to } == set);
+            let parts: BTreeSet<String> = parts.map(|link| link.irrep).collect();
+            assert_eq!(parts, BTreeSet::from(["B2g".to_owned(), "Eg".to_owned()]));
+        }
+    }
 }
 
 #[test]
