@@ -553,6 +553,29 @@ fn parts_of_electrons_are_dashed_and_told() {
 }
 
 #[test]
+fn absurd_or_missing_energies_are_counted_or_refused() {
+    let scratch = tempfile::tempdir().unwrap();
+    let text = std::fs::read_to_string(path("water_631gs")).unwrap();
+    let energies: Vec<&str> = text.lines().filter(|line| line.contains("Ene=")).collect();
+    let write = |name: &str, text: &str| {
+        let file = scratch.path().join(name);
+        std::fs::write(&file, text).unwrap();
+        file.to_str().unwrap().to_owned()
+    };
+    let absurd = write("absurd.molden", &text.replace(energies[0], " Ene= -1e300"));
+    let elements = xml::read(&printed(&["label", &absurd, "--quiet", "--format", "svg"]));
+    assert!(elements.iter().any(|element| element.text.contains("1 without a usable energy")));
+    let mut none = text.clone();
+    for line in &energies {
+        none = none.replace(&format!("{line}\n"), "");
+    }
+    let none = write("none.molden", &none);
+    let output = run(&["label", &none, "--quiet", "--format", "svg"]);
+    assert_eq!(output.status.code(), Some(3));
+    assert!(output.stdout.is_empty());
+}
+
+#[test]
 fn mixed_orbitals_are_shown_as_such() {
     let elements = diagram("mixed_ethene", &[]);
     let mixed = elements.iter().enumerate().filter(|(_, element)| element.has_class("mixed"));
@@ -587,6 +610,9 @@ fn people_who_listen_get_the_levels_too() {
     for id in ids {
         assert!(elements.iter().any(|element| element.get("id") == id && !element.text.trim().is_empty()), "{id}");
     }
+    // Several diagrams can stand in one page: every id begins with that of the root.
+    let named = elements.iter().filter(|element| element.attributes.contains_key("id"));
+    assert!(named.into_iter().all(|element| element.get("id").starts_with(root.get("id"))));
     let story = elements.iter().find(|element| element.name == "desc").unwrap();
     assert!(story.text.contains("1b1") && story.text.contains("2 electrons"), "{}", story.text);
     assert_eq!(diagram("water_631gs", &["--width", "double"])[0].get("width"), "174mm");
@@ -604,6 +630,8 @@ fn statuses_tell_what_went_wrong() {
         (&["levels", &water, &water, "--names", "one", "--output", target], 2, "1 names for 2 files"),
         (&["levels", "-", "-", "--output", target], 2, "standard input can be read only once"),
         (&["levels", &water, "--range", "5,-5", "--output", target], 2, "the lower first"),
+        (&["levels", &water, "--range", "-1e300,5", "--output", target], 2, "both within a million"),
+        (&["levels", "tests/molecules/xyz/sandwich_d5.xyz", "--output", target], 3, ""),
         (&["levels", &water, "nowhere.molden", "--output", target], 3, "cannot read nowhere.molden"),
         (&["levels", "tests/molecules/psi3_water_631gs_broken.molden", "--output", target], 4, "orthonormal"),
         (&["label", &water, "--range", "-5,5"], 2, "add --format svg"),

@@ -233,7 +233,11 @@ impl<'a> Sketch<'a> {
         for shown in [from, to] {
             drawn = drawn.add(self.guide(Some(shown.level.set), shown.place, x, lane));
         }
-        let text = words(&arrow.polarisation);
+        let text: Vec<Run> = arrow
+            .polarisation
+            .chars()
+            .map(|c| Run::new(c, if c == ',' { Style::Upright } else { Style::Italic }))
+            .collect();
         let text = Line {
             size: NOTE + 0.5,
             anchor: Anchor::Middle,

@@ -75,7 +75,13 @@ fn check(documents: &[Document], columns: &[Column], options: &Options) -> Resul
         return Err(DiagramError::Names { names: options.names.len(), files: documents.len() });
     }
     match options.range {
-        Some((low, high)) if low.partial_cmp(&high) != Some(Ordering::Less) => Err(DiagramError::Range { low, high }),
+        Some((low, high))
+            if low.partial_cmp(&high) != Some(Ordering::Less)
+                || low < -level::LARGEST_EV
+                || high > level::LARGEST_EV =>
+        {
+            Err(DiagramError::Range { low, high })
+        }
         _ => Ok(()),
     }
 }

@@ -7,6 +7,8 @@ use crate::report::document::{Document, SetEntry, Weight};
 use crate::report::text::EV_PER_HARTREE;
 use crate::report::unicode::pretty;
 
+/// Largest energy that an axis takes, eV; cores of the heaviest elements lie at a tenth of it (from memory).
+pub const LARGEST_EV: f64 = 1e6;
 /// Occupations this near a whole number are that number: files print as few as four decimals.
 const WHOLE: f64 = 1e-3;
 
@@ -93,7 +95,7 @@ pub struct Column {
     pub spin: Option<Spin>,
     /// Lowest first.
     pub levels: Vec<Level>,
-    /// Sets without an energy.
+    /// Sets without an energy, or with one beyond [`LARGEST_EV`].
     pub without_energy: usize,
     /// Number of the highest full set.
     pub homo: Option<usize>,
@@ -132,15 +134,10 @@ pub fn column(document: &Document, file: usize, spin: Option<Spin>) -> Column {
     let mut without_energy = 0;
     let mut levels: Vec<Level> = Vec::new();
     for set in document.sets.iter().flatten().filter(|set| set.spin == source) {
-        match set.energy_hartree.filter(|energy| energy.is_finite()) {
+        let energy = set.energy_hartree.map(|energy| energy * EV_PER_HARTREE);
+        match energy.filter(|energy| energy.abs() <= LARGEST_EV) {
             Some(energy) => {
-                levels.push(level(
-                    document,
-                    set,
-                    energy * EV_PER_HARTREE,
-                    spin.filter(|_| !unrestricted),
-                    unrestricted,
-                ));
+                levels.push(level(document, set, energy, spin.filter(|_| !unrestricted), unrestricted));
             }
             None => without_energy += 1,
         }

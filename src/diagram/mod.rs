@@ -90,8 +90,8 @@ pub enum DiagramError {
         /// The file.
         file: String,
     },
-    /// Lowest energy not below the highest.
-    #[error("a range from {low} to {high} eV is empty")]
+    /// Lowest energy not below the highest, or one that no orbital has.
+    #[error("a range from {low} to {high} eV: expected the lower first, both within a million")]
     Range {
         /// Lowest asked for.
         low: f64,

@@ -62,7 +62,7 @@ pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options,
         let levels = if below + above == 1 { "level" } else { "levels" };
         let mut parts = Vec::new();
         parts.extend((!counts.is_empty()).then(|| format!("{} {levels} not shown", counts.join(" and "))));
-        parts.extend((column.without_energy > 0).then(|| format!("{} without an energy", column.without_energy)));
+        parts.extend((column.without_energy > 0).then(|| format!("{} without a usable energy", column.without_energy)));
         let text = parts.join(", ");
         if text.is_empty() {
             continue;
