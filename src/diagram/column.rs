@@ -264,8 +264,11 @@ fn runs(level: &Level) -> Vec<Run> {
         [] => vec![Run::new(level.label.clone(), Style::Italic)],
         _ => level.label.split(" + ").map(label_runs).collect::<Vec<_>>().join(&Run::new(" + ", Style::Upright)),
     };
+    if !level.complete {
+        runs.push(Run::new("*", Style::Upright));
+    }
     if let Some(electrons) = level.electrons().filter(|_| level.has_fractions()) {
-        runs.push(Run::new(format!(" ({electrons:.2} e"), Style::Upright));
+        runs.push(Run::new(format!("\u{a0}({electrons:.2} e"), Style::Upright));
         runs.push(Run::new("−", Style::Super));
         runs.push(Run::new(")", Style::Upright));
     }
@@ -283,12 +286,15 @@ fn draw_electrons(mut drawn: Group, electrons: Electrons, x: f64, shown: &Shown<
         if amount <= 0.0 {
             continue;
         }
-        let path = ink::arrow(x, shown.place + from, shown.place + to, (0.45 * half).min(2.0));
-        let mut arrow = ink::stroke(path, INK, 0.7)
-            .set("class", format!("ink stroke electron {name}"))
-            .set("data-electrons", format!("{amount:.6}"));
+        let (from, to, head) = (shown.place + from, shown.place + to, (0.45 * half).min(2.0));
+        let mut arrow = ink::group(&format!("electron {name}")).set("data-electrons", format!("{amount:.6}"));
         if (amount - amount.round()).abs() > 1e-3 {
-            arrow = arrow.set("stroke-dasharray", "1.3 0.9");
+            // Dashes would tear the head.
+            let shaft = ink::stroke(ink::segment((x, from), (x, to)), INK, 0.7).set("stroke-dasharray", "1.3 0.9");
+            arrow =
+                arrow.add(shaft).add(ink::stroke(ink::barbs(x, to, if to < from { head } else { -head }), INK, 0.7));
+        } else {
+            arrow = arrow.add(ink::stroke(ink::arrow(x, from, to, head), INK, 0.7));
         }
         drawn = drawn.add(arrow);
     }

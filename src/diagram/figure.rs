@@ -92,7 +92,10 @@ fn shift_to_homo(documents: &[Document], columns: &mut [Column]) {
         let highest = of_file().filter_map(Column::highest_occupied_ev).reduce(f64::max);
         let Some(zero) = highest else { continue };
         for column in columns.iter_mut().filter(|column| column.file == file) {
-            column.levels.iter_mut().for_each(|level| level.energy_ev -= zero);
+            for level in &mut column.levels {
+                level.energy_ev -= zero;
+                let _ = write!(level.story, "; {:.3} eV above the zero of the axis", level.energy_ev);
+            }
         }
     }
 }
@@ -107,8 +110,8 @@ struct Slot {
 }
 
 /// One journal column for one column of levels, or two of few levels each.
-fn usual_width(columns: usize, most: f64) -> Width {
-    if columns == 1 || (columns == 2 && most <= 8.0) { Width::Single } else { Width::Double }
+fn usual_width(columns: usize, most: f64, arrows: bool) -> Width {
+    if columns == 1 || (columns == 2 && most <= 8.0 && !arrows) { Width::Single } else { Width::Double }
 }
 
 /// What columns need, and an equal part each of what is left.
@@ -152,7 +155,7 @@ impl<'a> Figure<'a> {
         let most = columns.iter().map(inside).max().unwrap_or(0) as f64;
         // Room for every label, and some air while the page allows it.
         let height = (2.2 * most * PITCH).clamp(HEIGHT.0, HEIGHT.1).max((most + 1.0) * PITCH);
-        let asked = options.width.unwrap_or(usual_width(columns.len(), most));
+        let asked = options.width.unwrap_or(usual_width(columns.len(), most, options.transitions));
         let title_lines = if documents.len() > 1 { 3.0 } else { 2.0 };
         let spins = if columns.iter().any(|column| column.spin.is_some()) { 1.0 } else { 0.0 };
         let top = 10.0 + ROW * (title_lines + spins);

@@ -73,8 +73,6 @@ pub struct Line<'a> {
     pub colour: Colour,
     /// Turned so that it reads upwards.
     pub upwards: bool,
-    /// A rim in the colour of the paper, where lines run behind.
-    pub rim: bool,
 }
 
 impl<'a> Line<'a> {
@@ -82,7 +80,7 @@ impl<'a> Line<'a> {
     #[must_use]
     pub fn at(x: f64, y: f64, runs: &'a [Run]) -> Self {
         let colour = super::palette::INK;
-        Self { runs, x, y, size: TEXT, anchor: Anchor::Start, colour, upwards: false, rim: false }
+        Self { runs, x, y, size: TEXT, anchor: Anchor::Start, colour, upwards: false }
     }
 }
 
@@ -125,9 +123,8 @@ pub fn text(line: &Line<'_>) -> Blob {
     };
     let turn =
         if line.upwards { format!(" transform=\"rotate(-90 {} {})\"", n(line.x), n(line.y)) } else { String::new() };
-    let rim = if line.rim { " rim" } else { "" };
     Blob::new(format!(
-        "<text class=\"{} fill{rim}\" x=\"{}\" y=\"{}\" font-size=\"{}\" fill=\"{}\"{anchor}{turn}>{spans}</text>",
+        "<text class=\"{} fill\" x=\"{}\" y=\"{}\" font-size=\"{}\" fill=\"{}\"{anchor}{turn}>{spans}</text>",
         line.colour.name,
         n(line.x),
         n(line.y),
@@ -156,19 +153,15 @@ pub fn segment((x1, y1): (f64, f64), (x2, y2): (f64, f64)) -> String {
 /// An upright arrow from `from` to `to` at `x`, with a head of two barbs.
 #[must_use]
 pub fn arrow(x: f64, from: f64, to: f64, head: f64) -> String {
-    let back = if to < from { head } else { -head };
-    let barb = 0.62 * head;
-    format!(
-        "M{x} {}L{x} {}M{} {}L{x} {}L{} {}",
-        n(from),
-        n(to),
-        n(x - barb),
-        n(to + back),
-        n(to),
-        n(x + barb),
-        n(to + back),
-        x = n(x),
-    )
+    let shaft = segment((x, from), (x, to));
+    format!("{shaft}{}", barbs(x, to, if to < from { head } else { -head }))
+}
+
+/// The head alone, its barbs `back` below the tip; above it where that is negative.
+#[must_use]
+pub fn barbs(x: f64, to: f64, back: f64) -> String {
+    let barb = 0.62 * back.abs();
+    format!("M{} {}L{x} {}L{} {}", n(x - barb), n(to + back), n(to), n(x + barb), n(to + back), x = n(x))
 }
 
 /// A group that says what it is.

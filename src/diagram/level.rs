@@ -67,6 +67,8 @@ pub struct Level {
     pub energy_ev: f64,
     /// Left to right.
     pub partners: Vec<Partner>,
+    /// All partners of the irrep are there, at one energy; true without an irrep.
+    pub complete: bool,
     /// What the pointer shows.
     pub story: String,
 }
@@ -191,8 +193,12 @@ fn level(document: &Document, set: &SetEntry, energy_ev: f64, only: Option<Spin>
     if !shares.is_empty() {
         story.push(shares.join(", "));
     }
+    let complete = set.complete || set.irrep.is_none();
+    if !complete {
+        story.push("not all partners are here".to_owned());
+    }
     let story = story.join("; ");
-    Level { set: set.set, irrep: set.irrep.clone(), content, label, energy_ev, partners, story }
+    Level { set: set.set, irrep: set.irrep.clone(), content, label, energy_ev, partners, complete, story }
 }
 
 /// The label, or what stands in its place and why.

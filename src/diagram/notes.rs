@@ -82,6 +82,9 @@ pub fn notes(documents: &[Document], sketches: &[Sketch<'_>], options: &Options,
     if sketches.iter().any(|sketch| sketch.gap_ev().is_some() && (sketch.gap.is_some() || documents.len() > 1)) {
         notes.push("Gap: LUMO − HOMO, a difference of orbital energies, not a band or excitation energy.".into());
     }
+    if levels().any(|shown| !shown.level.complete) {
+        notes.push("* Not all partners of the irrep are there at one energy.".into());
+    }
     if levels().any(|shown| shown.level.irrep.is_none() && !shown.level.content.is_empty()) {
         notes.push(
             "Labels with +: orbitals turned among themselves at one energy; they make these irreps together.".into(),

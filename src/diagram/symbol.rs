@@ -113,9 +113,8 @@ pub fn group_runs(name: &str) -> Vec<Run> {
 #[must_use]
 pub fn width(runs: &[Run], size: f64) -> f64 {
     let advance = |c: char| match c {
-        'i' | 'j' | 'l' | 't' | 'f' | 'r' | ' ' | '.' | ',' | ':' | ';' | '\'' | '′' | '(' | ')' | '|' | '!' | 'I' => {
-            0.36
-        }
+        'i' | 'j' | 'l' | 't' | 'f' | 'r' | ' ' | '\u{a0}' | '.' | ',' | ':' | ';' | '\'' | '′' | '(' | ')' | '|'
+        | '!' | 'I' => 0.36,
         'm' | 'w' | 'M' | 'W' | '%' | '@' | '→' | '∞' | '…' => 1.0,
         c if c.is_ascii_uppercase() => 0.76,
         c if c.is_ascii() => 0.58,
