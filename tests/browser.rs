@@ -46,7 +46,8 @@ fn page(molecule: &str) -> String {
 
 /// The number that the page's policy lets scripts run by.
 fn nonce(page: &str) -> &str {
-    let (_, rest) = page.split_once("script-src 'nonce-").or_else(|| page.split_once("script-src &#39;nonce-")).unwrap();
+    let (_, rest) =
+        page.split_once("script-src 'nonce-").or_else(|| page.split_once("script-src &#39;nonce-")).unwrap();
     rest.split(|sign: char| !sign.is_ascii_alphanumeric()).next().unwrap()
 }
 
@@ -132,7 +133,8 @@ fn the_page_sorts_filters_and_stays_silent() {
     let sets = document["sets"].as_array().unwrap();
     assert_eq!(seen["rows"], sets.len());
     // Energies and electrons in order of their numbers, not of their text, both ways; other columns give up their mark.
-    let mut energies: Vec<f64> = sets.iter().map(|set| set["energy_hartree"].as_f64().unwrap() * 27.211_386_245_988).collect();
+    let mut energies: Vec<f64> =
+        sets.iter().map(|set| set["energy_hartree"].as_f64().unwrap() * 27.211_386_245_988).collect();
     energies.sort_by(f64::total_cmp);
     for column in ["Energy", "Electrons", "Label", "Orbitals"] {
         let sorted = &seen["sort"][column];
@@ -155,7 +157,10 @@ fn the_page_sorts_filters_and_stays_silent() {
     }
     let numbers = |text: &str| text.split(|sign: char| !sign.is_ascii_digit()).next().unwrap().parse::<u32>().unwrap();
     let labels = texts(&seen["sort"]["Label"]["up"]["values"]);
-    assert!(labels.windows(2).all(|pair| numbers(&pair[0]) <= numbers(&pair[1])), "numbers in labels count: {labels:?}");
+    assert!(
+        labels.windows(2).all(|pair| numbers(&pair[0]) <= numbers(&pair[1])),
+        "numbers in labels count: {labels:?}"
+    );
     // Filters: every row shown has the word, the count says how many.
     let total = sets.len();
     for (words, expected) in [
@@ -172,7 +177,9 @@ fn the_page_sorts_filters_and_stays_silent() {
         assert_eq!(found["hidden"], total - expected);
     }
     let cobalt = texts(&seen["filter"]["co 3d"]["shown"]);
-    assert!(!cobalt.is_empty() && cobalt.len() < total && cobalt.iter().all(|row| row.contains("Co") && row.contains("3d")));
+    assert!(
+        !cobalt.is_empty() && cobalt.len() < total && cobalt.iter().all(|row| row.contains("Co") && row.contains("3d"))
+    );
     assert_eq!(seen["named"], true, "the filter has a label");
     assert_eq!(seen["first"], "#main", "the first thing the keyboard reaches skips to the answer");
     assert_eq!(seen["targets"], serde_json::json!([]), "every link leads to a place in the page");
@@ -189,7 +196,9 @@ fn the_page_fits_a_narrow_window_and_can_be_read_in_light_and_dark() {
     let Some(program) = browser() else { return };
     let page = page("benzene_631g.molden");
     // 4.5 to 1 is what "Web Content Accessibility Guidelines 2.2", W3C (2023), 1.4.3 asks of text.
-    for (scheme, dark) in [("--blink-settings=preferredColorScheme=1", false), ("--blink-settings=preferredColorScheme=0", true)] {
+    for (scheme, dark) in
+        [("--blink-settings=preferredColorScheme=1", false), ("--blink-settings=preferredColorScheme=0", true)]
+    {
         let (dom, log) = open(&program, &driven(&page), &["--window-size=500,900", scheme]);
         let seen = findings(&dom);
         clean(&seen, &log);

@@ -32,8 +32,7 @@ fn single(l: usize, pure: bool, exponent: f64, place: [f64; 3]) -> Basis {
     Basis::new(&[named_atom("C", place)], &[shell], Primitives::Normalised)
 }
 
-const PLACES: [[f64; 3]; 5] =
-    [[0.0, 0.0, 0.0], [0.7, -0.2, 0.4], [-1.1, 0.6, 0.9], [0.1, -1.5, 0.3], [2.0, 1.0, -1.3]];
+const PLACES: [[f64; 3]; 5] = [[0.0, 0.0, 0.0], [0.7, -0.2, 0.4], [-1.1, 0.6, 0.9], [0.1, -1.5, 0.3], [2.0, 1.0, -1.3]];
 
 #[test]
 fn functions_have_the_values_of_their_closed_forms() {
@@ -203,8 +202,7 @@ fn the_level_encloses_the_share_asked_for() {
         let density = |r: f64| 4.0 * PI * r * r * norm * norm * (-2.0 * a * r * r).exp();
         let n = 1000;
         let h = radius / f64::from(n);
-        let inner: f64 =
-            (1..n).map(|k| density(f64::from(k) * h) * if k % 2 == 1 { 4.0 } else { 2.0 }).sum::<f64>();
+        let inner: f64 = (1..n).map(|k| density(f64::from(k) * h) * if k % 2 == 1 { 4.0 } else { 2.0 }).sum::<f64>();
         let enclosed = (density(0.0) + density(radius) + inner) * h / 3.0;
         assert!((enclosed - share).abs() < 0.005, "{enclosed} of {share}");
         assert!((level.enclosed - share).abs() < 0.005 && (level.on_grid - 1.0).abs() < 1e-3);
@@ -283,9 +281,9 @@ fn symmetry_elements_are_as_many_as_textbooks_count() {
         ("C2h", &[("C2", 1), ("sigma_h", 1), ("i", 1)]),
         ("C3v", &[("C3", 1), ("sigma_v", 3)]),
         ("S4", &[("C2, S4", 1)]),
-        ("D5d", &[("C5, S10", 1), ("C2'", 5), ("sigma_d", 5), ("i", 1)]),
+        ("D5d", &[("C5, S10", 1), ("C2", 5), ("sigma_d", 5), ("i", 1)]),
         ("D6h", &[("C6, S6", 1), ("C2'", 3), ("C2''", 3), ("sigma_h", 1), ("sigma_d", 3), ("sigma_v", 3), ("i", 1)]),
-        ("D3h", &[("C3, S3", 1), ("C2'", 3), ("sigma_h", 1), ("sigma_v", 3)]),
+        ("D3h", &[("C3, S3", 1), ("C2", 3), ("sigma_h", 1), ("sigma_v", 3)]),
         ("Td", &[("C3", 4), ("C2, S4", 3), ("sigma_d", 6)]),
         ("Oh", &[("C3, S6", 4), ("C4, S4", 3), ("C2'", 6), ("sigma_h", 3), ("sigma_d", 6), ("i", 1)]),
         ("Ih", &[("C5, S10", 6), ("C3, S6", 10), ("C2", 15), ("sigma", 15), ("i", 1)]),
@@ -329,7 +327,11 @@ fn pictures_are_the_same_on_any_number_of_threads_and_show_both_lobes() {
     };
     let picture = on(1).remove(0);
     assert_eq!(picture, on(3).remove(0));
-    assert!((picture.level.enclosed - 0.8).abs() < 0.005 && (picture.level.on_grid - 1.0).abs() < 0.05, "{:?}", picture.level);
+    assert!(
+        (picture.level.enclosed - 0.8).abs() < 0.005 && (picture.level.on_grid - 1.0).abs() < 0.05,
+        "{:?}",
+        picture.level
+    );
     let decoder = png::Decoder::new(std::io::Cursor::new(&picture.png));
     let mut reader = decoder.read_info().unwrap();
     let mut pixels = vec![0; reader.output_buffer_size().unwrap()];

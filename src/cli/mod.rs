@@ -5,6 +5,7 @@
 pub mod arguments;
 mod audit;
 mod input;
+mod levels;
 mod modes;
 mod output;
 mod page;
@@ -16,8 +17,7 @@ mod verbs;
 
 use crate::diagnostic::{self, Diagnostic};
 use crate::labelling::LabelError;
-use arguments::{Arguments, Common, Format, Verb};
-use clap::ValueEnum as _;
+use arguments::{Arguments, Common, Verb};
 use std::io::{self, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -86,12 +86,6 @@ pub enum CliError {
 }
 
 impl CliError {
-    /// A verb was asked for a form that it does not have.
-    fn no_form(verb: &str, forms: &str, asked: Format) -> Self {
-        let asked = asked.to_possible_value().map_or_else(String::new, |value| value.get_name().to_owned());
-        Self::Usage(format!("{verb} prints {forms}, not {asked}"))
-    }
-
     fn status(&self) -> Status {
         match self {
             Self::Usage(_)
@@ -129,6 +123,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
+        Verb::Levels(arguments) => levels::levels(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

@@ -1,6 +1,7 @@
 //! `label --format html`: the audit, the pictures and the table that the page shows beside the labels.
 
 use super::CliError;
+use super::arguments::Label;
 use crate::audit::{self, Limits};
 use crate::labelling::partners::standard_partners;
 use crate::labelling::{Labelled, SpinLabels, Thresholds, frontier};
@@ -13,34 +14,37 @@ use crate::report::table;
 use ndarray::{Array2, Axis};
 use std::io;
 
-/// The page of a labelled file; `pictures` says how many sets below and above the frontier are drawn.
+/// The page of a labelled file.
 pub fn page(
     document: &Document,
     molecule: &Molecule,
     labelled: Labelled,
     thresholds: &Thresholds,
-    pictures: (usize, usize),
+    arguments: &Label,
 ) -> Result<Vec<u8>, CliError> {
     let view = View::standard();
     let skeleton = Skeleton::new(molecule, &labelled.symmetry);
     let drawing = symmetry_elements(&skeleton, &labelled.symmetry.group, &view);
     let kinds = elements::elements(&labelled.symmetry.group).kinds();
-    let drawn = frontier_pictures(molecule, &labelled, &skeleton, &view, pictures)
+    let drawn = frontier_pictures(molecule, &labelled, &skeleton, &view, arguments.pictures)
         .map_err(|source| CliError::Write { path: None, source })?;
     let characters = table::build(&document.geometry.point_group).ok();
     let limits = Limits { degeneracy_hartree: thresholds.degeneracy_hartree, ..Limits::STANDARD };
-    let audited = audit::audit(molecule, labelled, thresholds, &limits).map(|(labelled, found)| {
-        audit_document(&document.source.file, molecule, &labelled, &found, thresholds).audit
-    });
+    let audited = audit::audit(molecule, labelled, thresholds, &limits)
+        .map(|(labelled, found)| audit_document(&document.source.file, molecule, &labelled, &found, thresholds).audit);
     let reason = audited.as_ref().err().map(ToString::to_string).unwrap_or_default();
     let audit = audited.as_ref().ok().and_then(Option::as_ref).ok_or(reason.as_str());
+    // Without energies there are no levels, and the page has no diagram.
+    let has_levels = document.sets.iter().flatten().any(|set| set.energy_hartree.is_some());
+    let levels = has_levels.then(|| super::levels::of_label(document, arguments)).transpose()?;
+    let levels = levels.map(|svg| String::from_utf8_lossy(&svg).into_owned());
     let report = Report {
         document,
         audit,
         table: characters.as_ref(),
         elements: &drawing,
         kinds: &kinds,
-        levels: None,
+        levels: levels.as_deref(),
         pictures: &drawn,
         view: &view.description,
     };

@@ -35,7 +35,7 @@ pub fn html(report: &Report<'_>) -> String {
                 style nonce=(nonce) { (PreEscaped(STYLE)) }
             }
             body {
-                (body)
+                (PreEscaped(body.0.replace("<style>", &format!("<style nonce=\"{nonce}\">"))))
                 script nonce=(nonce) { (PreEscaped(SCRIPT)) }
             }
         }
@@ -48,7 +48,7 @@ fn body(report: &Report<'_>) -> Markup {
     let has_transitions = document.transitions.as_ref().is_some_and(|entries| !entries.is_empty());
     let contents = [
         ("#answer", "Answer", true),
-        ("#levels", "Levels", report.levels.is_some()),
+        ("#level-diagram", "Levels", report.levels.is_some()),
         ("#orbitals", "Orbitals", !report.pictures.is_empty()),
         ("#symmetry", "Point group", true),
         ("#sets", "Sets", true),
@@ -71,7 +71,7 @@ fn body(report: &Report<'_>) -> Markup {
             (summary::answer(report))
             (summary::warnings(document))
             @if let Some(levels) = report.levels {
-                section #levels { h2 { "Levels" } figure.levels { (PreEscaped(levels)) } }
+                section #level-diagram { h2 { "Levels" } figure.levels { (PreEscaped(levels)) } }
             }
             @if !report.pictures.is_empty() { (figures::orbitals(document, report.pictures, report.view)) }
             (symmetry::section(report))

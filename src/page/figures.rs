@@ -53,8 +53,10 @@ pub fn set_name(set: &SetEntry) -> Markup {
 /// All pictures, or nothing without any.
 pub fn orbitals(document: &Document, pictures: &[SetPictures], view: &str) -> Markup {
     let sets = document.sets.as_deref().unwrap_or_default();
-    let shown = || pictures.iter().filter_map(|pictures| Some((pictures, sets.iter().find(|set| set.set == pictures.set)?)));
-    let coarse = pictures.iter().flat_map(|set| &set.partners).any(|picture| (picture.level.on_grid - 1.0).abs() > 0.05);
+    let shown =
+        || pictures.iter().filter_map(|pictures| Some((pictures, sets.iter().find(|set| set.set == pictures.set)?)));
+    let coarse =
+        pictures.iter().flat_map(|set| &set.partners).any(|picture| (picture.level.on_grid - 1.0).abs() > 0.05);
     html! {
         section #orbitals {
             h2 { "Orbitals at the frontier" }
@@ -72,7 +74,8 @@ pub fn orbitals(document: &Document, pictures: &[SetPictures], view: &str) -> Ma
 }
 
 fn set_figures(document: &Document, pictures: &SetPictures, set: &SetEntry) -> Markup {
-    let of = |index: usize| document.orbitals.iter().flatten().find(|entry| entry.spin == set.spin && entry.index == index);
+    let of =
+        |index: usize| document.orbitals.iter().flatten().find(|entry| entry.spin == set.spin && entry.index == index);
     html! {
         div.set {
             h3 {

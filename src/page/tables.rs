@@ -23,8 +23,14 @@ pub fn electrons(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
+/// Below this a number is rounding and nothing else.
+const ROUNDING: f64 = 1e-10;
+
 /// A small number as a factor and a power of ten.
 pub fn power_of_ten(value: f64, decimals: usize) -> Markup {
+    if value.abs() < ROUNDING {
+        return html! { "less than 10" sup { "−10" } };
+    }
     let text = format!("{value:.decimals$e}");
     let (factor, power) = text.split_once('e').unwrap_or((&text, "0"));
     html! { @if power == "0" { (factor) } @else { (factor) " × 10" sup { (power.replace('-', "−")) } } }
@@ -40,7 +46,10 @@ fn number(value: Option<f64>, text: impl Fn(f64) -> String) -> Markup {
 
 fn made_of(shares: &[ShareEntry]) -> String {
     let listed = shares.iter().filter(|share| share.share >= SHARE_SHOWN).take(3);
-    listed.map(|share| format!("{:.0} % {} {}", 100.0 * share.share, share.atoms, share.shell)).collect::<Vec<_>>().join(", ")
+    listed
+        .map(|share| format!("{:.0} % {} {}", 100.0 * share.share, share.atoms, share.shell))
+        .collect::<Vec<_>>()
+        .join(", ")
 }
 
 fn spin(document: &Document, spin: crate::model::Spin) -> &'static str {
@@ -244,7 +253,9 @@ fn rule(allowed: Option<bool>, components: &[&str]) -> Markup {
     match allowed {
         None => html! { "no rule" },
         Some(false) => html! { span.forbidden { "forbidden" } },
-        Some(true) => html! { @for (at, component) in components.iter().enumerate() { @if at > 0 { ", " } (function(component)) } },
+        Some(true) => {
+            html! { @for (at, component) in components.iter().enumerate() { @if at > 0 { ", " } (function(component)) } }
+        }
     }
 }
 

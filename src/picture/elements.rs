@@ -25,6 +25,8 @@ pub struct Axis {
     pub direction: Vector3<f64>,
     /// Order of its rotations, 1 where there are only rotary reflections; 0 for a continuous axis.
     pub fold: u32,
+    /// Order of its rotary reflections, 0 without any.
+    pub rotary: u32,
     /// Symbols of its operations of the highest order: `C3` and `S6`.
     pub names: Vec<String>,
 }
@@ -90,13 +92,13 @@ impl Elements {
         let axis = axis.into_inner();
         if continuous {
             if axis.z.abs() > 1.0 - SAME && self.axes.is_empty() {
-                self.axes.push(Axis { direction: Vector3::z(), fold: 0, names: vec!["Cinf".to_owned()] });
+                self.axes.push(Axis { direction: Vector3::z(), fold: 0, rotary: 0, names: vec!["Cinf".to_owned()] });
             }
             return;
         }
         let same = |other: &Axis| axis.cross(&other.direction).norm() < SAME;
         let at = self.axes.iter().position(same).unwrap_or_else(|| {
-            self.axes.push(Axis { direction: axis, fold: 1, names: Vec::new() });
+            self.axes.push(Axis { direction: axis, fold: 1, rotary: 0, names: Vec::new() });
             self.axes.len() - 1
         });
         let line = &mut self.axes[at];
@@ -111,7 +113,11 @@ impl Elements {
                 line.names.retain(|name| name.starts_with('S'));
                 line.names.insert(0, name);
             }
-            None if !line.names.iter().any(|name| name.starts_with('S')) => line.names.push(name),
+            None if lowest > line.rotary => {
+                line.rotary = lowest;
+                line.names.retain(|name| !name.starts_with('S'));
+                line.names.push(name);
+            }
             _ => {}
         }
     }
@@ -202,8 +208,8 @@ pub fn symmetry_elements(skeleton: &Skeleton, group: &PointGroup, view: &View) -
     }
     if shown.centre {
         let centre = paper.place(&Vector3::zeros());
-        document = document
-            .add(Circle::new().set("class", "centre").set("cx", centre.x).set("cy", centre.y).set("r", 4.5));
+        document =
+            document.add(Circle::new().set("class", "centre").set("cx", centre.x).set("cy", centre.y).set("r", 4.5));
     }
     document.add(frame(&paper, reach)).to_string()
 }
@@ -230,7 +236,8 @@ fn plane_path(plane: &Plane, shown: &Elements, paper: &Paper<'_>, radius: f64) -
 /// The half of an axis on the side of the eye, or behind, with its sign at the end.
 fn half_axis(axis: &Axis, shown: &Elements, paper: &Paper<'_>, reach: f64, towards: bool) -> Group {
     let end = sense(axis, paper, towards) * reach;
-    let line = line(paper, &Vector3::zeros(), &end).set("stroke-dasharray", dashes(shown.kind_of(&axis.names.join(", "))));
+    let line =
+        line(paper, &Vector3::zeros(), &end).set("stroke-dasharray", dashes(shown.kind_of(&axis.names.join(", "))));
     let group = Group::new().set("class", if towards { "axis near" } else { "axis far" }).add(line);
     let end = paper.place(&end);
     sign(axis.fold, end.x, end.y).into_iter().fold(group, Group::add)
@@ -257,11 +264,7 @@ fn sense(axis: &Axis, paper: &Paper<'_>, towards: bool) -> Vector3<f64> {
 
 fn line(paper: &Paper<'_>, from: &Vector3<f64>, to: &Vector3<f64>) -> Line {
     let (from, to) = (paper.place(from), paper.place(to));
-    Line::new()
-        .set("x1", tenths(from.x))
-        .set("y1", tenths(from.y))
-        .set("x2", tenths(to.x))
-        .set("y2", tenths(to.y))
+    Line::new().set("x1", tenths(from.x)).set("y1", tenths(from.y)).set("x2", tenths(to.x)).set("y2", tenths(to.y))
 }
 
 fn tenths(x: f64) -> f64 {
@@ -272,11 +275,15 @@ fn tenths(x: f64) -> f64 {
 fn sign(fold: u32, x: f64, y: f64) -> Option<Box<dyn svg::Node>> {
     const SIZE: f64 = 6.0;
     match fold {
-        0 => Some(Box::new(Circle::new().set("class", "ring").set("cx", tenths(x)).set("cy", tenths(y)).set("r", SIZE))),
+        0 => {
+            Some(Box::new(Circle::new().set("class", "ring").set("cx", tenths(x)).set("cy", tenths(y)).set("r", SIZE)))
+        }
         1 => None,
         2 => {
             let (left, right, y) = (tenths(x - SIZE), tenths(x + SIZE), tenths(y));
-            Some(Box::new(Path::new().set("d", format!("M{left} {y}A7.5 7.5 0 0 1 {right} {y}A7.5 7.5 0 0 1 {left} {y}Z"))))
+            Some(Box::new(
+                Path::new().set("d", format!("M{left} {y}A7.5 7.5 0 0 1 {right} {y}A7.5 7.5 0 0 1 {left} {y}Z")),
+            ))
         }
         fold => {
             let corners: Vec<String> = (0..fold)
@@ -303,9 +310,10 @@ fn molecule(skeleton: &Skeleton, paper: &Paper<'_>) -> Group {
     for (at, atom) in skeleton.atoms.iter().enumerate() {
         let place = paper.place(&atom.place);
         let radius = (atom.radius * paper.scale * 1.1).clamp(3.5, 13.0);
-        let mut group = Group::new().set("class", "atom").add(Title::new(format!("{} {}", atom.symbol, at + 1))).add(
-            Circle::new().set("cx", tenths(place.x)).set("cy", tenths(place.y)).set("r", tenths(radius)),
-        );
+        let mut group = Group::new()
+            .set("class", "atom")
+            .add(Title::new(format!("{} {}", atom.symbol, at + 1)))
+            .add(Circle::new().set("cx", tenths(place.x)).set("cy", tenths(place.y)).set("r", tenths(radius)));
         if radius >= READABLE {
             let size = tenths(radius * 1.15);
             group = group.add(
@@ -327,15 +335,13 @@ fn frame(paper: &Paper<'_>, reach: f64) -> Group {
     ["x", "y", "z"].iter().enumerate().fold(Group::new().set("class", "frame"), |group, (axis, letter)| {
         let direction = Vector3::ith(axis, 1.0);
         let text = paper.place(&(direction * reach * 1.11));
-        group
-            .add(line(paper, &(direction * reach * 0.92), &(direction * reach * 1.03)))
-            .add(
-                Text::new(*letter)
-                    .set("x", tenths(text.x))
-                    .set("y", tenths(text.y + 5.0))
-                    .set("font-size", 15)
-                    .set("font-style", "italic")
-                    .set("text-anchor", "middle"),
-            )
+        group.add(line(paper, &(direction * reach * 0.92), &(direction * reach * 1.03))).add(
+            Text::new(*letter)
+                .set("x", tenths(text.x))
+                .set("y", tenths(text.y + 5.0))
+                .set("font-size", 15)
+                .set("font-style", "italic")
+                .set("text-anchor", "middle"),
+        )
     })
 }

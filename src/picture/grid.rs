@@ -143,8 +143,9 @@ pub fn around(
 /// Opposite corners of the box around some places; the origin twice when there are none.
 #[must_use]
 pub fn bounds(places: impl Iterator<Item = Vector3<f64>>) -> (Vector3<f64>, Vector3<f64>) {
-    places.fold(None, |bounds: Option<(Vector3<f64>, Vector3<f64>)>, place| {
-        Some(bounds.map_or((place, place), |(low, high)| (low.inf(&place), high.sup(&place))))
-    })
-    .unwrap_or_default()
+    places
+        .fold(None, |bounds: Option<(Vector3<f64>, Vector3<f64>)>, place| {
+            Some(bounds.map_or((place, place), |(low, high)| (low.inf(&place), high.sup(&place))))
+        })
+        .unwrap_or_default()
 }

@@ -71,11 +71,7 @@ impl<'a> Raster<'a> {
     fn pixel(&self, place: &Vector3<f64>) -> Vector3<f64> {
         let seen = self.view.project(place);
         let half = self.side as f64 / 2.0;
-        Vector3::new(
-            half + (seen.x - self.middle.0) * self.scale,
-            half - (seen.y - self.middle.1) * self.scale,
-            seen.z,
-        )
+        Vector3::new(half + (seen.x - self.middle.0) * self.scale, half - (seen.y - self.middle.1) * self.scale, seen.z)
     }
 
     /// Visits the pixels in a box by their middles.

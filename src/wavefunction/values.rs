@@ -43,10 +43,8 @@ impl<'a> Spread<'a> {
                     };
             }
         }
-        let largest = coefficients
-            .outer_iter()
-            .map(|orbital| orbital.iter().map(|c: &f64| c.abs()).sum())
-            .fold(0.0, f64::max);
+        let largest =
+            coefficients.outer_iter().map(|orbital| orbital.iter().map(|c: &f64| c.abs()).sum()).fold(0.0, f64::max);
         Self { shell, powers, coefficients, extent: extent(shell, largest) }
     }
 
