@@ -35,6 +35,8 @@ pub enum Verb {
     Modes(Modes),
     /// Label many files: one record each, in parallel, resumable, in shards
     Batch(super::batch::Batch),
+    /// Level diagrams side by side, with lines between equal irreps, as SVG
+    Levels(Levels),
 }
 
 /// Options of every verb.
@@ -63,6 +65,10 @@ pub enum Format {
     Json,
     /// One row a set; energies in hartree
     Csv,
+    /// `label`: a page for the browser with pictures, all in one file
+    Html,
+    /// A level diagram; energies in eV
+    Svg,
 }
 
 /// Which group the labels are in.
@@ -102,15 +108,103 @@ pub struct Label {
     /// Compute what orbitals are made of even for large bases
     #[arg(long)]
     pub character: bool,
+    /// With --format html: draw the orbitals of the K highest sets with electrons and the L lowest empty ones
+    #[arg(long, value_name = "K,L", value_parser = window, default_value = "2,2")]
+    pub pictures: (usize, usize),
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,
+    /// How the level diagram of `--format svg` is drawn
+    #[command(flatten)]
+    pub drawing: Drawing,
+    /// With --format svg: allowed electric-dipole transitions of the frontier as arrows with their polarisation
+    #[arg(long)]
+    pub transitions: bool,
     /// Which group
     #[command(flatten)]
     pub placing: Placing,
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
+}
+
+/// How a level diagram is drawn.
+#[derive(Debug, Args)]
+pub struct Drawing {
+    /// Energies that a level diagram shows, eV; by default the frontier without cores
+    #[arg(long, value_name = "LOW,HIGH", value_parser = energy_range, allow_hyphen_values = true)]
+    pub range: Option<(f64, f64)>,
+    /// Width of a level diagram: one journal column (84 mm) or two (174 mm)
+    #[arg(long, value_enum)]
+    pub width: Option<PaperWidth>,
+}
+
+impl Drawing {
+    /// Some option was given.
+    #[must_use]
+    pub fn is_asked(&self) -> bool {
+        self.range.is_some() || self.width.is_some()
+    }
+}
+
+/// Widths of figures in journals.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum PaperWidth {
+    /// 84 mm
+    Single,
+    /// 174 mm
+    Double,
+}
+
+/// `levels`.
+#[derive(Debug, Args)]
+pub struct Levels {
+    /// Molden-format files, plain or gzip, in the order of the columns; `-` once for standard input
+    #[arg(required = true)]
+    pub files: Vec<PathBuf>,
+    /// Words over the columns instead of file names, parted by commas
+    #[arg(long, value_name = "NAMES", value_delimiter = ',')]
+    pub names: Vec<String>,
+    /// Zero of the energy axis: as the files have it, or the highest level with electrons of each file
+    #[arg(long, value_enum, default_value_t = Zero::Absolute)]
+    pub zero: Zero,
+    /// Levels of an irrep are counted from the lowest, or from the highest with electrons (for files with different cores)
+    #[arg(long, value_enum, default_value_t = CountFrom::Lowest)]
+    pub count: CountFrom,
+    /// Of several ways in which a subgroup lies in a group of the next file, take this one; by default the coordinates decide, where
+    /// both files are in one frame
+    #[arg(long, value_name = "N")]
+    pub way: Option<usize>,
+    /// Distance a nucleus may lie from its symmetric place, Å
+    #[arg(long, value_name = "Å", default_value_t = 0.01, value_parser = positive)]
+    pub tolerance: f64,
+    /// How it is drawn
+    #[command(flatten)]
+    pub drawing: Drawing,
+    /// Which group
+    #[command(flatten)]
+    pub placing: Placing,
+    /// What every verb takes
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// Zero of an energy axis.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum Zero {
+    /// As the files have it
+    Absolute,
+    /// The highest level with electrons
+    Homo,
+}
+
+/// Where counting begins.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum CountFrom {
+    /// The lowest level of an irrep is its first
+    Lowest,
+    /// The highest with electrons of one file belongs to that of the next
+    Frontier,
 }
 
 /// `geometry`.
@@ -278,6 +372,15 @@ pub(super) fn positive(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value > 0.0 && value.is_finite() => Ok(value),
         _ => Err("expected a number above zero".to_owned()),
+    }
+}
+
+fn energy_range(text: &str) -> Result<(f64, f64), String> {
+    let number = |text: &str| text.trim().parse::<f64>().ok().filter(|value| value.is_finite());
+    let parsed = text.split_once(',').and_then(|(low, high)| Some((number(low)?, number(high)?)));
+    match parsed {
+        Some((low, high)) if low < high => Ok((low, high)),
+        _ => Err("expected two energies in eV, the lower first, such as -15,5".to_owned()),
     }
 }
 

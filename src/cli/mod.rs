@@ -6,8 +6,10 @@ pub mod arguments;
 mod audit;
 mod batch;
 mod input;
+mod levels;
 mod modes;
 mod output;
+mod page;
 mod placing;
 mod purify;
 mod states;
@@ -123,6 +125,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
         Verb::Batch(arguments) => batch::batch(arguments, out, errors),
+        Verb::Levels(arguments) => levels::levels(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
     }
 }

@@ -1,7 +1,7 @@
 //! The verb `modes`: place the nuclei, assign the file's modes where it has some, deliver.
 
 use super::arguments::{Format, Modes};
-use super::verbs::{json, molden_or_xyz, rows};
+use super::verbs::{json, molden_or_xyz, refuse, rows};
 use super::{CliError, Status, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{LabelError, sites};
@@ -49,6 +49,7 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
         Format::Text => modes_text(&document).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => rows(|out| csv::write_modes(&document, out))?,
+        format @ (Format::Svg | Format::Html) => return Err(refuse("modes", "text, json or csv", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

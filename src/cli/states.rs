@@ -1,7 +1,7 @@
 //! `states`: terms of a configuration that is typed, or read from a file's occupations.
 
 use super::arguments::{Format, States, Table};
-use super::verbs::{json, molden};
+use super::verbs::{json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::group::double_name::half;
 use crate::group::irrep_name::Parity;
@@ -38,7 +38,7 @@ pub fn states(arguments: &States, out: &mut dyn Write, errors: &mut dyn Write) -
     let printed = match arguments.common.format {
         Format::Text => states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("states prints text or json, not csv".to_owned())),
+        format => return Err(refuse("states", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
@@ -51,7 +51,7 @@ pub fn double_table(arguments: &Table, out: &mut dyn Write) -> Result<Status, Cl
     let printed = match arguments.common.format {
         Format::Text => double_table::text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        format => return Err(refuse("table", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -2,7 +2,7 @@
 
 use super::arguments::{Format, Transitions};
 use super::placing::choice;
-use super::verbs::{json, molden, rows};
+use super::verbs::{json, molden, refuse, rows};
 use super::{CliError, Status, output, use_threads};
 use crate::labelling::{self, Thresholds};
 use crate::model::ANGSTROM_PER_BOHR;
@@ -35,6 +35,7 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
         Format::Text => transitions_text(&document).into_bytes(),
         Format::Json => json(&document)?,
         Format::Csv => rows(|out| csv::write_transitions(&document, out))?,
+        format @ (Format::Svg | Format::Html) => return Err(refuse("transitions", "text, json or csv", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -3,7 +3,7 @@
 use super::arguments::{Common, Format, Geometry, Label, Placing, Table};
 use super::input::{self, Bytes};
 use super::placing::choice;
-use super::{CliError, Status, draw, output, use_threads};
+use super::{CliError, Status, draw, levels, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{self, Labelled, Thresholds};
 use crate::model::{self, ANGSTROM_PER_BOHR, Molecule, Reading};
@@ -12,11 +12,12 @@ use crate::report::document::Document;
 use crate::report::text::{self, TextOptions};
 use crate::report::{csv, rule, table};
 use crate::wavefunction;
+use clap::ValueEnum;
 use std::io::Write;
 use std::path::Path;
 
 /// Populations need the square root of the overlap matrix, n³: above this many functions only on demand.
-const CHARACTER_LIMIT: usize = 1200;
+pub(super) const CHARACTER_LIMIT: usize = 1200;
 
 /// Bytes and meaning of a Molden file; warnings go to `errors`.
 pub(super) fn molden(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<(Bytes, Molecule), CliError> {
@@ -88,6 +89,10 @@ pub(super) fn labels(
 
 pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
     use_threads(&arguments.common)?;
+    if arguments.common.format != Format::Svg && (arguments.transitions || arguments.drawing.is_asked()) {
+        let text = "--range, --width and --transitions belong to the level diagram: add --format svg";
+        return Err(CliError::Usage(text.to_owned()));
+    }
     let path = &arguments.file;
     let (bytes, mut molecule) = molden(path, &arguments.common, errors)?;
     let thresholds = Thresholds {
@@ -99,10 +104,13 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let asked =
         Labelling { thresholds, placing: &arguments.placing, window: arguments.window, character: arguments.character };
     let (labelled, document) = labels(path, &mut molecule, asked)?;
-    let printed =
-        print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
-    if let Some(target) = &arguments.write_labels {
-        let labels = build::sym_labels(&labelled);
+    let sym_labels = arguments.write_labels.as_ref().map(|_| build::sym_labels(&labelled));
+    let printed = match arguments.common.format {
+        Format::Svg => levels::of_label(&document, arguments)?,
+        Format::Html => super::page::page(&document, &molecule, labelled, &thresholds, arguments)?,
+        _ => print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?,
+    };
+    if let Some((target, labels)) = arguments.write_labels.as_ref().zip(sym_labels) {
         output::deliver(Some(target), &model::write_labels(&bytes, &molecule, &labels), out)?;
     }
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
@@ -133,7 +141,7 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
         let printed = match arguments.common.format {
             Format::Text => rule::text(&document).into_bytes(),
             Format::Json => json(&document)?,
-            Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+            format => return Err(refuse("table", "text or json", format)),
         };
         output::deliver(arguments.common.output.as_deref(), &printed, out)?;
         return Ok(Status::Done);
@@ -142,7 +150,7 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
     let printed = match arguments.common.format {
         Format::Text => table::text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        format => return Err(refuse("table", "text or json", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
@@ -157,7 +165,14 @@ fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) ->
             Err(CliError::Usage("geometry prints text or json: csv has one row a set of orbitals".to_owned()))
         }
         Format::Csv => rows(|out| csv::write_sets(document, out)),
+        format @ (Format::Svg | Format::Html) => Err(refuse("geometry", "text or json", format)),
     }
+}
+
+/// A form that a verb does not print.
+pub(super) fn refuse(verb: &str, prints: &str, format: Format) -> CliError {
+    let name = format.to_possible_value().map_or(String::new(), |value| value.get_name().to_owned());
+    CliError::Usage(format!("{verb} prints {prints}, not {name}"))
 }
 
 /// Comma-separated rows in memory.

@@ -1,7 +1,7 @@
 //! From a molecule to the irrep, partner and set of every orbital.
 //!
 //! Reading order: `sites` (what may be carried onto what), `weights`, `atom` (the full rotation group),
-//! `sets`, then what is read off the sets: `frontier`, `composition`, `d_block`.
+//! `sets`, then what is read off the sets: `partners`, `frontier`, `composition`, `d_block`.
 
 mod atom;
 pub mod composition;
@@ -10,6 +10,7 @@ pub mod d_block;
 pub mod descent;
 pub mod frame_atoms;
 pub mod frontier;
+pub mod partners;
 pub mod placement;
 pub mod sets;
 pub mod sites;
