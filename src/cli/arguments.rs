@@ -1,7 +1,9 @@
 //! What a person types, as types.
 
 use crate::audit::Limits;
+use crate::report::schema;
 use crate::selection::Selector;
+use clap::builder::PossibleValuesParser;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
 
@@ -33,6 +35,8 @@ pub enum Verb {
     Transitions(Transitions),
     /// Irreps of normal modes, infrared and Raman activity; without modes, how the vibrations fall into irreps
     Modes(Modes),
+    /// JSON Schema of the JSON outputs: of one verb, or of all in one document
+    Schema(Schema),
 }
 
 /// Options of every verb.
@@ -270,6 +274,17 @@ pub struct Modes {
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
+}
+
+/// `schema`.
+#[derive(Debug, Args)]
+pub struct Schema {
+    /// Whose output; without it every schema in one document
+    #[arg(value_name = "VERB", value_parser = PossibleValuesParser::new(schema::names()))]
+    pub output_of: Option<String>,
+    /// Write the schema to this file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
 }
 
 fn positive(text: &str) -> Result<f64, String> {

@@ -4,6 +4,7 @@
 
 pub mod arguments;
 mod audit;
+mod help;
 mod input;
 mod modes;
 mod output;
@@ -122,6 +123,7 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
+        Verb::Schema(arguments) => help::schema(arguments, out),
     }
 }
 

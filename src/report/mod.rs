@@ -15,6 +15,7 @@ pub mod states_text;
 pub mod placement;
 pub mod purify;
 pub mod rule;
+pub mod schema;
 pub mod table;
 pub mod text;
 pub mod transitions;
