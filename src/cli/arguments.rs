@@ -11,9 +11,23 @@ use std::path::PathBuf;
 #[derive(Debug, Parser)]
 #[command(name = "orbsieve", version, about, max_term_width = 100)]
 pub struct Arguments {
+    /// Styles on the terminal; `NO_COLOR` and `CLICOLOR_FORCE` count when this is auto
+    #[arg(long, global = true, value_enum, value_name = "WHEN", default_value_t = Color::Auto)]
+    pub color: Color,
     /// What to do.
     #[command(subcommand)]
     pub verb: Verb,
+}
+
+/// When text for people has styles.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum Color {
+    /// On a terminal
+    Auto,
+    /// Also in pipes
+    Always,
+    /// Not even on a terminal
+    Never,
 }
 
 /// The verbs.
@@ -37,6 +51,30 @@ pub enum Verb {
     Modes(Modes),
     /// JSON Schema of the JSON outputs: of one verb, or of all in one document
     Schema(Schema),
+    /// Script that completes verbs, options and values in a shell
+    Completions(Completions),
+    /// Manual page in roff, of the program or of one verb
+    Manual(Manual),
+}
+
+impl Verb {
+    /// Whether standard output gets text for people (and not data, a file in its own format or a script).
+    #[must_use]
+    pub fn prints_text(&self) -> bool {
+        let common = match self {
+            Self::Label(Label { common, .. })
+            | Self::Geometry(Geometry { common, .. })
+            | Self::Table(Table { common, .. })
+            | Self::States(States { common, .. })
+            | Self::Audit(Audit { common, .. })
+            | Self::Transitions(Transitions { common, .. })
+            | Self::Modes(Modes { common, .. }) => common,
+            // Without a file the orbitals themselves go there.
+            Self::Purify(Purify { common, .. }) if common.output.is_some() => common,
+            Self::Purify(_) | Self::Schema(_) | Self::Completions(_) | Self::Manual(_) => return false,
+        };
+        common.format == Format::Text
+    }
 }
 
 /// Options of every verb.
@@ -285,6 +323,20 @@ pub struct Schema {
     /// Write the schema to this file, whole or not at all
     #[arg(long, value_name = "FILE")]
     pub output: Option<PathBuf>,
+}
+
+/// `completions`.
+#[derive(Debug, Args)]
+pub struct Completions {
+    /// The shell
+    pub shell: clap_complete::Shell,
+}
+
+/// `manual`.
+#[derive(Debug, Args)]
+pub struct Manual {
+    /// A verb; without it the program as a whole
+    pub verb: Option<String>,
 }
 
 fn positive(text: &str) -> Result<f64, String> {

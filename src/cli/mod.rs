@@ -9,8 +9,10 @@ mod input;
 mod modes;
 mod output;
 mod placing;
+mod progress;
 mod purify;
 mod states;
+pub mod terminal;
 mod transitions;
 mod verbs;
 
@@ -124,6 +126,8 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
         Verb::Schema(arguments) => help::schema(arguments, out),
+        Verb::Completions(arguments) => help::completions(arguments.shell, out),
+        Verb::Manual(arguments) => help::manual(arguments.verb.as_deref(), out),
     }
 }
 

@@ -2,6 +2,7 @@
 
 use super::arguments::{Format, Transitions};
 use super::placing::choice;
+use super::progress::Progress;
 use super::verbs::{json, molden, rows};
 use super::{CliError, Status, output, use_threads};
 use crate::labelling::{self, Thresholds};
@@ -19,7 +20,8 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
     let tolerance_bohr = arguments.tolerance / ANGSTROM_PER_BOHR;
     let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
     let placed = choice(&arguments.placing, &molecule)?;
-    let labelled = labelling::label_in(&mut molecule, &thresholds, &placed)
+    let progress = Progress::start(&arguments.common, "labels");
+    let labelled = labelling::label_watched(&mut molecule, &thresholds, &placed, &progress.watch())
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let choice = Choice {
         from: arguments.from.clone(),
@@ -27,10 +29,12 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
         window: arguments.window,
         largest_gap: arguments.max_ev.map(|ev| ev / EV_PER_HARTREE),
     };
+    progress.stage("moments of the transitions");
     let name = path.display().to_string();
     let document =
         build::transitions_document(&name, &molecule, &labelled, &thresholds, &choice, arguments.allowed_only)
             .map_err(|error| CliError::Usage(format!("{name}: {error}")))?;
+    drop(progress);
     let printed = match arguments.common.format {
         Format::Text => transitions_text(&document).into_bytes(),
         Format::Json => json(&document)?,

@@ -3,6 +3,7 @@
 use super::arguments::{Common, Format, Geometry, Label, Table};
 use super::input::{self, Bytes};
 use super::placing::choice;
+use super::progress::Progress;
 use super::{CliError, Status, draw, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{self, LabelError, Thresholds};
@@ -20,8 +21,11 @@ const CHARACTER_LIMIT: usize = 1200;
 
 /// Bytes and meaning of a Molden file; warnings go to `errors`.
 pub(super) fn molden(path: &Path, common: &Common, errors: &mut dyn Write) -> Result<(Bytes, Molecule), CliError> {
+    let progress = Progress::start(common, "reading");
     let bytes = input::open(path)?;
-    let molecule = meaning(model::read_molden(&bytes), path, &bytes, common, errors)?;
+    let read = model::read_molden(&bytes);
+    drop(progress);
+    let molecule = meaning(read, path, &bytes, common, errors)?;
     Ok((bytes, molecule))
 }
 
@@ -65,12 +69,16 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     };
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
     let choice = choice(&arguments.placing, &molecule)?;
-    let labelled = labelling::label_in(&mut molecule, &thresholds, &choice).map_err(failed)?;
+    let progress = Progress::start(&arguments.common, "labels");
+    let labelled = labelling::label_watched(&mut molecule, &thresholds, &choice, &progress.watch()).map_err(failed)?;
+    progress.stage("what orbitals are made of");
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
     let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
+    progress.stage("transitions at the frontier");
     let name = path.display().to_string();
     let wanted = Wanted { window: arguments.window, frontier_transitions: small };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
+    drop(progress);
     let printed =
         print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
     if let Some(target) = &arguments.write_labels {

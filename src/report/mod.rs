@@ -2,11 +2,14 @@
 //!
 //! Only this layer knows JSON keys, electronvolts and ångströms.
 
+pub mod ascii;
 pub mod audit;
 pub mod audit_text;
 pub mod build;
 pub mod csv;
 pub mod document;
+pub mod fit;
+pub mod paint;
 pub mod modes;
 pub mod modes_text;
 pub mod double_table;
