@@ -29,11 +29,15 @@ fn is_there(program: &str) -> bool {
 
 /// Standard output and standard error of a run on a pseudo-terminal of 90 columns, with carriage returns taken out.
 fn on_terminal(arguments: &str, variables: &[(&str, &str)]) -> Option<String> {
+    shell_on_terminal(&format!("{} {arguments}", env!("CARGO_BIN_EXE_orbsieve")), variables)
+}
+
+fn shell_on_terminal(line: &str, variables: &[(&str, &str)]) -> Option<String> {
     if !is_there("script") {
         return None;
     }
     let log = tempfile::NamedTempFile::new().unwrap();
-    let line = format!("stty cols 90 rows 40; {} {arguments}", env!("CARGO_BIN_EXE_orbsieve"));
+    let line = format!("stty cols 90 rows 40; {line}");
     let mut command = Command::new("script");
     for name in VARIABLES {
         command.env_remove(name);
@@ -126,9 +130,25 @@ fn short_runs_and_quiet_ones_show_no_progress() {
     let Some(shown) = on_terminal(&format!("label {WATER} --format csv"), &[]) else { return };
     let piped = String::from_utf8(run(&["label", WATER, "--format", "csv"], &[]).stdout).unwrap();
     assert_eq!(shown, piped);
-    let large = "tests/molecules/b12h12_ih_sto3g.molden";
-    let quiet = on_terminal(&format!("label {large} --format csv --quiet --threads 1"), &[]).unwrap();
-    assert!(!quiet.contains('\u{1b}'), "{quiet}");
+}
+
+#[test]
+fn a_long_run_says_what_it_does_and_leaves_no_trace() {
+    // A slow pipe is what surely lasts longer than half a second.
+    let slow = |options: &str| {
+        let line =
+            format!("(sleep 1.5; cat {WATER}) | {} label - --format csv {options}", env!("CARGO_BIN_EXE_orbsieve"));
+        shell_on_terminal(&line, &[])
+    };
+    let Some(shown) = slow("") else { return };
+    assert!(shown.contains("reading"), "{shown:?}");
+    // The last thing before the result clears the line.
+    let (progress, result) = shown.rsplit_once("\u{1b}[2K").unwrap();
+    assert!(progress.contains("reading"));
+    let direct = String::from_utf8(run(&["label", WATER, "--format", "csv"], &[]).stdout).unwrap();
+    assert_eq!(result.replace("\n-,", &format!("\n{WATER},")), direct);
+    let quiet = slow("--quiet").unwrap();
+    assert!(!quiet.contains('\u{1b}') && !quiet.contains("reading"), "{quiet:?}");
 }
 
 #[test]

@@ -2,7 +2,7 @@
 
 use crate::audit::Limits;
 use crate::report::schema;
-use crate::selection::Selector;
+use crate::selection::{Selector, SetName};
 use clap::builder::PossibleValuesParser;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
@@ -142,6 +142,12 @@ pub struct Label {
     /// Compute what orbitals are made of even for large bases
     #[arg(long)]
     pub character: bool,
+    /// Only show how one set comes by its label: an orbital number, a label (3e2g), homo, lumo+1; beta:7 of an unrestricted file
+    #[arg(long, value_name = "ORBITAL", conflicts_with_all = ["window", "all", "write_labels"])]
+    pub explain: Option<SetName>,
+    /// Only show why the transition between two sets is allowed or not
+    #[arg(long, num_args = 2, value_names = ["A", "B"], conflicts_with_all = ["explain", "window", "all", "write_labels"])]
+    pub explain_transition: Option<Vec<SetName>>,
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,
@@ -284,6 +290,9 @@ pub struct Transitions {
     /// Pair the K highest sets with electrons and the L lowest with room
     #[arg(long, value_name = "K,L", value_parser = window, default_value = "4,4")]
     pub window: (usize, usize),
+    /// Only show why the transition between two sets is allowed or not
+    #[arg(long, num_args = 2, value_names = ["A", "B"], conflicts_with_all = ["from", "to", "max_ev", "allowed_only"])]
+    pub explain: Option<Vec<SetName>>,
     /// Leave out pairs farther apart than this in orbital energy, eV
     #[arg(long, value_name = "EV", value_parser = positive)]
     pub max_ev: Option<f64>,

@@ -4,6 +4,7 @@
 
 pub mod arguments;
 mod audit;
+mod explain;
 mod help;
 mod input;
 mod modes;

@@ -1,6 +1,7 @@
 //! The verb `transitions`: label the orbitals, pair the sets asked for, deliver.
 
 use super::arguments::{Format, Transitions};
+use super::explain::Ground;
 use super::placing::choice;
 use super::progress::Progress;
 use super::verbs::{json, molden, rows};
@@ -23,6 +24,12 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
     let progress = Progress::start(&arguments.common, "labels");
     let labelled = labelling::label_watched(&mut molecule, &thresholds, &placed, &progress.watch())
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
+    let name = path.display().to_string();
+    if let Some([from, to]) = arguments.explain.as_deref() {
+        drop(progress);
+        let ground = Ground { name: &name, molecule: &molecule, labelled: &labelled, common: &arguments.common };
+        return ground.transition(from, to, out);
+    }
     let choice = Choice {
         from: arguments.from.clone(),
         to: arguments.to.clone(),
@@ -30,7 +37,6 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
         largest_gap: arguments.max_ev.map(|ev| ev / EV_PER_HARTREE),
     };
     progress.stage("moments of the transitions");
-    let name = path.display().to_string();
     let document =
         build::transitions_document(&name, &molecule, &labelled, &thresholds, &choice, arguments.allowed_only)
             .map_err(|error| CliError::Usage(format!("{name}: {error}")))?;

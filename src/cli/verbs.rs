@@ -1,6 +1,7 @@
 //! One function a verb: open, call the layers below, deliver.
 
 use super::arguments::{Common, Format, Geometry, Label, Table};
+use super::explain::Ground;
 use super::input::{self, Bytes};
 use super::placing::choice;
 use super::progress::Progress;
@@ -71,11 +72,20 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let choice = choice(&arguments.placing, &molecule)?;
     let progress = Progress::start(&arguments.common, "labels");
     let labelled = labelling::label_watched(&mut molecule, &thresholds, &choice, &progress.watch()).map_err(failed)?;
+    let name = path.display().to_string();
+    let ground = Ground { name: &name, molecule: &molecule, labelled: &labelled, common: &arguments.common };
+    if let Some(asked) = &arguments.explain {
+        drop(progress);
+        return ground.set(asked, &thresholds, out);
+    }
+    if let Some([from, to]) = arguments.explain_transition.as_deref() {
+        drop(progress);
+        return ground.transition(from, to, out);
+    }
     progress.stage("what orbitals are made of");
     let small = molecule.n_functions() <= CHARACTER_LIMIT;
     let lowdin = (small || arguments.character).then(|| wavefunction::lowdin(&labelled.settled, &molecule)).flatten();
     progress.stage("transitions at the frontier");
-    let name = path.display().to_string();
     let wanted = Wanted { window: arguments.window, frontier_transitions: small };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
     drop(progress);

@@ -11,6 +11,7 @@ pub mod descent;
 pub mod frame_atoms;
 pub mod frontier;
 pub mod placement;
+pub mod reasoning;
 pub mod sets;
 pub mod sites;
 mod weights;

@@ -5,6 +5,8 @@
 
 use super::document::{Document, SCHEMA};
 use super::double_table::DoubleTableDocument;
+use super::explain::ExplainDocument;
+use super::explain_pair::ExplainTransitionDocument;
 use super::modes::ModesDocument;
 use super::purify::PurifyDocument;
 use super::rule::RuleDocument;
@@ -39,6 +41,12 @@ const OUTPUTS: &[Output] = &[
         always: &["basis", "orbitals", "sets", "frontier", "thresholds"],
         never: &["audit", "jahn_teller"],
     },
+    Output::whole("label-explain", "orbsieve label --explain", derived::<ExplainDocument>),
+    Output::whole(
+        "transition-explain",
+        "orbsieve label --explain-transition, orbsieve transitions --explain",
+        derived::<ExplainTransitionDocument>,
+    ),
     Output {
         name: "geometry",
         title: "orbsieve geometry",
