@@ -53,6 +53,23 @@ const OUTPUTS: &[(&str, &[&str])] = &[
         ],
     ),
     (
+        "label-explain",
+        &[
+            "label tests/molecules/benzene_631g.molden --explain homo",
+            "label tests/molecules/localised_methane_boys.molden --explain 3",
+            "label tests/molecules/oxygen_triplet_631gs.molden --explain beta:lumo",
+            "label tests/molecules/neon_def2tzvp.molden --explain 3",
+        ],
+    ),
+    (
+        "transition-explain",
+        &[
+            "label tests/molecules/benzene_with_modes_sto3g.molden --explain-transition homo lumo",
+            "transitions tests/molecules/carbon_dioxide_631gs.molden --explain homo lumo",
+            "transitions tests/molecules/mixed_ethene.molden --explain 7 9",
+        ],
+    ),
+    (
         "geometry",
         &[
             "geometry tests/molecules/water_631gs.molden",

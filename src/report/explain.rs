@@ -39,7 +39,7 @@ pub struct ExplainDocument {
     pub orbitals: Vec<ExplainedOrbital>,
     /// Mean over the operations of ⟨i|R|j⟩² between the set's orbitals, row by row.
     pub connections: Vec<Vec<f64>>,
-    /// What that mean is for partners of the set's irrep: 1/d; for a real pair of complex conjugates 1/d only on average.
+    /// What that mean is for partners of the set's irrep: 1/d.
     pub connection_of_partners: Option<f64>,
     /// The orbital nearest in energy that is not in the set.
     pub nearest_outside: Option<OutsideEntry>,

@@ -23,6 +23,12 @@ fn number(value: f64) -> String {
     if (value - value.round()).abs() < 5e-5 { format!("{}", value.round() + 0.0) } else { format!("{value:.4}") }
 }
 
+/// Four decimals, zero without a sign.
+fn four(value: f64) -> String {
+    let text = format!("{value:.4}");
+    if text == "-0.0000" { text[1..].to_owned() } else { text }
+}
+
 fn percent(value: f64) -> String {
     format!("{:.2} %", 100.0 * value)
 }
@@ -68,13 +74,18 @@ fn written_out(entry: &ReductionEntry, all: &[ReductionEntry]) -> bool {
 }
 
 fn reduction_table(out: &mut String, heads: &[String], reduction: &[ReductionEntry], order: usize, product: &str) {
-    let _ = writeln!(out, "\nReduction: n(Γ) = 1/{order} Σ {product}, in the table {product} class by class");
+    let has_terms = reduction.iter().all(|entry| !entry.terms.is_empty());
+    if has_terms {
+        let _ = writeln!(out, "\nReduction: n(Γ) = 1/{order} Σ {product}, in the table {product} class by class");
+    } else {
+        // Of a continuous group the classes are without number, of an atom the operations a sample.
+        out.push_str("\nReduction\n");
+    }
     let shown: Vec<&ReductionEntry> = reduction.iter().filter(|entry| written_out(entry, reduction)).collect();
     let name = |entry: &&ReductionEntry| {
         let star = if entry.constituents > 1 { "*" } else { "" };
         format!("{}{star}", pretty(&entry.irrep))
     };
-    let has_terms = shown.iter().all(|entry| !entry.terms.is_empty());
     let n: Vec<String> = shown.iter().map(|entry| number(entry.multiplicity)).collect();
     if has_terms {
         let rows: Vec<(String, Vec<String>)> =
@@ -130,7 +141,7 @@ fn characters(out: &mut String, document: &ExplainDocument) {
     let _ = writeln!(out, "\nCharacters: χ(R) = Σ ⟨i|R|i⟩ over the set, mean over each class{sample}");
     let row = |of: &dyn Fn(&CharacterEntry) -> String| document.characters.iter().map(of).collect::<Vec<_>>();
     let mut rows = vec![
-        ("χ measured".to_owned(), row(&|entry| format!("{:.4}", entry.measured + 0.0))),
+        ("χ measured".to_owned(), row(&|entry| four(entry.measured))),
         ("± in the class".to_owned(), row(&|entry| format!("{:.0e}", entry.spread))),
     ];
     if let Some(irrep) = &document.set.irrep {
@@ -192,7 +203,8 @@ fn connections(out: &mut String, document: &ExplainDocument) {
         }
         _ => String::new(),
     };
-    let _ = writeln!(out, "\nDegeneracy: mean of ⟨i|R|j⟩² over the operations{expected}");
+    let sampled = if document.point_group == "Kh" { ", a sample of rotations that gives it roughly" } else { "" };
+    let _ = writeln!(out, "\nDegeneracy: mean of ⟨i|R|j⟩² over the operations{sampled}{expected}");
     let mut rows = table();
     let indices: Vec<String> = document.set.orbitals.iter().map(ToString::to_string).collect();
     rows.set_header([String::new()].into_iter().chain(indices.iter().cloned()));

@@ -27,14 +27,10 @@ fn broken(line: &str, width: usize) -> String {
     let first_word = signs.iter().position(|sign| *sign != ' ').unwrap_or(0);
     let Some(at) = (first_word + 1..=width).rev().find(|&at| signs[at] == ' ') else { return line.to_owned() };
     // The column that is being broken begins after the last gap of two blanks.
-    let column = (first_word + 2..=at)
-        .rev()
-        .find(|&start| signs[start] != ' ' && signs[start - 1] == ' ' && signs[start - 2] == ' ');
-    let in_gap = signs[at - 1] == ' ' || signs.get(at + 1) == Some(&' ');
-    let indent = match column {
-        Some(column) if !in_gap && width - column >= ROOM => column,
-        _ => first_word + INDENT,
+    let begins = |start: &usize| {
+        signs[*start] != ' ' && signs[*start - 1] == ' ' && signs[*start - 2] == ' ' && width - *start >= ROOM
     };
+    let indent = (first_word + 2..=at).rev().find(begins).unwrap_or(first_word + INDENT);
     let head: String = signs[..at].iter().collect();
     let rest: String = signs[at..].iter().collect();
     let rest = format!("{}{}", " ".repeat(indent), rest.trim_start());
