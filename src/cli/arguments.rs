@@ -103,6 +103,18 @@ pub enum Format {
     Json,
     /// One row a set; energies in hartree
     Csv,
+    /// Tables for papers, energies in eV
+    Latex,
+    /// The same in Markdown
+    Md,
+}
+
+impl Format {
+    /// As it is typed.
+    #[must_use]
+    pub fn name(self) -> String {
+        self.to_possible_value().map_or_else(String::new, |value| value.get_name().to_owned())
+    }
 }
 
 /// Which group the labels are in.

@@ -3,7 +3,7 @@
 use super::arguments::{Audit, Format};
 use super::placing::choice;
 use super::progress::Progress;
-use super::verbs::{json, molden};
+use super::verbs::{json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::audit::verdict::Verdict;
 use crate::audit::{self, AuditError, Limits};
@@ -42,7 +42,7 @@ pub fn audit(arguments: &Audit, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let printed = match arguments.common.format {
         Format::Text => audit_text(&document, arguments.all).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("audit prints text or json, not csv".to_owned())),
+        other => return Err(refuse("audit", "text or json", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(match found.verdict() {

@@ -1,7 +1,7 @@
 //! `label --explain`, `label --explain-transition` and `transitions --explain`: the reasoning instead of the report.
 
 use super::arguments::{Common, Format};
-use super::verbs::json;
+use super::verbs::{json, refuse};
 use super::{CliError, Status, output};
 use crate::labelling::{Labelled, Thresholds};
 use crate::model::Molecule;
@@ -58,7 +58,7 @@ impl Ground<'_> {
         let printed = match self.common.format {
             Format::Text => text().into_bytes(),
             Format::Json => json(document)?,
-            Format::Csv => return Err(CliError::Usage("an explanation prints text or json, not csv".to_owned())),
+            other => return Err(refuse("an explanation", "text or json", other)),
         };
         output::deliver(self.common.output.as_deref(), &printed, out)?;
         Ok(Status::Done)

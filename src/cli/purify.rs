@@ -3,7 +3,7 @@
 use super::arguments::{Format, Purify};
 use super::placing::choice;
 use super::progress::Progress;
-use super::verbs::{json, molden};
+use super::verbs::{json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::audit::{self, Limits};
 use crate::grammar::write::{Replacement, rewrite};
@@ -59,7 +59,7 @@ pub fn purify(arguments: &Purify, out: &mut dyn Write, errors: &mut dyn Write) -
     let report = match arguments.common.format {
         Format::Text => purify_text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("purify reports in text or json, not csv".to_owned())),
+        other => return Err(refuse("the report of purify", "text or json", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &result, out)?;
     // Without a file the orbitals are the output, and the report goes beside.

@@ -4,13 +4,13 @@ use super::arguments::{Format, Transitions};
 use super::explain::Ground;
 use super::placing::choice;
 use super::progress::Progress;
-use super::verbs::{json, molden, rows};
+use super::verbs::{for_paper, json, molden, rows};
 use super::{CliError, Status, output, use_threads};
 use crate::labelling::{self, Thresholds};
 use crate::model::ANGSTROM_PER_BOHR;
 use crate::report::text::EV_PER_HARTREE;
 use crate::report::transitions_text::transitions_text;
-use crate::report::{build, csv};
+use crate::report::{build, csv, sheets};
 use crate::selection::Choice;
 use std::io::Write;
 
@@ -44,6 +44,7 @@ pub fn transitions(arguments: &Transitions, out: &mut dyn Write, errors: &mut dy
     let printed = match arguments.common.format {
         Format::Text => transitions_text(&document).into_bytes(),
         Format::Json => json(&document)?,
+        Format::Latex | Format::Md => for_paper(arguments.common.format, &sheets::transition_sheets(&document)),
         Format::Csv => rows(|out| csv::write_transitions(&document, out))?,
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;

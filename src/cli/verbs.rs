@@ -12,7 +12,8 @@ use crate::model::{self, ANGSTROM_PER_BOHR, Molecule, Reading};
 use crate::report::build::{self, Wanted};
 use crate::report::document::Document;
 use crate::report::text::{self, TextOptions};
-use crate::report::{csv, rule, table};
+use crate::report::typeset::{self, Sheet};
+use crate::report::{csv, rule, sheets, table};
 use crate::wavefunction;
 use std::io::Write;
 use std::path::Path;
@@ -89,8 +90,9 @@ pub fn label(arguments: &Label, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let wanted = Wanted { window: arguments.window, frontier_transitions: small };
     let document = build::label_document(&name, &molecule, &labelled, lowdin.as_deref(), &thresholds, wanted);
     drop(progress);
-    let printed =
-        print(&document, &arguments.common, || text::label_text(&document, TextOptions { all: arguments.all }))?;
+    let printed = print(&document, &arguments.common, arguments.all, || {
+        text::label_text(&document, TextOptions { all: arguments.all })
+    })?;
     if let Some(target) = &arguments.write_labels {
         let labels = build::sym_labels(&labelled);
         output::deliver(Some(target), &model::write_labels(&bytes, &molecule, &labels), out)?;
@@ -108,7 +110,7 @@ pub fn geometry(arguments: &Geometry, out: &mut dyn Write, errors: &mut dyn Writ
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
     let document =
         build::geometry_document(&path.display().to_string(), &molecule, &detection, &symmetry, tolerance_bohr);
-    let printed = print(&document, &arguments.common, || text::geometry_text(&document))?;
+    let printed = print(&document, &arguments.common, false, || text::geometry_text(&document))?;
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
 }
@@ -123,7 +125,7 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
         let printed = match arguments.common.format {
             Format::Text => rule::text(&document).into_bytes(),
             Format::Json => json(&document)?,
-            Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+            other => return Err(refuse("table --transition", "text or json", other)),
         };
         output::deliver(arguments.common.output.as_deref(), &printed, out)?;
         return Ok(Status::Done);
@@ -132,22 +134,34 @@ pub fn table(arguments: &Table, out: &mut dyn Write) -> Result<Status, CliError>
     let printed = match arguments.common.format {
         Format::Text => table::text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        Format::Latex | Format::Md => for_paper(arguments.common.format, &sheets::table_sheets(&document)),
+        Format::Csv => return Err(refuse("table", "text, json, latex or md", Format::Csv)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
 }
 
 /// The document in the form asked for.
-fn print(document: &Document, common: &Common, text: impl FnOnce() -> String) -> Result<Vec<u8>, CliError> {
+fn print(document: &Document, common: &Common, all: bool, text: impl FnOnce() -> String) -> Result<Vec<u8>, CliError> {
     match common.format {
         Format::Text => Ok(text().into_bytes()),
         Format::Json => json(document),
-        Format::Csv if document.sets.is_none() => {
-            Err(CliError::Usage("geometry prints text or json: csv has one row a set of orbitals".to_owned()))
+        other if document.sets.is_none() => Err(refuse("geometry", "text or json", other)),
+        Format::Latex | Format::Md => {
+            Ok(for_paper(common.format, &sheets::label_sheets(document, TextOptions { all })))
         }
         Format::Csv => rows(|out| csv::write_sets(document, out)),
     }
+}
+
+/// Tables for papers.
+pub(super) fn for_paper(format: Format, sheets: &[Sheet]) -> Vec<u8> {
+    if format == Format::Latex { typeset::latex(sheets) } else { typeset::markdown(sheets) }.into_bytes()
+}
+
+/// A verb that has no such form says what it prints.
+pub(super) fn refuse(verb: &str, prints: &str, format: Format) -> CliError {
+    CliError::Usage(format!("{verb} prints {prints}, not {}", format.name()))
 }
 
 /// Comma-separated rows in memory.
