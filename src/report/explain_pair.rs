@@ -136,16 +136,13 @@ fn reduction(group: &PointGroup, (from, to): (usize, usize)) -> Vec<ReductionEnt
     let (a, b) = (&group.irreps()[from].characters, &group.irreps()[to].characters);
     let in_table = group.is_continuous().then(|| group.product(from, to).unwrap_or_default());
     let entry = |(irrep_idx, irrep): (usize, &crate::group::Irrep)| {
-        let terms: Vec<f64> = match in_table {
-            Some(_) => Vec::new(),
-            None => {
-                let classes = group.classes().iter().enumerate();
-                let term = |(class, of): (usize, &crate::group::Class)| {
-                    of.members.len() as f64 * a[class] * b[class] * irrep.characters[class]
-                };
-                let by_class: Vec<f64> = classes.map(term).collect();
-                group.printed_classes().into_iter().map(|class| by_class[class]).collect()
-            }
+        let terms: Vec<f64> = if in_table.is_some() {
+            Vec::new()
+        } else {
+            let term = |class: usize| {
+                group.classes()[class].members.len() as f64 * a[class] * b[class] * irrep.characters[class]
+            };
+            group.printed_classes().into_iter().map(term).collect()
         };
         let multiplicity = match &in_table {
             Some(product) => product.iter().find(|term| term.0 == irrep_idx).map_or(0.0, |term| term.1 as f64),

@@ -125,12 +125,10 @@ fn paint_head(out: &mut String, name: &str, text: &str) {
     out.push_str(&name[word.len()..]);
     let verdict = text.split([':', ' ']).next().unwrap_or_default();
     let style = match (word, verdict) {
-        ("Verdict", "intact" | "rotated") => GOOD,
+        ("Verdict", "intact" | "rotated") | (_, "allowed") => GOOD,
         ("Verdict", "mixed") => DOUBTFUL,
-        ("Verdict", "broken") => BAD,
+        ("Verdict", "broken") | (_, "forbidden") => BAD,
         ("HOMO" | "LUMO" | "SOMO" | "Point group" | "Ground term", _) => LABEL,
-        (_, "forbidden") => BAD,
-        (_, "allowed") => GOOD,
         _ => PLAIN,
     };
     styled(out, style, verdict);

@@ -57,6 +57,10 @@ fn provenance(document: &Document) -> Vec<String> {
     if let Some(basis) = &document.basis {
         notes.push(format!("Orbitals are orthonormal to {:.0e}", basis.orthonormality_residual));
     }
+    let (group, nuclei) = (&document.geometry.point_group, &document.geometry.nuclear_group);
+    if group != nuclei {
+        notes.push(format!("Labels are in {group}, while all nuclei have {nuclei}"));
+    }
     notes.extend(document.geometry.warnings.iter().cloned());
     notes
 }

@@ -251,16 +251,16 @@ impl Form {
         let mut rotation = false;
         for c in text.chars() {
             let digit = c.is_ascii_digit() && after_letter;
-            match self {
-                Self::Latex if digit => out.push_str(&format!("^{{{c}}}")),
-                Self::Latex if rotation => out.push_str(&format!("_{{{c}}}")),
-                Self::Latex => out.push(c),
-                Self::Markdown if digit => out.push_str(&format!("<sup>{c}</sup>")),
-                Self::Markdown if rotation => out.push_str(&format!("<sub>{c}</sub>")),
-                Self::Markdown if c.is_ascii_alphabetic() => out.push_str(&format!("*{c}*")),
-                Self::Markdown if c == '-' => out.push('−'),
-                Self::Markdown => out.push(c),
-            }
+            let set = match self {
+                Self::Latex if digit => format!("^{{{c}}}"),
+                Self::Latex if rotation => format!("_{{{c}}}"),
+                Self::Markdown if digit => format!("<sup>{c}</sup>"),
+                Self::Markdown if rotation => format!("<sub>{c}</sub>"),
+                Self::Markdown if c.is_ascii_alphabetic() => format!("*{c}*"),
+                Self::Markdown if c == '-' => '−'.to_string(),
+                Self::Latex | Self::Markdown => c.to_string(),
+            };
+            out.push_str(&set);
             rotation = c == 'R';
             after_letter = c.is_ascii_alphabetic() || c == ')' || digit;
         }
@@ -278,14 +278,13 @@ impl Form {
     fn cell(self, cell: &[Piece]) -> String {
         let piece = |piece: &Piece| match piece {
             Piece::Words(text) => self.words(text),
-            Piece::Label(text) => self.symbol(text, false),
+            Piece::Label(text) | Piece::Class(text) => self.symbol(text, false),
             Piece::Shell(text, electrons) => match self {
                 Self::Latex => format!("$({})^{{{electrons}}}$", self.symbol(text, false).trim_matches('$')),
                 Self::Markdown => format!("({})<sup>{electrons}</sup>", self.symbol(text, false)),
             },
             Piece::Term(text) => self.symbol(text, true),
             Piece::Group(text) => self.group(text),
-            Piece::Class(text) => self.symbol(text, false),
             Piece::Number(text) => self.number(text),
             Piece::Function(text) => self.function(text),
             Piece::To => (if self == Self::Latex { r" $\to$ " } else { " → " }).to_owned(),
