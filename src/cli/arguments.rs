@@ -1,7 +1,9 @@
 //! What a person types, as types.
 
 use crate::audit::Limits;
-use crate::selection::Selector;
+use crate::report::schema;
+use crate::selection::{Selector, SetName};
+use clap::builder::PossibleValuesParser;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
 
@@ -9,9 +11,23 @@ use std::path::PathBuf;
 #[derive(Debug, Parser)]
 #[command(name = "orbsieve", version, about, max_term_width = 100)]
 pub struct Arguments {
+    /// Styles on the terminal; `NO_COLOR` and `CLICOLOR_FORCE` count when this is auto
+    #[arg(long, global = true, value_enum, value_name = "WHEN", default_value_t = Color::Auto)]
+    pub color: Color,
     /// What to do.
     #[command(subcommand)]
     pub verb: Verb,
+}
+
+/// When text for people has styles.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub enum Color {
+    /// On a terminal
+    Auto,
+    /// Also in pipes
+    Always,
+    /// Not even on a terminal
+    Never,
 }
 
 /// The verbs.
@@ -37,6 +53,37 @@ pub enum Verb {
     Batch(super::batch::Batch),
     /// Level diagrams side by side, with lines between equal irreps, as SVG
     Levels(Levels),
+    /// JSON Schema of the JSON outputs: of one verb, or of all in one document
+    Schema(Schema),
+    /// Script that completes verbs, options and values in a shell
+    Completions(Completions),
+    /// Manual page in roff, of the program or of one verb
+    Manual(Manual),
+}
+
+impl Verb {
+    /// Whether standard output gets text for people (and not data, a file in its own format or a script).
+    #[must_use]
+    pub fn prints_text(&self) -> bool {
+        let common = match self {
+            Self::Label(Label { common, .. })
+            | Self::Geometry(Geometry { common, .. })
+            | Self::Table(Table { common, .. })
+            | Self::States(States { common, .. })
+            | Self::Audit(Audit { common, .. })
+            | Self::Transitions(Transitions { common, .. })
+            | Self::Modes(Modes { common, .. }) => common,
+            // Without a file the orbitals themselves go there.
+            Self::Purify(Purify { common, .. }) if common.output.is_some() => common,
+            Self::Purify(_)
+            | Self::Batch(_)
+            | Self::Levels(_)
+            | Self::Schema(_)
+            | Self::Completions(_)
+            | Self::Manual(_) => return false,
+        };
+        common.format == Format::Text
+    }
 }
 
 /// Options of every verb.
@@ -65,10 +112,22 @@ pub enum Format {
     Json,
     /// One row a set; energies in hartree
     Csv,
+    /// Tables for papers, energies in eV
+    Latex,
+    /// The same in Markdown
+    Md,
     /// `label`: a page for the browser with pictures, all in one file
     Html,
     /// A level diagram; energies in eV
     Svg,
+}
+
+impl Format {
+    /// As it is typed.
+    #[must_use]
+    pub fn name(self) -> String {
+        self.to_possible_value().map_or_else(String::new, |value| value.get_name().to_owned())
+    }
 }
 
 /// Which group the labels are in.
@@ -111,6 +170,12 @@ pub struct Label {
     /// With --format html: draw the orbitals of the K highest sets with electrons and the L lowest empty ones
     #[arg(long, value_name = "K,L", value_parser = window, default_value = "2,2")]
     pub pictures: (usize, usize),
+    /// Only show how one set comes by its label: an orbital number, a label (3e2g), homo, lumo+1; beta:7 of an unrestricted file
+    #[arg(long, value_name = "ORBITAL", conflicts_with_all = ["window", "all", "write_labels"])]
+    pub explain: Option<SetName>,
+    /// Only show why the transition between two sets is allowed or not
+    #[arg(long, num_args = 2, value_names = ["A", "B"], conflicts_with_all = ["explain", "window", "all", "write_labels"])]
+    pub explain_transition: Option<Vec<SetName>>,
     /// Write the input again to this file with its `Sym=` lines filled, everything else untouched
     #[arg(long, value_name = "FILE")]
     pub write_labels: Option<PathBuf>,
@@ -338,6 +403,9 @@ pub struct Transitions {
     /// Pair the K highest sets with electrons and the L lowest with room
     #[arg(long, value_name = "K,L", value_parser = window, default_value = "4,4")]
     pub window: (usize, usize),
+    /// Only show why the transition between two sets is allowed or not
+    #[arg(long, num_args = 2, value_names = ["A", "B"], conflicts_with_all = ["from", "to", "max_ev", "allowed_only"])]
+    pub explain: Option<Vec<SetName>>,
     /// Leave out pairs farther apart than this in orbital energy, eV
     #[arg(long, value_name = "EV", value_parser = positive)]
     pub max_ev: Option<f64>,
@@ -366,6 +434,31 @@ pub struct Modes {
     /// What every verb takes
     #[command(flatten)]
     pub common: Common,
+}
+
+/// `schema`.
+#[derive(Debug, Args)]
+pub struct Schema {
+    /// Whose output; without it every schema in one document
+    #[arg(value_name = "VERB", value_parser = PossibleValuesParser::new(schema::names()))]
+    pub output_of: Option<String>,
+    /// Write the schema to this file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub output: Option<PathBuf>,
+}
+
+/// `completions`.
+#[derive(Debug, Args)]
+pub struct Completions {
+    /// The shell
+    pub shell: clap_complete::Shell,
+}
+
+/// `manual`.
+#[derive(Debug, Args)]
+pub struct Manual {
+    /// A verb; without it the program as a whole
+    pub verb: Option<String>,
 }
 
 pub(super) fn positive(text: &str) -> Result<f64, String> {

@@ -132,7 +132,7 @@ fn label(path: &Path, bytes: Vec<u8>, settings: &Settings<'_>, head: &mut Record
     drop(bytes);
     let Settings { thresholds, placing, character, .. } = *settings;
     let asked = Labelling { thresholds, placing, window: None, character };
-    verbs::labels(path, &mut molecule?, asked).map(|(_, document)| document)
+    verbs::labels(path, &mut molecule?, asked)
 }
 
 /// In one line; the rest stands in the diagnostics.
