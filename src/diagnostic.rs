@@ -30,6 +30,14 @@ pub struct Diagnostic {
     pub help: Option<String>,
 }
 
+/// Line and column of the first byte that a finding is about, both from 1, the column in bytes.
+#[must_use]
+pub fn position(finding: &Diagnostic, bytes: &[u8]) -> (usize, usize) {
+    let start = finding.span.start.min(bytes.len());
+    let line_start = memchr::memrchr(b'\n', &bytes[..start]).map_or(0, |newline| newline + 1);
+    (memchr::memchr_iter(b'\n', &bytes[..line_start]).count() + 1, start - line_start + 1)
+}
+
 /// Longest part of a line that is drawn, in characters.
 const DRAWN: usize = 100;
 
@@ -47,9 +55,9 @@ const DRAWN: usize = 100;
 pub fn draw(finding: &Diagnostic, file: &str, bytes: &[u8]) -> String {
     let start = finding.span.start.min(bytes.len());
     let end = finding.span.end.clamp(start, bytes.len());
-    let line_start = memchr::memrchr(b'\n', &bytes[..start]).map_or(0, |newline| newline + 1);
+    let (number, column) = position(finding, bytes);
+    let line_start = start + 1 - column;
     let line_end = memchr::memchr(b'\n', &bytes[start..]).map_or(bytes.len(), |step| start + step);
-    let number = memchr::memchr_iter(b'\n', &bytes[..line_start]).count() + 1;
     // Of an endless line only the part around the finding is drawn.
     let from = if start - line_start > DRAWN / 2 { start - DRAWN / 2 } else { line_start };
     let to = line_end.min(from + DRAWN);
@@ -65,8 +73,7 @@ pub fn draw(finding: &Diagnostic, file: &str, bytes: &[u8]) -> String {
     };
     let margin = " ".repeat(number.to_string().len());
     let mut text = format!(
-        "{file}:{number}:{}: {word}: {}\n{margin} |\n{number} | {}\n{margin} | {}{}",
-        start - line_start + 1,
+        "{file}:{number}:{column}: {word}: {}\n{margin} |\n{number} | {}\n{margin} | {}{}",
         finding.message,
         line.trim_end(),
         " ".repeat(before),

@@ -17,4 +17,7 @@ pub mod purify;
 pub mod selection;
 pub mod modes;
 pub mod report;
+pub mod diagram;
+pub mod picture;
+pub mod page;
 pub mod cli;

@@ -5,7 +5,7 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// Lowest first; each may use those before it.
-const LAYERS: [&str; 13] = [
+const LAYERS: [&str; 16] = [
     "diagnostic",
     "grammar",
     "model",
@@ -18,6 +18,9 @@ const LAYERS: [&str; 13] = [
     "selection",
     "modes",
     "report",
+    "diagram",
+    "picture",
+    "page",
     "cli",
 ];
 

@@ -2,7 +2,8 @@
 
 use super::arguments::{Audit, Format};
 use super::placing::choice;
-use super::verbs::{json, molden};
+use super::progress::Progress;
+use super::verbs::{json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::audit::verdict::Verdict;
 use crate::audit::{self, AuditError, Limits};
@@ -28,17 +29,20 @@ pub fn audit(arguments: &Audit, out: &mut dyn Write, errors: &mut dyn Write) -> 
         degeneracy_hartree: arguments.degeneracy,
     };
     let placed = choice(&arguments.placing, &molecule)?;
-    let labelled = labelling::label_in(&mut molecule, &thresholds, &placed)
+    let progress = Progress::start(&arguments.common, "labels");
+    let labelled = labelling::label_watched(&mut molecule, &thresholds, &placed, &progress.watch())
         .map_err(|source| CliError::Label { path: path.clone(), source })?;
+    progress.stage("what the densities keep");
     let (labelled, found) = audit::audit(&molecule, labelled, &thresholds, &limits).map_err(|error| match error {
         AuditError::Label(source) => CliError::Label { path: path.clone(), source },
         other => CliError::Input { drawn: format!("{}: {other}", path.display()) },
     })?;
+    drop(progress);
     let document = audit_document(&path.display().to_string(), &molecule, &labelled, &found, &thresholds);
     let printed = match arguments.common.format {
         Format::Text => audit_text(&document, arguments.all).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("audit prints text or json, not csv".to_owned())),
+        other => return Err(refuse("audit", "text or json", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(match found.verdict() {

@@ -60,7 +60,18 @@ const UNPACKED_FLOOR: u64 = 1 << 20;
 pub fn open(path: &Path) -> Result<Bytes, CliError> {
     let failed = |source: io::Error| CliError::Read { path: path.to_owned(), source };
     let bytes = if path.as_os_str() == "-" { stream(io::stdin().lock()) } else { file(path) }.map_err(failed)?;
-    if bytes.starts_with(&GZIP) { unpack(&bytes).map_err(failed) } else { Ok(bytes) }
+    unpacked(bytes, path)
+}
+
+/// The bytes themselves, or what they hold when they are gzip.
+///
+/// # Errors
+/// [`CliError::Read`] when they cannot be unpacked, or unpack to an absurd size; `path` is only named.
+pub fn unpacked(bytes: Bytes, path: &Path) -> Result<Bytes, CliError> {
+    if !bytes.starts_with(&GZIP) {
+        return Ok(bytes);
+    }
+    unpack(&bytes).map_err(|source| CliError::Read { path: path.to_owned(), source })
 }
 
 /// A stream longer than this is put down in a file without a name, and mapped.

@@ -4,12 +4,19 @@
 
 pub mod arguments;
 mod audit;
+mod batch;
+mod explain;
+mod help;
 mod input;
+mod levels;
 mod modes;
 mod output;
+mod page;
 mod placing;
+mod progress;
 mod purify;
 mod states;
+pub mod terminal;
 mod transitions;
 mod verbs;
 
@@ -121,7 +128,12 @@ pub fn run(arguments: &Arguments, out: &mut dyn Write, errors: &mut dyn Write) -
         Verb::States(arguments) => states::states(arguments, out, errors),
         Verb::Audit(arguments) => audit::audit(arguments, out, errors),
         Verb::Purify(arguments) => purify::purify(arguments, out, errors),
+        Verb::Batch(arguments) => batch::batch(arguments, out, errors),
+        Verb::Levels(arguments) => levels::levels(arguments, out, errors),
         Verb::Transitions(arguments) => transitions::transitions(arguments, out, errors),
+        Verb::Schema(arguments) => help::schema(arguments, out),
+        Verb::Completions(arguments) => help::completions(arguments.shell, out),
+        Verb::Manual(arguments) => help::manual(arguments.verb.as_deref(), out),
     }
 }
 

@@ -1,15 +1,15 @@
 //! The verb `modes`: place the nuclei, assign the file's modes where it has some, deliver.
 
 use super::arguments::{Format, Modes};
-use super::verbs::{json, molden_or_xyz, rows};
+use super::verbs::{for_paper, json, molden_or_xyz, refuse, rows};
 use super::{CliError, Status, output, use_threads};
 use crate::labelling::placement::{self, Choice, Placement};
 use crate::labelling::{LabelError, sites};
 use crate::model::{ANGSTROM_PER_BOHR, Molecule};
 use crate::modes::{ModeThresholds, assign, assignment};
-use crate::report::csv;
 use crate::report::modes::modes_document;
 use crate::report::modes_text::modes_text;
+use crate::report::{csv, sheets};
 use std::io::Write;
 
 pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> Result<Status, CliError> {
@@ -48,7 +48,9 @@ pub fn modes(arguments: &Modes, out: &mut dyn Write, errors: &mut dyn Write) -> 
     let printed = match arguments.common.format {
         Format::Text => modes_text(&document).into_bytes(),
         Format::Json => json(&document)?,
+        Format::Latex | Format::Md => for_paper(arguments.common.format, &sheets::mode_sheets(&document)),
         Format::Csv => rows(|out| csv::write_modes(&document, out))?,
+        format @ (Format::Svg | Format::Html) => return Err(refuse("modes", "text, json, csv, latex or md", format)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

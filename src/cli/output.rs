@@ -1,6 +1,7 @@
 //! Writing results: to standard output, or to a file that appears whole or not at all.
 
 use super::CliError;
+use std::fs::File;
 use std::io::{self, Write};
 use std::path::Path;
 
@@ -16,21 +17,33 @@ pub fn deliver(path: Option<&Path>, bytes: &[u8], out: &mut dyn Write) -> Result
         None => {
             out.write_all(bytes).and_then(|()| out.flush()).map_err(|source| CliError::Write { path: None, source })
         }
-        Some(path) => replace(path, bytes).map_err(|source| CliError::Write { path: Some(path.to_owned()), source }),
+        Some(path) => replace(path, |file| file.write_all(bytes)),
     }
 }
 
-fn replace(path: &Path, bytes: &[u8]) -> io::Result<()> {
-    // A device or a pipe is written into; renaming a file over it would take its place.
-    if std::fs::metadata(path).is_ok_and(|metadata| !metadata.is_file() && !metadata.is_dir()) {
-        return std::fs::OpenOptions::new().write(true).open(path)?.write_all(bytes);
+/// Whether writing to `path` means writing into it: a device or a pipe, whose place no file may take.
+pub fn is_stream(path: &Path) -> bool {
+    std::fs::metadata(path).is_ok_and(|metadata| !metadata.is_file() && !metadata.is_dir())
+}
+
+/// Lets `write` fill a file that then takes the place of `path`, or fill the device that `path` is.
+///
+/// # Errors
+/// [`CliError::Write`] with the reason; `path` is then untouched.
+pub fn replace(path: &Path, write: impl FnOnce(&mut File) -> io::Result<()>) -> Result<(), CliError> {
+    try_replace(path, write).map_err(|source| CliError::Write { path: Some(path.to_owned()), source })
+}
+
+fn try_replace(path: &Path, write: impl FnOnce(&mut File) -> io::Result<()>) -> io::Result<()> {
+    if is_stream(path) {
+        return write(&mut std::fs::OpenOptions::new().write(true).open(path)?);
     }
     let folder = match path.parent() {
         Some(folder) if !folder.as_os_str().is_empty() => folder,
         _ => Path::new("."),
     };
     let mut file = tempfile::Builder::new().prefix(".orbsieve-").tempfile_in(folder)?;
-    file.write_all(bytes)?;
+    write(file.as_file_mut())?;
     file.as_file().sync_all()?;
     #[cfg(unix)]
     {

@@ -2,7 +2,8 @@
 
 use super::arguments::{Format, Purify};
 use super::placing::choice;
-use super::verbs::{json, molden};
+use super::progress::Progress;
+use super::verbs::{json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::audit::{self, Limits};
 use crate::grammar::write::{Replacement, rewrite};
@@ -26,12 +27,15 @@ pub fn purify(arguments: &Purify, out: &mut dyn Write, errors: &mut dyn Write) -
     let thresholds = Thresholds { tolerance_bohr, ..Thresholds::STANDARD };
     let placed = choice(&arguments.placing, &molecule)?;
     let failed = |source: LabelError| CliError::Label { path: path.clone(), source };
-    let labelled = labelling::label_in(&mut molecule, &thresholds, &placed).map_err(failed)?;
+    let progress = Progress::start(&arguments.common, "labels");
+    let labelled = labelling::label_watched(&mut molecule, &thresholds, &placed, &progress.watch()).map_err(failed)?;
+    progress.stage("projection");
     let nuclei = arguments.geometry.then(|| symmetric_places(&molecule, &labelled));
     let overlap = on_nuclei(&molecule, &labelled, nuclei.as_deref());
     let Purified { spins, changes } =
         purified(&molecule, &labelled, &overlap).map_err(|error| refused(&name, &error))?;
     let written = write(&bytes, &labelled, &spins, nuclei.as_deref());
+    progress.stage("labels of the new orbitals");
     // Read again, as whoever takes the file will: what is reported is what stands there.
     let (mut molecule_again, _) = model::read_molden(&written)
         .map_err(|findings| CliError::Input { drawn: super::draw(&findings, &name, &written) })?;
@@ -51,10 +55,11 @@ pub fn purify(arguments: &Purify, out: &mut dyn Write, errors: &mut dyn Write) -
         moved_bohr: moved,
         verdict: verdict.as_ref(),
     });
+    drop(progress);
     let report = match arguments.common.format {
         Format::Text => purify_text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("purify reports in text or json, not csv".to_owned())),
+        other => return Err(refuse("the report of purify", "text or json", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &result, out)?;
     // Without a file the orbitals are the output, and the report goes beside.

@@ -1,7 +1,7 @@
 //! `states`: terms of a configuration that is typed, or read from a file's occupations.
 
 use super::arguments::{Format, States, Table};
-use super::verbs::{json, molden};
+use super::verbs::{for_paper, json, molden, refuse};
 use super::{CliError, Status, output, use_threads};
 use crate::group::double_name::half;
 use crate::group::irrep_name::Parity;
@@ -10,9 +10,9 @@ use crate::labelling::configuration::{Obstacle, open_shells};
 use crate::labelling::{self, Thresholds};
 use crate::model::{ANGSTROM_PER_BOHR, Spin};
 use crate::modes;
-use crate::report::double_table;
 use crate::report::states::{Stage, StatesDocument};
 use crate::report::states_text::{self, StatesOptions};
+use crate::report::{double_table, sheets};
 use crate::states::{Configuration, correlation};
 use std::fmt::Display;
 use std::io::Write;
@@ -38,7 +38,17 @@ pub fn states(arguments: &States, out: &mut dyn Write, errors: &mut dyn Write) -
     let printed = match arguments.common.format {
         Format::Text => states_text::text(&document, StatesOptions { spin_orbit: arguments.spin_orbit }).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("states prints text or json, not csv".to_owned())),
+        Format::Latex | Format::Md => {
+            let sheets = sheets::states_sheets(&document);
+            if sheets.is_empty() {
+                return Err(CliError::Usage(
+                    "states prints tables of the terms of a configuration: there is none here; text and json say why"
+                        .to_owned(),
+                ));
+            }
+            for_paper(arguments.common.format, &sheets)
+        }
+        other => return Err(refuse("states", "text, json, latex or md", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)
@@ -51,7 +61,7 @@ pub fn double_table(arguments: &Table, out: &mut dyn Write) -> Result<Status, Cl
     let printed = match arguments.common.format {
         Format::Text => double_table::text(&document).into_bytes(),
         Format::Json => json(&document)?,
-        Format::Csv => return Err(CliError::Usage("table prints text or json, not csv".to_owned())),
+        other => return Err(refuse("table --double", "text or json", other)),
     };
     output::deliver(arguments.common.output.as_deref(), &printed, out)?;
     Ok(Status::Done)

@@ -1,7 +1,7 @@
 //! From a molecule to the irrep, partner and set of every orbital.
 //!
 //! Reading order: `sites` (what may be carried onto what), `weights`, `atom` (the full rotation group),
-//! `sets`, then what is read off the sets: `frontier`, `composition`, `d_block`.
+//! `sets`, then what is read off the sets: `partners`, `frontier`, `composition`, `d_block`.
 
 mod atom;
 pub mod composition;
@@ -10,7 +10,9 @@ pub mod d_block;
 pub mod descent;
 pub mod frame_atoms;
 pub mod frontier;
+pub mod partners;
 pub mod placement;
+pub mod reasoning;
 pub mod sets;
 pub mod sites;
 mod weights;
@@ -48,6 +50,19 @@ impl Thresholds {
         window_hartree: 0.05,
         orthonormality: 5e-3,
     };
+}
+
+/// What takes time while labels are found, in this order.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Stage {
+    /// The group of the nuclei.
+    Group,
+    /// Overlap of the functions and the convention of the file.
+    Overlap,
+    /// Operations on the functions.
+    Operations,
+    /// Weights and sets of the orbitals.
+    Orbitals,
 }
 
 /// What symmetry says of one orbital. Indices point into `group.irreps()` and its partners.
@@ -182,15 +197,32 @@ pub fn label(molecule: &mut Molecule, thresholds: &Thresholds) -> Result<Labelle
 /// # Errors
 /// As [`label`], and when the group asked for cannot be laid over the atoms.
 pub fn label_in(molecule: &mut Molecule, thresholds: &Thresholds, choice: &Choice) -> Result<Labelled, LabelError> {
+    label_watched(molecule, thresholds, choice, &|_| {})
+}
+
+/// As [`label_in`], telling `watch` each stage as it begins.
+///
+/// # Errors
+/// As [`label_in`].
+pub fn label_watched(
+    molecule: &mut Molecule,
+    thresholds: &Thresholds,
+    choice: &Choice,
+    watch: &dyn Fn(Stage),
+) -> Result<Labelled, LabelError> {
     if molecule.shells.is_empty() {
         return Err(LabelError::Nothing("basis functions ([GTO])"));
     }
     if molecule.orbital_sets.iter().all(|set| set.orbitals.is_empty()) {
         return Err(LabelError::Nothing("orbitals ([MO])"));
     }
+    watch(Stage::Group);
     let placement = placement::place(molecule, thresholds.tolerance_bohr, choice)?;
+    watch(Stage::Overlap);
     let settled = crate::wavefunction::settle(molecule, thresholds.orthonormality)?;
+    watch(Stage::Operations);
     let operations = placement::operations(&settled, &placement)?;
+    watch(Stage::Orbitals);
     let Placement { detection, symmetry, derivation } = placement;
     let spins = label_spins(molecule, &settled, &symmetry, &operations, thresholds);
     Ok(Labelled { detection, symmetry, derivation, settled, operations, spins })

@@ -60,7 +60,7 @@ impl Shell {
 }
 
 /// Spin of an orbital.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, serde::Serialize)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, serde::Serialize, schemars::JsonSchema)]
 #[serde(rename_all = "lowercase")]
 pub enum Spin {
     /// Spin up; also every orbital of a restricted file.

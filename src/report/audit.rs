@@ -14,13 +14,16 @@ use crate::audit::verdict::{Degeneracy, OpenShell, Origin, Verdict};
 use crate::audit::{Audit, Limits};
 use crate::labelling::{Labelled, Thresholds};
 use crate::model::{Molecule, Spin, elements};
+use schemars::JsonSchema;
 use serde::Serialize;
 use serde_json::{Map, Value, json};
+use std::collections::BTreeMap;
 
 /// The verdict and the numbers behind it.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct AuditEntry {
     /// `intact`, `rotated`, `mixed` or `broken`.
+    #[schemars(extend("enum" = ["intact", "rotated", "mixed", "broken"]))]
     pub verdict: &'static str,
     /// The same in one line.
     pub summary: String,
@@ -59,7 +62,7 @@ pub struct AuditEntry {
 }
 
 /// Largest subgroup of each density.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct KeptGroupEntry {
     /// Both spins.
     pub total_density: String,
@@ -72,7 +75,7 @@ pub struct KeptGroupEntry {
 }
 
 /// What one operation keeps of each density, 0 to 1; null for densities that are not there.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct RetentionEntry {
     /// Symbol of the operation.
     pub operation: String,
@@ -89,7 +92,7 @@ pub struct RetentionEntry {
 }
 
 /// An orbital of several irreps.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct MixedEntry {
     /// From 1 within the spin, file order.
     pub index: usize,
@@ -108,7 +111,7 @@ pub struct MixedEntry {
 }
 
 /// Corresponding orbitals.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct PairEntry {
     /// Overlap of the two; 0 without a partner.
     pub overlap: f64,
@@ -119,7 +122,7 @@ pub struct PairEntry {
 }
 
 /// Share of an orbital on one atom.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct AtomShare {
     /// Element and number, such as `C 3`.
     pub atom: String,
@@ -128,7 +131,7 @@ pub struct AtomShare {
 }
 
 /// A subgroup and the labels in it.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SubgroupEntry {
     /// Its name.
     pub point_group: String,
@@ -139,13 +142,14 @@ pub struct SubgroupEntry {
     /// Unit vectors x, y, z in the file's coordinates.
     pub axes: [[f64; 3]; 3],
     /// Irrep above → sum of irreps here.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub correlation: Map<String, Value>,
     /// Every orbital, alpha first.
     pub orbitals: Vec<SubgroupLabel>,
 }
 
 /// One orbital in both groups.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SubgroupLabel {
     /// From 1 within the spin, file order.
     pub index: usize,
@@ -160,7 +164,7 @@ pub struct SubgroupLabel {
 }
 
 /// Limits used.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct LimitEntry {
     /// Electrons that a kept operation may carry out of place.
     pub electrons_carried: f64,

@@ -246,14 +246,20 @@ pub fn label_document(
         transitions: wanted.frontier_transitions.then(|| frontier_transitions(molecule, labelled)).flatten(),
         jahn_teller: Vec::new(),
         audit: None,
-        thresholds: Some(ThresholdEntry {
-            purity: thresholds.purity,
-            partner: thresholds.partner,
-            degeneracy_hartree: thresholds.degeneracy_hartree,
-            window_hartree: thresholds.window_hartree,
-            orthonormality: thresholds.orthonormality,
-        }),
+        thresholds: Some(threshold_entry(thresholds)),
         cautions,
+    }
+}
+
+/// The limits that decide labels.
+#[must_use]
+pub fn threshold_entry(thresholds: &Thresholds) -> ThresholdEntry {
+    ThresholdEntry {
+        purity: thresholds.purity,
+        partner: thresholds.partner,
+        degeneracy_hartree: thresholds.degeneracy_hartree,
+        window_hartree: thresholds.window_hartree,
+        orthonormality: thresholds.orthonormality,
     }
 }
 

@@ -3,15 +3,18 @@
 //! Here: names, units (in the keys) and order of the fields. Not here: how the numbers come about.
 //! Irreps are ASCII Mulliken names; orbitals count from 1 within one spin, in file order.
 
+use schemars::JsonSchema;
 use serde::Serialize;
+use std::collections::BTreeMap;
 
 /// Name and version of the JSON layout.
 pub const SCHEMA: &str = "orbsieve/1";
 
 /// The whole document.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Document {
-    /// [`SCHEMA`].
+    /// Name and version of the layout.
+    #[schemars(extend("const" = SCHEMA))]
     pub schema: &'static str,
     /// Where the numbers come from.
     pub source: Source,
@@ -52,7 +55,7 @@ pub struct Document {
 }
 
 /// The input.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Source {
     /// File name as given, `-` for standard input.
     pub file: String,
@@ -69,7 +72,7 @@ pub struct Source {
 }
 
 /// The nuclei.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Geometry {
     /// The group that the labels are in.
     pub point_group: String,
@@ -105,7 +108,7 @@ pub struct Geometry {
 }
 
 /// The largest abelian subgroup among D2h and its subgroups.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct AbelianEntry {
     /// Its name.
     pub point_group: String,
@@ -114,16 +117,17 @@ pub struct AbelianEntry {
 }
 
 /// Another legal choice of axes.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SettingEntry {
     /// In words.
     pub description: String,
     /// Irrep here → irrep there, only those that change.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub swaps: serde_json::Map<String, serde_json::Value>,
 }
 
 /// One group near the nuclei.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct RungEntry {
     /// Its name.
     pub point_group: String,
@@ -134,11 +138,12 @@ pub struct RungEntry {
 }
 
 /// The basis.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct BasisSummary {
     /// Number of functions.
     pub functions: usize,
     /// Shells by letter.
+    #[schemars(with = "BTreeMap<String, usize>")]
     pub shells: serde_json::Map<String, serde_json::Value>,
     /// Null when some shells are pure and some Cartesian.
     pub pure: Option<bool>,
@@ -149,7 +154,7 @@ pub struct BasisSummary {
 }
 
 /// A weight of one irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Weight {
     /// Irrep.
     pub irrep: String,
@@ -158,7 +163,7 @@ pub struct Weight {
 }
 
 /// A share of an orbital.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ShareEntry {
     /// Atoms of one kind.
     pub atoms: String,
@@ -169,7 +174,7 @@ pub struct ShareEntry {
 }
 
 /// One orbital.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct OrbitalEntry {
     /// From 1 within the spin, file order.
     pub index: usize,
@@ -198,7 +203,7 @@ pub struct OrbitalEntry {
 }
 
 /// One degenerate set.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SetEntry {
     /// From 1 over both spins.
     pub set: usize,
@@ -235,18 +240,19 @@ pub struct SetEntry {
 }
 
 /// Frontier and totals.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct FrontierEntry {
     /// One entry a spin.
     pub spins: Vec<SpinFrontier>,
     /// Electrons in orbitals of each irrep.
+    #[schemars(with = "BTreeMap<String, f64>")]
     pub electrons_per_irrep: serde_json::Map<String, serde_json::Value>,
     /// Irrep of the determinant of closed shells, or the open shells it depends on.
     pub determinant: String,
 }
 
 /// Frontier of one spin.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SpinFrontier {
     /// `alpha` or `beta`.
     pub spin: crate::model::Spin,
@@ -261,7 +267,7 @@ pub struct SpinFrontier {
 }
 
 /// d block of the metals of one kind.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DBlockEntry {
     /// Metal atoms.
     pub metals: String,
@@ -270,7 +276,7 @@ pub struct DBlockEntry {
 }
 
 /// One set of a d block.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DLevelEntry {
     /// Set number.
     pub set: usize,
@@ -287,7 +293,7 @@ pub struct DLevelEntry {
 }
 
 /// A set touched by the window asked for.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct WindowEntry {
     /// Set number.
     pub set: usize,
@@ -306,7 +312,7 @@ pub struct WindowEntry {
 }
 
 /// Limits used.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ThresholdEntry {
     /// Smallest weight that gives an irrep.
     pub purity: f64,

@@ -13,7 +13,9 @@ use crate::group::products::Decomposition;
 use crate::group::{DoubleGroup, GroupError, PointGroup};
 use crate::states::StatesError;
 use comfy_table::CellAlignment;
+use schemars::JsonSchema;
 use serde::Serialize;
+use std::collections::BTreeMap;
 use std::fmt::Write as _;
 
 /// Levels are listed up to this 2J.
@@ -22,9 +24,10 @@ const HIGHEST_TWICE_J_SHOWN: u16 = 15;
 const COLUMNS_IN_TEXT: usize = 8;
 
 /// The irreps of a group as `table --double` tells them: classes, then every double-valued irrep with its two names.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DoubleTableDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = SCHEMA))]
     pub schema: &'static str,
     /// Name of the group.
     pub point_group: String,
@@ -35,13 +38,14 @@ pub struct DoubleTableDocument {
     /// Single-valued irreps, then double-valued ones.
     pub irreps: Vec<DoubleIrrepEntry>,
     /// Products of each irrep with the double-valued ones.
+    #[schemars(with = "BTreeMap<String, BTreeMap<String, String>>")]
     pub products: serde_json::Map<String, serde_json::Value>,
     /// Splitting of J = 1/2 to 15/2, states even under inversion of the ion.
     pub levels: Vec<LevelEntry>,
 }
 
 /// A class of a double group.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DoubleClassEntry {
     /// Such as `3C2+3RC2`.
     pub symbol: String,
@@ -50,7 +54,7 @@ pub struct DoubleClassEntry {
 }
 
 /// An irrep of a double group.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DoubleIrrepEntry {
     /// `E1/2g`.
     pub name: String,

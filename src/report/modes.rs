@@ -12,13 +12,16 @@ use crate::modes::assignment::{self, ModeSet, Weighting};
 use crate::modes::motion::{self, Motion};
 use crate::modes::{Assignment, Kind};
 use crate::selection::Operators;
+use schemars::JsonSchema;
 use serde::Serialize;
 use serde_json::{Map, json};
+use std::collections::BTreeMap;
 
 /// Everything `modes` tells.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ModesDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = SCHEMA))]
     pub schema: &'static str,
     /// The input.
     pub source: Source,
@@ -41,26 +44,31 @@ pub struct ModesDocument {
 }
 
 /// Counts by irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DecompositionEntry {
     /// 3N − 6, or 3N − 5.
     pub n_vibrations: usize,
     /// Irrep → number of translations.
+    #[schemars(with = "BTreeMap<String, usize>")]
     pub translations: Map<String, serde_json::Value>,
     /// Irrep → number of rotations.
+    #[schemars(with = "BTreeMap<String, usize>")]
     pub rotations: Map<String, serde_json::Value>,
     /// Irrep → number of vibrations.
+    #[schemars(with = "BTreeMap<String, usize>")]
     pub vibrations: Map<String, serde_json::Value>,
     /// Irrep → number of bond stretches, where the bonds are plain.
+    #[schemars(with = "Option<BTreeMap<String, usize>>")]
     pub stretches: Option<Map<String, serde_json::Value>>,
     /// Irrep → number of the others: bends, torsions, out-of-plane motions.
+    #[schemars(with = "Option<BTreeMap<String, usize>>")]
     pub bends: Option<Map<String, serde_json::Value>>,
     /// Activity of each irrep that vibrations have.
     pub activity: Vec<ActivityEntry>,
 }
 
 /// What light does with vibrations of one irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ActivityEntry {
     /// The irrep.
     pub irrep: String,
@@ -69,15 +77,17 @@ pub struct ActivityEntry {
     /// By symmetry.
     pub infrared: bool,
     /// Axes of the transition moment.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
     /// By symmetry.
     pub raman: bool,
 }
 
 /// Modes that are partners.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ModeSetEntry {
     /// `translation`, `rotation` or `vibration`.
+    #[schemars(extend("enum" = ["translation", "rotation", "vibration"]))]
     pub kind: &'static str,
     /// Irrep; null where none reaches the purity asked for.
     pub irrep: Option<String>,
@@ -94,6 +104,7 @@ pub struct ModeSetEntry {
     /// By symmetry; null without an irrep.
     pub infrared: Option<bool>,
     /// Axes of the transition moment.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
     /// By symmetry; null without an irrep.
     pub raman: Option<bool>,
@@ -104,7 +115,7 @@ pub struct ModeSetEntry {
 }
 
 /// File and nuclei do not agree.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DifferenceEntry {
     /// The irrep.
     pub irrep: String,

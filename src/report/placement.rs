@@ -7,12 +7,13 @@ use super::unicode::pretty;
 use crate::labelling::Labelled;
 use crate::labelling::composition::ranges;
 use crate::model::{ANGSTROM_PER_BOHR, Molecule, elements};
+use schemars::JsonSchema;
 use serde::Serialize;
 use serde_json::{Map, Value, json};
 use std::collections::BTreeMap;
 
 /// Descent, parent, or frame of chosen atoms.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct PlacementEntry {
     /// Group of the frame's atoms, or of all nuclei, within the tolerance.
     pub found: String,
@@ -31,6 +32,7 @@ pub struct PlacementEntry {
     /// All of them, in words.
     pub orientations: Vec<String>,
     /// Irrep of the group found → sum of irreps of the subgroup.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub correlation: Map<String, Value>,
 }
 

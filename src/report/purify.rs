@@ -8,12 +8,14 @@ use super::text::{geometry_head, head};
 use crate::labelling::Labelled;
 use crate::model::{ANGSTROM_PER_BOHR, Spin};
 use crate::purify::Changes;
+use schemars::JsonSchema;
 use serde::Serialize;
 
 /// The report of `purify`.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct PurifyDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = super::document::SCHEMA))]
     pub schema: &'static str,
     /// The file read.
     pub file: String,

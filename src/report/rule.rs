@@ -9,6 +9,7 @@ use super::unicode::pretty;
 use crate::group::{GroupError, IrrepName, PointGroup};
 use crate::selection::rules::QUADRATIC;
 use crate::selection::{Allowed, Operators};
+use schemars::JsonSchema;
 use serde::Serialize;
 use std::fmt::Write as _;
 
@@ -18,9 +19,10 @@ pub const AXES: [&str; 3] = ["x", "y", "z"];
 pub const ROTATIONS: [&str; 3] = ["Rx", "Ry", "Rz"];
 
 /// The document of `table GROUP --transition`.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct RuleDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = SCHEMA))]
     pub schema: &'static str,
     /// Name of the group.
     pub point_group: String,
@@ -34,7 +36,7 @@ pub struct RuleDocument {
 }
 
 /// What is allowed for a pair of irreps.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Rule {
     /// Irreps of the product, one entry an occurrence.
     pub product: Vec<String>,
@@ -53,16 +55,17 @@ pub struct Rule {
 }
 
 /// Electric dipole.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DipoleRule {
     /// Any component.
     pub allowed: bool,
     /// Axes of the report's frame.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
 }
 
 /// Another operator.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ComponentRule {
     /// Any component.
     pub allowed: bool,
@@ -71,7 +74,7 @@ pub struct ComponentRule {
 }
 
 /// One irrep of a product, as the state of an excited configuration.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct StateRule {
     /// Orbital irrep, of the singlet and of the triplet alike.
     pub irrep: String,
@@ -86,20 +89,22 @@ pub struct StateRule {
 }
 
 /// A vibration that opens a forbidden state, first order.
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, JsonSchema)]
 pub struct HelperRule {
     /// Irrep of the vibration.
     pub irrep: String,
     /// Axes it gives.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
 }
 
 /// A sublevel reached through spin–orbit coupling.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SublevelRule {
     /// Irrep of the sublevel and of the singlets it borrows from.
     pub irrep: String,
     /// Axes.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
 }
 

@@ -9,12 +9,14 @@ use crate::group::products::Decomposition;
 use crate::group::{DoubleGroup, DoubleName, PointGroup};
 use crate::states::jahn_teller::{self, JahnTeller};
 use crate::states::{self, Certainty, Configuration, Correlation, Ground, StatesError, Term, spin_orbit};
+use schemars::JsonSchema;
 use serde::Serialize;
 
 /// Everything `states` tells.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct StatesDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = SCHEMA))]
     pub schema: &'static str,
     /// The file that the configuration was read from, null when it was typed.
     pub file: Option<String>,
@@ -35,7 +37,7 @@ pub struct StatesDocument {
 }
 
 /// A configuration with its terms.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ConfigurationEntry {
     /// `t2g^3 eg^1`.
     pub text: String,
@@ -52,7 +54,7 @@ pub struct ConfigurationEntry {
 }
 
 /// One shell.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ShellEntry {
     /// `t2g`, `3e1g`, `4f`.
     pub symbol: String,
@@ -65,7 +67,7 @@ pub struct ShellEntry {
 }
 
 /// Terms of one kind.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TermEntry {
     /// `3T1g`.
     pub term: String,
@@ -86,7 +88,7 @@ pub struct TermEntry {
 }
 
 /// A component in the double group.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ComponentEntry {
     /// `E1/2g`, `T2g`.
     pub irrep: String,
@@ -105,16 +107,17 @@ pub struct ComponentEntry {
 }
 
 /// What the Jahn–Teller theorem says.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct JahnTellerEntry {
     /// `stable`, `active`, `linear` (Renner–Teller only) or `atom`.
+    #[schemars(extend("enum" = ["stable", "active", "linear", "atom"]))]
     pub verdict: &'static str,
     /// Vibrations that split the state in first order.
     pub modes: Vec<ModeEntry>,
 }
 
 /// Vibrations of one irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ModeEntry {
     /// Their irrep.
     pub irrep: String,
@@ -123,11 +126,12 @@ pub struct ModeEntry {
 }
 
 /// The ground term.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct GroundEntry {
     /// One term, or those that Hund's rules leave.
     pub terms: Vec<String>,
     /// `closed`, `only`, `rules`, `several_shells` or `undecided`.
+    #[schemars(extend("enum" = ["closed", "only", "rules", "several_shells", "undecided"]))]
     pub certainty: &'static str,
     /// Of an atom, J of the lowest level.
     pub j: Option<String>,
@@ -136,7 +140,7 @@ pub struct GroundEntry {
 }
 
 /// Rules between two kinds of terms.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TransitionEntry {
     /// Lower term in the list.
     pub from: String,
@@ -155,7 +159,7 @@ pub struct TransitionEntry {
 }
 
 /// Whether an operator joins two states.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct OperatorEntry {
     /// Spin and orbitals allow it.
     pub allowed: bool,
@@ -164,7 +168,7 @@ pub struct OperatorEntry {
 }
 
 /// An electric dipole between spin–orbit components.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct BorrowedEntry {
     /// Some pair of components allows it.
     pub allowed: bool,
@@ -175,7 +179,7 @@ pub struct BorrowedEntry {
 }
 
 /// From free ion to strong field.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct CorrelationEntry {
     /// `d^3`.
     pub free_ion: String,
@@ -194,7 +198,7 @@ pub struct CorrelationEntry {
 }
 
 /// A term of the free ion in the field.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct FreeTermEntry {
     /// `4F_g`.
     pub term: String,
@@ -205,7 +209,7 @@ pub struct FreeTermEntry {
 }
 
 /// A filling of the split shell.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct FillingEntry {
     /// `t2g^2 eg^1`.
     pub configuration: String,
@@ -214,7 +218,7 @@ pub struct FillingEntry {
 }
 
 /// A kind of term or irrep and how many.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct KindEntry {
     /// `4T1g`.
     pub term: String,
@@ -223,11 +227,12 @@ pub struct KindEntry {
 }
 
 /// A level or a term of a free ion in the group.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct LevelEntry {
     /// `J = 7/2` or `4F`.
     pub level: String,
     /// Under inversion of the ion.
+    #[schemars(extend("enum" = ["even", "odd"]))]
     pub parity: &'static str,
     /// Irreps that it becomes.
     pub components: Vec<ComponentEntry>,

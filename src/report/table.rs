@@ -6,8 +6,10 @@ use super::text::{push_table, table};
 use super::unicode::pretty;
 use crate::group::{GroupError, GroupName, PointGroup, exact_character};
 use comfy_table::CellAlignment;
+use schemars::JsonSchema;
 use serde::Serialize;
 use serde_json::{Map, Value, json};
+use std::collections::BTreeMap;
 use std::fmt::Write as _;
 
 /// Products of this many irreps are printed; of more the text leaves them to JSON.
@@ -18,9 +20,10 @@ const TEXT_WIDTH: usize = 100;
 const COLUMNS_IN_TEXT: usize = 10;
 
 /// Everything `table` tells.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TableDocument {
     /// Name and version of the layout.
+    #[schemars(extend("const" = super::document::SCHEMA))]
     pub schema: &'static str,
     /// Name of the group.
     pub point_group: String,
@@ -35,10 +38,13 @@ pub struct TableDocument {
     /// In printed order.
     pub irreps: Vec<IrrepEntry>,
     /// Irrep by irrep: what their product holds.
+    #[schemars(with = "BTreeMap<String, BTreeMap<String, String>>")]
     pub products: Map<String, Value>,
     /// Symmetric square of each irrep.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub symmetric_squares: Map<String, Value>,
     /// Antisymmetric square of each irrep.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub antisymmetric_squares: Map<String, Value>,
     /// Subgroups up to conjugation, largest first.
     pub descent: Vec<DescentEntry>,
@@ -47,7 +53,7 @@ pub struct TableDocument {
 }
 
 /// One class.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ClassEntry {
     /// Such as `2C3`.
     pub symbol: String,
@@ -58,7 +64,7 @@ pub struct ClassEntry {
 }
 
 /// One irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct IrrepEntry {
     /// ASCII Mulliken name.
     pub name: String,
@@ -77,13 +83,14 @@ pub struct IrrepEntry {
 }
 
 /// Descent to one subgroup.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct DescentEntry {
     /// Name of the subgroup.
     pub subgroup: String,
     /// Which of the parent's axes it keeps.
     pub description: String,
     /// Irrep of the parent → irreps of the subgroup.
+    #[schemars(with = "BTreeMap<String, String>")]
     pub irreps: Map<String, Value>,
 }
 

@@ -9,6 +9,7 @@ use crate::group::IrrepName;
 use crate::model::Spin;
 use comfy_table::{CellAlignment, Table, presets};
 use std::fmt::Write as _;
+use std::ops::Range;
 
 /// Hartree in electronvolts. CODATA 2018.
 pub const EV_PER_HARTREE: f64 = 27.211_386_245_988;
@@ -63,7 +64,7 @@ fn pretty_irreps(text: &str) -> String {
 }
 
 /// A number of electrons without needless decimals.
-fn count(value: f64) -> String {
+pub(super) fn count(value: f64) -> String {
     if (value - value.round()).abs() < 1e-6 { format!("{value:.0}") } else { format!("{value:.3}") }
 }
 
@@ -263,7 +264,7 @@ pub(super) fn push_table(out: &mut String, table: &Table) {
     }
 }
 
-fn made_of(shares: &[ShareEntry]) -> String {
+pub(super) fn made_of(shares: &[ShareEntry]) -> String {
     let parts: Vec<String> = shares
         .iter()
         .filter(|share| share.share >= 0.05)
@@ -271,6 +272,17 @@ fn made_of(shares: &[ShareEntry]) -> String {
         .map(|share| format!("{:.0} % {} {}", 100.0 * share.share, share.atoms, share.shell))
         .collect();
     parts.join(", ")
+}
+
+/// The sets of one spin that are listed: those around the frontier, or all.
+pub(super) fn shown(sets: &[&SetEntry], frontier: Option<&SpinFrontier>, options: TextOptions) -> Range<usize> {
+    let place = |number: Option<usize>| number.and_then(|number| sets.iter().position(|set| set.set == number));
+    let homo = place(frontier.and_then(|frontier| frontier.homo.or(frontier.somo.last().copied())));
+    match homo {
+        _ if options.all || sets.len() <= SHOWN_BELOW + SHOWN_ABOVE => 0..sets.len(),
+        None => 0..SHOWN_BELOW + SHOWN_ABOVE,
+        Some(homo) => (homo + 1).saturating_sub(SHOWN_BELOW)..(homo + 1 + SHOWN_ABOVE).min(sets.len()),
+    }
 }
 
 /// One spin's sets; `abelian` names the subgroup whose labels stand beside, where it is another group.
@@ -281,13 +293,7 @@ fn set_table(
     abelian: Option<&str>,
     options: TextOptions,
 ) -> String {
-    let place = |number: Option<usize>| number.and_then(|number| sets.iter().position(|set| set.set == number));
-    let homo = place(frontier.and_then(|frontier| frontier.homo.or(frontier.somo.last().copied())));
-    let shown = match homo {
-        _ if options.all || sets.len() <= SHOWN_BELOW + SHOWN_ABOVE => 0..sets.len(),
-        None => 0..SHOWN_BELOW + SHOWN_ABOVE,
-        Some(homo) => (homo + 1).saturating_sub(SHOWN_BELOW)..(homo + 1 + SHOWN_ABOVE).min(sets.len()),
-    };
+    let shown = shown(sets, frontier, options);
     let mut out = String::new();
     let hidden = if shown.len() < sets.len() {
         format!(", {} to {} of {} (--all shows every one)", shown.start + 1, shown.end, sets.len())
@@ -328,7 +334,7 @@ fn set_table(
 }
 
 /// What is unusual about a set.
-fn remark(set: &SetEntry) -> String {
+pub(super) fn remark(set: &SetEntry) -> String {
     let mut parts = Vec::new();
     if let Some(content) = &set.content {
         parts.push(format!("{} turned among themselves", pretty(content)));

@@ -15,10 +15,11 @@ use crate::selection::rules::QUADRATIC;
 use crate::selection::{Allowed, Operators, Pair, Strengths, strengths};
 use crate::states::jahn_teller::{self, JahnTeller};
 use crate::states::{self, Certainty, Configuration, Term};
+use schemars::JsonSchema;
 use serde::Serialize;
 
 /// One pair of sets.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TransitionEntry {
     /// Label of the set an electron leaves; `set 12` where it has no irrep.
     pub from: String,
@@ -58,11 +59,12 @@ pub struct TransitionEntry {
 }
 
 /// Electric dipole: `strength_au` is Σ|⟨i|r|j⟩|² over partners, bohr².
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ElectricDipole {
     /// By the product; null where a set has no irrep.
     pub allowed: Option<bool>,
     /// Axes of the report's frame.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
     /// Length form, summed over axes.
     pub strength_au: f64,
@@ -77,7 +79,7 @@ pub struct ElectricDipole {
 }
 
 /// Magnetic dipole, Σ|⟨i|r×∇|j⟩|² about the centre of the group, or quadrupole, Σ over nine traceless components, bohr⁴.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct Magnetic {
     /// By the product; null where a set has no irrep.
     pub allowed: Option<bool>,
@@ -88,7 +90,7 @@ pub struct Magnetic {
 }
 
 /// Two photons.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TwoPhoton {
     /// By the product; null where a set has no irrep.
     pub allowed: Option<bool>,
@@ -97,7 +99,7 @@ pub struct TwoPhoton {
 }
 
 /// States of the configuration reached, from those of the file's own configuration.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct StatesEntry {
     /// `closed shell`, or the open shells that the ground term comes from: `1t2g^3`.
     pub ground_from: String,
@@ -110,7 +112,7 @@ pub struct StatesEntry {
 }
 
 /// Terms of one kind of the excited configuration.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ExcitedEntry {
     /// `4T2g`.
     pub term: String,
@@ -123,17 +125,19 @@ pub struct ExcitedEntry {
     /// Same spin as the ground term.
     pub spin_allowed: bool,
     /// Axes along which the ground term reaches it with spin kept; empty when forbidden.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
 }
 
 /// A vibration that opens a state.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct VibronicEntry {
     /// State of the product it opens.
     pub state: String,
     /// Irrep of the vibration.
     pub irrep: String,
     /// Axes it gives.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
     /// Vibrations of that irrep, from the nuclei.
     pub modes_in_molecule: usize,
@@ -143,7 +147,7 @@ pub struct VibronicEntry {
 }
 
 /// A mode of the file.
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, JsonSchema)]
 pub struct ModeReference {
     /// From 1 in file order.
     pub mode: usize,
@@ -152,7 +156,7 @@ pub struct ModeReference {
 }
 
 /// One triplet and its sublevels.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct TripletEntry {
     /// Orbital irrep.
     pub irrep: String,
@@ -161,18 +165,19 @@ pub struct TripletEntry {
 }
 
 /// One sublevel irrep.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct SublevelEntry {
     /// Irrep, which is that of the singlets it mixes with.
     pub irrep: String,
     /// Axes along which it gains intensity; empty when those singlets are dark.
+    #[schemars(inner(regex(pattern = "^[xyz]$")))]
     pub polarisation: Vec<&'static str>,
     /// `ground` and transitions of this list whose singlets have that irrep.
     pub meets: Vec<String>,
 }
 
 /// A degenerate level and the vibrations that split it.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct JahnTellerEntry {
     /// Ground term, or label of the set.
     pub label: String,
@@ -185,7 +190,7 @@ pub struct JahnTellerEntry {
 }
 
 /// A Jahn–Teller-active vibration.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct ActiveVibration {
     /// Irrep.
     pub irrep: String,

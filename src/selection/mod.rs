@@ -7,7 +7,9 @@ pub mod agreement;
 pub mod moments;
 pub mod pairs;
 pub mod rules;
+pub mod set_name;
 
 pub use moments::{Strengths, strengths};
 pub use pairs::{Choice, Pair, SelectError, Selector, choose};
 pub use rules::{Allowed, Helper, Operators};
+pub use set_name::{FoundSet, SetName};

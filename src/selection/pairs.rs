@@ -185,19 +185,22 @@ impl End<'_> {
         }
         let mut chosen = vec![Vec::new(); self.spins.len()];
         for selector in selectors {
-            let mut named = false;
+            let mut exists = false;
             let mut fitting = false;
             for (spin, chosen) in self.spins.iter().zip(&mut chosen) {
-                for set in self.named(spin, selector) {
-                    named = true;
+                for set in named(spin, self.group, self.capacity, selector) {
+                    exists = true;
                     if self.fits(&spin.sets[set]) {
                         fitting = true;
                         chosen.push(set);
                     }
                 }
             }
-            if !named {
-                return Err(SelectError::NoSuchSet { selector: selector.to_string(), known: self.known(selector) });
+            if !exists {
+                return Err(SelectError::NoSuchSet {
+                    selector: selector.to_string(),
+                    known: known(self.spins, self.group, selector),
+                });
             }
             if !fitting {
                 let (state, verb) = if self.leaves { ("empty", "leave") } else { ("full", "enter") };
@@ -210,48 +213,48 @@ impl End<'_> {
         }
         Ok(chosen)
     }
+}
 
-    /// Sets of one spin that a selector means.
-    fn named(&self, spin: &SpinLabels, selector: &Selector) -> Vec<usize> {
-        let numbered = |wanted: &dyn Fn(&SetLabel) -> bool| -> Vec<usize> {
-            (0..spin.sets.len()).filter(|&set| wanted(&spin.sets[set])).collect()
-        };
-        match *selector {
-            Selector::Orbital(number) => numbered(&|set| set.orbitals.contains(&(number - 1))),
-            Selector::Label(number, name) => numbered(&|set| {
-                set.number == number && set.irrep.is_some_and(|irrep| self.group.irreps()[irrep].name == name)
-            }),
-            Selector::Occupied(steps) => {
-                let occupied = numbered(&|set| filling(set, self.capacity).is_some_and(|f| f != Filling::Empty));
-                occupied.into_iter().rev().nth(steps).into_iter().collect()
-            }
-            Selector::Empty(steps) => {
-                let empty = numbered(&|set| filling(set, self.capacity) == Some(Filling::Empty));
-                empty.into_iter().nth(steps).into_iter().collect()
-            }
+/// Sets of one spin that a selector means.
+pub(super) fn named(spin: &SpinLabels, group: &PointGroup, capacity: f64, selector: &Selector) -> Vec<usize> {
+    let numbered = |wanted: &dyn Fn(&SetLabel) -> bool| -> Vec<usize> {
+        (0..spin.sets.len()).filter(|&set| wanted(&spin.sets[set])).collect()
+    };
+    match *selector {
+        Selector::Orbital(number) => numbered(&|set| set.orbitals.contains(&(number - 1))),
+        Selector::Label(number, name) => {
+            numbered(&|set| set.number == number && set.irrep.is_some_and(|irrep| group.irreps()[irrep].name == name))
+        }
+        Selector::Occupied(steps) => {
+            let occupied = numbered(&|set| filling(set, capacity).is_some_and(|f| f != Filling::Empty));
+            occupied.into_iter().rev().nth(steps).into_iter().collect()
+        }
+        Selector::Empty(steps) => {
+            let empty = numbered(&|set| filling(set, capacity) == Some(Filling::Empty));
+            empty.into_iter().nth(steps).into_iter().collect()
         }
     }
+}
 
-    /// What a person may have meant.
-    fn known(&self, selector: &Selector) -> String {
-        match *selector {
-            Selector::Orbital(_) => {
-                let n = self.spins.iter().map(|spin| spin.orbitals.len()).max().unwrap_or(0);
-                format!("orbitals count from 1 to {n}")
-            }
-            Selector::Label(_, name) => {
-                let of_irrep = |set: &&SetLabel| set.irrep.is_some_and(|irrep| self.group.irreps()[irrep].name == name);
-                let n = self.spins.iter().map(|spin| spin.sets.iter().filter(of_irrep).count()).max().unwrap_or(0);
-                if n == 1 {
-                    "one set has that irrep, number 1".to_owned()
-                } else if n > 0 {
-                    format!("{n} sets have that irrep, numbered from 1")
-                } else {
-                    let names: Vec<String> = self.group.irreps().iter().map(|irrep| irrep.name.symbol()).collect();
-                    format!("no orbital has that irrep; the group has {}", names.join(", "))
-                }
-            }
-            Selector::Occupied(_) | Selector::Empty(_) => "so many sets are not in the file".to_owned(),
+/// What a person may have meant.
+pub(super) fn known(spins: &[SpinLabels], group: &PointGroup, selector: &Selector) -> String {
+    match *selector {
+        Selector::Orbital(_) => {
+            let n = spins.iter().map(|spin| spin.orbitals.len()).max().unwrap_or(0);
+            format!("orbitals count from 1 to {n}")
         }
+        Selector::Label(_, name) => {
+            let of_irrep = |set: &&SetLabel| set.irrep.is_some_and(|irrep| group.irreps()[irrep].name == name);
+            let n = spins.iter().map(|spin| spin.sets.iter().filter(of_irrep).count()).max().unwrap_or(0);
+            if n == 1 {
+                "one set has that irrep, number 1".to_owned()
+            } else if n > 0 {
+                format!("{n} sets have that irrep, numbered from 1")
+            } else {
+                let names: Vec<String> = group.irreps().iter().map(|irrep| irrep.name.symbol()).collect();
+                format!("no orbital has that irrep; the group has {}", names.join(", "))
+            }
+        }
+        Selector::Occupied(_) | Selector::Empty(_) => "so many sets are not in the file".to_owned(),
     }
 }

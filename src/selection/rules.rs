@@ -137,6 +137,24 @@ impl Operators {
         })
     }
 
+    /// The irreps that each of x, y, z has a part in.
+    #[must_use]
+    pub fn of_dipole(&self) -> &[Vec<usize>; 3] {
+        &self.dipole
+    }
+
+    /// The same of Rx, Ry, Rz.
+    #[must_use]
+    pub fn of_rotation(&self) -> &[Vec<usize>; 3] {
+        &self.rotation
+    }
+
+    /// The same of the six traceless products in the order of [`QUADRATIC`].
+    #[must_use]
+    pub fn of_quadrupole(&self) -> &[Vec<usize>; 6] {
+        &self.quadrupole
+    }
+
     /// Which of x, y, z reach a state of irrep `state` from the totally symmetric one.
     #[must_use]
     pub fn polarisation(&self, state: usize) -> Vec<usize> {

@@ -1,7 +1,7 @@
 //! Basis functions, their overlap, the conventions of files, and operations on orbitals.
 //!
 //! Reading order: `cartesian` (functions of one shell), `basis`, `overlap`, `moments`, `convention`, `turn`, `turned`,
-//! `operations`, `population`.
+//! `operations`, `population`, `values`.
 
 pub mod basis;
 pub mod cartesian;
@@ -13,6 +13,7 @@ pub mod population;
 mod product;
 pub mod turn;
 pub mod turned;
+pub mod values;
 
 pub use basis::Basis;
 pub use cartesian::angular_projector;
@@ -24,3 +25,4 @@ pub use population::lowdin;
 pub use product::product;
 pub use turn::{Turning, TurningError, overlap_with_turned};
 pub use turned::{PartialPermutation, Turned};
+pub use values::values;
