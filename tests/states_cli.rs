@@ -55,7 +55,7 @@ fn what_cannot_be_read_is_refused_with_what_is_expected() {
         (&["states", "O", "--level", "5/3"], "`5/3` is no level"),
         (&["states", "O", "--term", "4Z"], "`4Z` is no term"),
         (&["states", "Ih", "1hu^5 2hu^5 3hu^5 4hu^5 5hu^5"], "microstates, more than"),
-        (&["states", "Oh", "t2g^1", "--format", "csv"], "states prints text or json"),
+        (&["states", "Oh", "t2g^1", "--format", "csv"], "states prints text, json, latex or md, not csv"),
     ] {
         let (status, told) = refused(arguments);
         assert_eq!(status, 2, "{arguments:?}: {told}");

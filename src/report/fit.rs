@@ -15,11 +15,12 @@ pub fn fit(text: &str, width: usize) -> String {
     if width < NARROWEST {
         return text.to_owned();
     }
-    let lines: Vec<String> = text.split('\n').map(|line| broken(line, width)).collect();
+    let lines: Vec<String> = text.split('\n').map(|line| broken(line, width, None)).collect();
     lines.join("\n")
 }
 
-fn broken(line: &str, width: usize) -> String {
+/// `indent` is that of the lines that go on below, once it is settled.
+fn broken(line: &str, width: usize, indent: Option<usize>) -> String {
     let signs: Vec<char> = line.chars().collect();
     if signs.len() <= width {
         return line.to_owned();
@@ -30,12 +31,13 @@ fn broken(line: &str, width: usize) -> String {
     let begins = |start: &usize| {
         signs[*start] != ' ' && signs[*start - 1] == ' ' && signs[*start - 2] == ' ' && width - *start >= ROOM
     };
-    let indent = (first_word + 2..=at).rev().find(begins).unwrap_or(first_word + INDENT);
+    let column = || (first_word + 2..=at).rev().find(begins).unwrap_or(first_word + INDENT);
+    let indent = indent.unwrap_or_else(column);
     let head: String = signs[..at].iter().collect();
     let rest: String = signs[at..].iter().collect();
     let rest = format!("{}{}", " ".repeat(indent), rest.trim_start());
     // Each step takes at least one word away.
-    format!("{}\n{}", head.trim_end(), broken(&rest, width))
+    format!("{}\n{}", head.trim_end(), broken(&rest, width, Some(indent)))
 }
 
 #[cfg(test)]
