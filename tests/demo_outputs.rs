@@ -3,6 +3,7 @@
 #![allow(clippy::unwrap_used, reason = "a test may stop at once")]
 
 use base64::Engine as _;
+use std::fmt::Write as _;
 use std::path::Path;
 use std::process::Command;
 
@@ -15,7 +16,7 @@ fn comparable(text: &str) -> String {
         let (picture, rest) = part.split_once('"').unwrap();
         let bytes = base64::engine::general_purpose::STANDARD.decode(picture).expect("pictures can be decoded");
         let reader = png::Decoder::new(std::io::Cursor::new(bytes)).read_info().expect("pictures can be opened");
-        out.push_str(&format!("{} by {}\"{rest}", reader.info().width, reader.info().height));
+        write!(out, "{} by {}\"{rest}", reader.info().width, reader.info().height).unwrap();
     }
     let nonce = out.split_once("script-src 'nonce-").map(|(_, rest)| rest.chars().take(64).collect::<String>());
     nonce.map_or(out.clone(), |nonce| out.replace(&nonce, ""))

@@ -44,10 +44,7 @@ pub fn spin_sign(document: &Document, spin: Spin) -> &'static str {
 
 /// The label of a set, or its number where it has none.
 pub fn set_name(set: &SetEntry) -> Markup {
-    match &set.label {
-        Some(label) => name(label),
-        None => html! { "set " (set.set) },
-    }
+    html! { @if let Some(label) = &set.label { (name(label)) } @else { "set " (set.set) } }
 }
 
 /// All pictures, or nothing without any.

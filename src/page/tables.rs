@@ -38,10 +38,7 @@ pub fn power_of_ten(value: f64, decimals: usize) -> Markup {
 
 /// A cell with a number to sort by.
 fn number(value: Option<f64>, text: impl Fn(f64) -> String) -> Markup {
-    match value {
-        Some(value) => html! { td.number data-value=(value) { (text(value)) } },
-        None => html! { td.number { "—" } },
-    }
+    html! { @if let Some(value) = value { td.number data-value=(value) { (text(value)) } } @else { td.number { "—" } } }
 }
 
 fn made_of(shares: &[ShareEntry]) -> String {

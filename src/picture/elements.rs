@@ -304,7 +304,8 @@ fn molecule(skeleton: &Skeleton, paper: &Paper<'_>) -> Group {
     let mut drawn: Vec<(f64, Group)> = Vec::new();
     for &(a, b) in &skeleton.bonds {
         let [a, b] = [a, b].map(|atom| &skeleton.atoms[atom].place);
-        let depth = paper.place(&a.lerp(b, 0.5)).z;
+        // Behind both of its atoms, so that no symbol is struck through.
+        let depth = paper.place(a).z.min(paper.place(b).z) - 1e-6;
         drawn.push((depth, Group::new().add(line(paper, a, b).set("class", "bond"))));
     }
     for (at, atom) in skeleton.atoms.iter().enumerate() {
