@@ -9,8 +9,8 @@ use orbsieve::wavefunction::basis::Primitives;
 use orbsieve::wavefunction::cartesian::{Powers, lexicographic, monomials, pure_over_monomials, squared_norm};
 use orbsieve::wavefunction::convention::{CartesianNorm, CartesianOrder, Convention, PureSigns};
 use orbsieve::wavefunction::{
-    Basis, ConventionError, Settled, Turning, lowdin, moments as moments_between, overlap, overlap_between,
-    overlap_with_turned, settle,
+    Basis, ConventionError, Operations, Rows, Settled, Turning, lowdin, moments as moments_between, overlap,
+    overlap_between, overlap_with_turned, settle,
 };
 use serde_json::Value;
 
@@ -189,13 +189,15 @@ fn every_convention_is_told_from_all_others_and_undone() {
     for pure in [true, false] {
         let canonical = generic_molecule(6, pure);
         for convention in conventions(pure) {
-            let file = written(&canonical, convention);
+            let mut file = written(&canonical, convention);
+            // So few digits that readings behind the right one are tried too.
+            file.orbital_sets[0].coefficients.mapv_inplace(|value| (value * 1e9).round() / 1e9);
             let mut molecule = file.clone();
             let settled = settle(&mut molecule, LIMIT).unwrap();
             assert_eq!(settled.convention, convention, "{}", convention.describe());
-            assert!(settled.residual < 1e-7, "{}: {}", convention.describe(), settled.residual);
+            assert!(settled.residual < 1e-6, "{}: {}", convention.describe(), settled.residual);
             let coefficients = &molecule.orbital_sets[0].coefficients;
-            assert!(largest(&(coefficients - &canonical.orbital_sets[0].coefficients)) < 1e-9);
+            assert!(largest(&(coefficients - &canonical.orbital_sets[0].coefficients)) < 1e-6);
             // And back to what the file had.
             let back = settled.to_file(coefficients.view());
             assert!(largest(&(back - &file.orbital_sets[0].coefficients)) < 1e-9);
@@ -231,8 +233,10 @@ fn what_a_free_atom_cannot_tell_is_not_claimed() {
         let settled = settle(&mut file, LIMIT).unwrap();
         assert_eq!(settled.convention, conventions(true)[0], "{}", convention.describe());
     }
-    // Without d functions only the radial part is tried.
+    // Without d functions only the radial part is tried, and not that where the likelier reading leaves nothing to be wished for.
     let mut molecule = generic_molecule(1, false);
+    assert_eq!(settle(&mut molecule.clone(), LIMIT).unwrap().trials.len(), 1);
+    molecule.orbital_sets[0].coefficients.mapv_inplace(|value| (value * 1e6).round() / 1e6);
     let settled = settle(&mut molecule, LIMIT).unwrap();
     assert_eq!(settled.trials.len(), 2);
     assert_eq!(settled.convention, conventions(false)[0]);
@@ -493,15 +497,25 @@ fn operations_keep_the_overlap_multiply_and_agree_on_both_paths() {
     let (basis, operations) = square();
     let n = basis.n_functions();
     let s = overlap(&basis);
-    let row = Array1::from_shape_fn(n, |k| (1.3 * k as f64).cos());
     let matrices: Vec<Array2<f64>> = operations
         .iter()
         .map(|(matrix, permutation)| {
             let turning = Turning::by_permutation(&basis, permutation, matrix).unwrap();
             let turn = matrix_of(&turning, n);
             assert!(largest(&(turn.t().dot(&s).dot(&turn) - &s)) < 1e-11);
-            let sc = s.dot(&row);
-            assert!((turning.expectation(row.view(), sc.view()) - sc.dot(&turn.dot(&row))).abs() < 1e-9);
+            // More pairs than are worked on together, bra and ket apart.
+            let kets = Array2::from_shape_fn((19, n), |(i, k)| (1.3 * (k + 7 * i) as f64).cos());
+            let products = kets.dot(&s);
+            let operation = Operations::Permuting(vec![turning]);
+            let rows = Rows { coefficients: kets.view(), products: products.view() };
+            let expected = products.dot(&turn).dot(&kets.t());
+            for (i, value) in operation.expectations(rows).column(0).iter().enumerate() {
+                assert!((value - expected[(i, i)]).abs() < 1e-9);
+            }
+            let pairs: Vec<(usize, usize)> = (0..19).flat_map(|i| [(i, 18 - i), (i, (i + 5) % 19)]).collect();
+            for (&(bra, ket), value) in pairs.iter().zip(operation.connections(rows, &pairs)) {
+                assert!((value - expected[(bra, ket)].powi(2)).abs() < 1e-8 * value.max(1.0));
+            }
             let other = overlap_with_turned(&basis, matrix, &Point3::origin());
             assert!(largest(&(other - s.dot(&turn))) < 1e-11);
             turn

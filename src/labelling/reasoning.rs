@@ -7,7 +7,7 @@ use super::weights;
 use super::{Labelled, SetLabel};
 use crate::group::{GroupName, PointGroup};
 use crate::model::Molecule;
-use crate::wavefunction::Rows;
+use crate::wavefunction::{Pair, Rows};
 use ndarray::{Array2, Axis};
 
 /// The trace of a set under the operations of one class.
@@ -133,9 +133,9 @@ fn connections(
 ) -> Array2<f64> {
     let coefficients = molecule.orbital_sets[spin_idx].coefficients.view();
     let rows = Rows { coefficients, products: labelled.settled.products[spin_idx].view() };
-    let candidates: Vec<(usize, Vec<usize>)> = kets.iter().map(|&ket| (ket, bras.to_vec())).collect();
-    let found = labelled.operations.connections(rows, &candidates);
-    Array2::from_shape_fn((bras.len(), kets.len()), |(bra, ket)| found[ket][bra])
+    let pairs: Vec<Pair> = bras.iter().flat_map(|&bra| kets.iter().map(move |&ket| (bra, ket))).collect();
+    let found = labelled.operations.connections(rows, &pairs);
+    Array2::from_shape_vec((bras.len(), kets.len()), found).unwrap_or_default()
 }
 
 fn nearest_outside(molecule: &Molecule, labelled: &Labelled, spin_idx: usize, set: &SetLabel) -> Option<Outside> {
