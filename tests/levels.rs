@@ -307,7 +307,7 @@ fn statuses_tell_what_went_wrong() {
         (&["geometry", &water, "--format", "svg"], 2, "geometry prints text or json, not svg"),
         (&["transitions", &water, "--format", "svg"], 2, "not svg"),
         (&["modes", &water, "--format", "svg"], 2, "not svg"),
-        (&["table", "Oh", "--format", "svg"], 2, "table prints text or json, not svg"),
+        (&["table", "Oh", "--format", "svg"], 2, "table prints text, json, latex or md, not svg"),
         (&["states", "Oh", "t2g^2", "--format", "svg"], 2, "not svg"),
         (&["audit", &water, "--format", "svg"], 2, "not svg"),
         (&["levels", &water, "--output", target], 0, ""),

@@ -245,6 +245,27 @@ fn the_report_of_purify_fits_its_schema() {
 }
 
 #[test]
+fn every_line_of_batch_fits_its_schema() {
+    let output = Command::new(env!("CARGO_BIN_EXE_orbsieve"))
+        .args(["batch", "tests/molecules/water_631gs.molden", "tests/broken/no-such-file.molden", "Cargo.toml"])
+        .current_dir(env!("CARGO_MANIFEST_DIR"))
+        .output()
+        .unwrap();
+    assert_eq!(output.status.code(), Some(3));
+    let validator = validator("batch");
+    let lines: Vec<Value> =
+        output.stdout.split(|&byte| byte == b'\n').filter_map(|line| serde_json::from_slice(line).ok()).collect();
+    assert_eq!(lines.len(), 3);
+    assert!(lines[0].get("orbitals").is_some() && lines[1].get("error").is_some() && lines[2].get("error").is_some());
+    for line in &lines {
+        assert!(validator.is_valid(line), "{:?}", errors(&validator, line));
+        for (what, faulty) in faulty(line) {
+            assert!(!validator.is_valid(&faulty), "{what} is not refused");
+        }
+    }
+}
+
+#[test]
 fn schemas_refuse_what_is_not_so() {
     let all = validator_of_all();
     for (name, runs) in OUTPUTS {

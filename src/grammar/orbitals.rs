@@ -143,7 +143,7 @@ impl<'a> Headers<'a> {
             last.numbers.end = start;
             last
         });
-        let orbital = self.open.get_or_insert_with(|| RawOrbital {
+        let orbital = self.open.get_or_insert(RawOrbital {
             header: start..end,
             symmetry: None,
             energy: None,

@@ -178,6 +178,8 @@ pub struct LimitEntry {
 
 /// Shares of atoms below this are not listed.
 const SHARE_FLOOR: f64 = 0.05;
+/// Less than this is rounding, whose last digits hang on the processor.
+const ROUNDING: f64 = 1e-8;
 
 /// The document of `audit`: that of `label` with the verdict.
 #[must_use]
@@ -358,8 +360,10 @@ fn summary(labelled: &Labelled, audit: &Audit) -> String {
     let group = pretty(&audit.whole_group(labelled).to_string());
     let limits = &audit.limits;
     let worst = carried_worst(audit);
-    let invariant =
-        format!("all densities keep {group} (no operation carries more than {worst:.1e} electrons out of place)");
+    let invariant = format!(
+        "all densities keep {group} (no operation carries more than {:.1e} electrons out of place)",
+        worst.max(ROUNDING)
+    );
     match audit.verdict() {
         Verdict::Intact => format!("intact: {invariant} and every orbital belongs to one irrep"),
         Verdict::Rotated => {

@@ -29,6 +29,13 @@ fn four(value: f64) -> String {
     if text == "-0.0000" { text[1..].to_owned() } else { text }
 }
 
+/// Deviations below this are rounding, whose last digits hang on the processor.
+const ROUNDING: f64 = 1e-8;
+
+fn small(value: f64) -> String {
+    if value < ROUNDING { "<1e-8".to_owned() } else { format!("{value:.0e}") }
+}
+
 fn percent(value: f64) -> String {
     format!("{:.2} %", 100.0 * value)
 }
@@ -142,7 +149,7 @@ fn characters(out: &mut String, document: &ExplainDocument) {
     let row = |of: &dyn Fn(&CharacterEntry) -> String| document.characters.iter().map(of).collect::<Vec<_>>();
     let mut rows = vec![
         ("χ measured".to_owned(), row(&|entry| four(entry.measured))),
-        ("± in the class".to_owned(), row(&|entry| format!("{:.0e}", entry.spread))),
+        ("± in the class".to_owned(), row(&|entry| small(entry.spread))),
     ];
     if let Some(irrep) = &document.set.irrep {
         let exact = row(&|entry| entry.exact.clone().unwrap_or_default());
@@ -216,10 +223,10 @@ fn connections(out: &mut String, document: &ExplainDocument) {
         let label = outside.label.as_deref().map_or(String::new(), |label| format!(" ({})", pretty(label)));
         let _ = writeln!(
             out,
-            " nearest outside: orbital {}{label}, {:+.4} eV away, joined by {:.1e}",
+            " nearest outside: orbital {}{label}, {:+.4} eV away, joined by {}",
             outside.index,
             outside.distance_hartree * EV_PER_HARTREE,
-            outside.connection
+            small(outside.connection)
         );
     }
 }

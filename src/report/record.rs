@@ -4,10 +4,11 @@
 
 use super::document::{Document, SCHEMA};
 use crate::diagnostic::{self, Diagnostic, Severity};
+use schemars::JsonSchema;
 use serde::Serialize;
 
 /// One line of `batch`.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 #[serde(untagged)]
 pub enum Record {
     /// The file has its labels.
@@ -17,7 +18,7 @@ pub enum Record {
 }
 
 /// A file with its labels.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct LabelledRecord {
     /// Name, hash, status, warnings.
     #[serde(flatten)]
@@ -28,7 +29,7 @@ pub struct LabelledRecord {
 }
 
 /// A file without labels.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct FailedRecord {
     /// Name, hash, status, findings.
     #[serde(flatten)]
@@ -40,7 +41,7 @@ pub struct FailedRecord {
 }
 
 /// What every record says first.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct RecordHead {
     /// File name as given.
     pub file: String,
@@ -55,7 +56,7 @@ pub struct RecordHead {
 }
 
 /// One finding about the file.
-#[derive(Debug, Clone, Serialize)]
+#[derive(Debug, Clone, Serialize, JsonSchema)]
 pub struct FindingEntry {
     /// `warning` or `error`.
     pub severity: &'static str,

@@ -9,6 +9,7 @@ use super::explain::ExplainDocument;
 use super::explain_pair::ExplainTransitionDocument;
 use super::modes::ModesDocument;
 use super::purify::PurifyDocument;
+use super::record::Record;
 use super::rule::RuleDocument;
 use super::states::StatesDocument;
 use super::table::TableDocument;
@@ -30,7 +31,13 @@ struct Output {
     always: &'static [&'static str],
     /// Parts of the common document that are never there.
     never: &'static [&'static str],
+    /// The definition that these parts belong to, where it is not the whole.
+    within: Option<&'static str>,
 }
+
+/// Parts of the common document that `label` always fills, and those that it never does.
+const LABEL_ALWAYS: &[&str] = &["basis", "orbitals", "sets", "frontier", "thresholds"];
+const LABEL_NEVER: &[&str] = &["audit", "jahn_teller"];
 
 /// Every JSON output, in the order of the README.
 const OUTPUTS: &[Output] = &[
@@ -38,8 +45,9 @@ const OUTPUTS: &[Output] = &[
         name: "label",
         title: "orbsieve label",
         of_type: derived::<Document>,
-        always: &["basis", "orbitals", "sets", "frontier", "thresholds"],
-        never: &["audit", "jahn_teller"],
+        always: LABEL_ALWAYS,
+        never: LABEL_NEVER,
+        within: None,
     },
     Output::whole("label-explain", "orbsieve label --explain", derived::<ExplainDocument>),
     Output::whole(
@@ -64,6 +72,7 @@ const OUTPUTS: &[Output] = &[
             "audit",
             "thresholds",
         ],
+        within: None,
     },
     Output {
         name: "transitions",
@@ -71,6 +80,7 @@ const OUTPUTS: &[Output] = &[
         of_type: derived::<Document>,
         always: &["basis", "sets", "frontier", "transitions", "thresholds"],
         never: &["orbitals", "active_window", "audit"],
+        within: None,
     },
     Output {
         name: "audit",
@@ -78,6 +88,7 @@ const OUTPUTS: &[Output] = &[
         of_type: derived::<Document>,
         always: &["basis", "orbitals", "sets", "frontier", "audit", "thresholds"],
         never: &["active_window", "transitions", "jahn_teller"],
+        within: None,
     },
     Output::whole("purify", "orbsieve purify (its report)", derived::<PurifyDocument>),
     Output::whole("modes", "orbsieve modes", derived::<ModesDocument>),
@@ -85,22 +96,37 @@ const OUTPUTS: &[Output] = &[
     Output::whole("table", "orbsieve table", derived::<TableDocument>),
     Output::whole("table-double", "orbsieve table --double", derived::<DoubleTableDocument>),
     Output::whole("table-transition", "orbsieve table --transition", derived::<RuleDocument>),
+    Output {
+        name: "batch",
+        title: "orbsieve batch (one line)",
+        of_type: derived::<Record>,
+        always: LABEL_ALWAYS,
+        never: LABEL_NEVER,
+        within: Some("LabelledRecord"),
+    },
 ];
 
 impl Output {
     const fn whole(name: &'static str, title: &'static str, of_type: fn() -> Schema) -> Self {
-        Self { name, title, of_type, always: &[], never: &[] }
+        Self { name, title, of_type, always: &[], never: &[], within: None }
     }
 
     fn schema(&self) -> Schema {
         let mut schema = (self.of_type)();
         schema.insert("title".to_owned(), json!(self.title));
         schema.insert("$id".to_owned(), json!(id(self.name)));
-        if let Some(Value::Object(properties)) = schema.get_mut("properties") {
-            properties.retain(|key, _| !self.never.contains(&key.as_str()));
-        }
-        if let Some(Value::Array(required)) = schema.get_mut("required") {
-            required.extend(self.always.iter().map(|&part| json!(part)));
+        let whole = schema.ensure_object();
+        let parts = match self.within {
+            None => Some(whole),
+            Some(name) => whole.get_mut("$defs").and_then(|all| all.get_mut(name)).and_then(Value::as_object_mut),
+        };
+        if let Some(parts) = parts {
+            if let Some(Value::Object(properties)) = parts.get_mut("properties") {
+                properties.retain(|key, _| !self.never.contains(&key.as_str()));
+            }
+            if let Some(Value::Array(required)) = parts.get_mut("required") {
+                required.extend(self.always.iter().map(|&part| json!(part)));
+            }
         }
         RecursiveTransform(close).transform(&mut schema);
         prune(&mut schema);

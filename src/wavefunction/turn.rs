@@ -97,6 +97,7 @@ impl Turning {
         )
     }
 
+    #[expect(clippy::inline_always, reason = "compiled once for each width of vectors only where it is inlined")]
     #[inline(always)]
     fn sums(&self, kets: &[Lanes], bras: &[Lanes]) -> Lanes {
         let mut sums = [0.0; LANES];
@@ -131,6 +132,7 @@ pub(super) const LANES: usize = 16;
 pub(super) type Lanes = [f64; LANES];
 
 /// Adds Σ over k, j of bra_k D_kj ket_j of one shell of `N` functions.
+#[expect(clippy::inline_always, reason = "compiled once for each width of vectors only where it is inlined")]
 #[inline(always)]
 fn shell<const N: usize>(matrix: &[f64], kets: &[Lanes], bras: &[Lanes], sums: &mut Lanes) {
     let (Some(kets), Some(bras)) = (kets.first_chunk::<N>(), bras.first_chunk::<N>()) else { return };
